@@ -1,0 +1,1 @@
+"""Airfield profile and fleet: models, YAML with file and line in every error, JSON Schema."""

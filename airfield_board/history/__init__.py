@@ -1,0 +1,1 @@
+"""The append-only record: schema, store, hash chain."""

@@ -1,0 +1,1 @@
+"""Limit kinds, states, deadband and off-delay, exceedance episodes."""

@@ -1,0 +1,1 @@
+"""Reading observations, checking them, and the conditions they give."""

@@ -1,0 +1,1 @@
+"""One module a format; the format is recognised from the content."""

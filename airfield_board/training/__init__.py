@@ -1,0 +1,1 @@
+"""Invented fields that feed themselves."""
