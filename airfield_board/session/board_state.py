@@ -355,6 +355,8 @@ class BoardState:
         When the settings in force were taken.
     recording
         Whether the history takes what happens; ``not_recording`` says why not.
+    poll_s
+        How often the source is to be read [s], as the profile in force has it.
     """
 
     mode: Mode
@@ -377,3 +379,4 @@ class BoardState:
     settings_since: datetime | None = None
     recording: bool = True
     not_recording: str = ""
+    poll_s: float = 5.0
