@@ -1,0 +1,180 @@
+"""Water vapour in air: vapour pressure, virtual temperature, density.
+
+All is SI: pressure in pascals, temperature and dew point in kelvin, density in kg/m3. Functions take floats (and return
+a float) or arrays that broadcast; NaN gives NaN. Air is taken as an ideal gas, as the standard atmosphere takes it.
+Against the real-gas equation CIPM-2007 that makes density altitude at most about 25 ft higher (never lower) over the
+temperatures at which limits bite.
+
+References
+----------
+D. Sonntag, Important new values of the physical constants of 1986, vapour pressure formulations based on the ITS-90,
+and psychrometer formulae, Z. Meteorol. 40 (1990) 340-344. WMO-No. 8, Guide to Instruments and Methods of Observation,
+volume I, chapter 4, annex 4.B (enhancement factor, saturation over water also below 0 °C).
+"""
+
+from typing import Final
+
+import numpy as np
+
+from airfield_board.atmosphere.evaluation import FloatArray, evaluated, positive
+from airfield_board.atmosphere.standard import GAS_CONSTANT_J_KG_K
+from airfield_board.units import HECTOPASCAL_PA, Number
+
+MOLAR_MASS_RATIO: Final = 18.01528 / 28.9644
+"""Of water (CODATA/IUPAC) to dry air (ISO 2533)."""
+LOWEST_DEWPOINT_K: Final = 173.15
+HIGHEST_DEWPOINT_K: Final = 373.15
+"""Range of Sonntag's formula, -100 to 100 °C."""
+
+# Sonntag (1990), over water, for the pressure in hPa.
+_INVERSE: Final = -6096.9385
+_CONSTANT: Final = 16.635794
+_LINEAR: Final = -2.711193e-2
+_SQUARE: Final = 1.673952e-5
+_LOGARITHM: Final = 2.433502
+# WMO-No. 8, annex 4.B, for the pressure in hPa.
+_ENHANCEMENT: Final = 1.0016
+_ENHANCEMENT_RISE: Final = 3.15e-6
+_ENHANCEMENT_LOSS: Final = 0.074
+
+
+def saturation_vapour_pressure(temperature_k: Number | float, pressure_pa: Number | float) -> Number:
+    """Vapour pressure of moist air saturated over water.
+
+    Parameters
+    ----------
+    temperature_k
+        Temperature [K], 173.15 to 373.15, else NaN; the dew point gives the vapour pressure of the air itself.
+    pressure_pa
+        Pressure of the moist air [Pa]; it raises the vapour pressure by some 0.4 %.
+
+    Returns
+    -------
+    float or ndarray
+        Vapour pressure [Pa].
+    """
+    return evaluated(_saturation_vapour_pressure, temperature_k, pressure_pa)
+
+
+def virtual_temperature(
+    temperature_k: Number | float, pressure_pa: Number | float, dewpoint_k: Number | float
+) -> Number:
+    """Temperature at which dry air of the same pressure has the density of the moist air.
+
+    Parameters
+    ----------
+    temperature_k
+        Temperature [K].
+    pressure_pa
+        Pressure [Pa].
+    dewpoint_k
+        Dew point over water [K], 173.15 to 373.15, else NaN. Nothing is said of one above the temperature: the formula
+        is followed.
+
+    Returns
+    -------
+    float or ndarray
+        Virtual temperature [K]; NaN where the vapour alone would exceed the pressure.
+    """
+    return evaluated(_virtual_temperature, temperature_k, pressure_pa, dewpoint_k)
+
+
+def density(
+    pressure_pa: Number | float, temperature_k: Number | float, dewpoint_k: Number | float | None = None
+) -> Number:
+    """Density of air.
+
+    Parameters
+    ----------
+    pressure_pa
+        Pressure [Pa].
+    temperature_k
+        Temperature [K].
+    dewpoint_k
+        Dew point over water [K]; None: dry air. NaN is no dew point and gives NaN: it never passes for dry air.
+
+    Returns
+    -------
+    float or ndarray
+        Density [kg/m3].
+    """
+    return evaluated(_density, pressure_pa, temperature_k, dewpoint_k)
+
+
+def moist_to_dry_density(pressure_pa: Number | float, dewpoint_k: Number | float) -> Number:
+    """Ratio of the density of moist air to that of dry air of the same pressure and temperature.
+
+    Parameters
+    ----------
+    pressure_pa
+        Pressure [Pa].
+    dewpoint_k
+        Dew point over water [K], 173.15 to 373.15, else NaN.
+
+    Returns
+    -------
+    float or ndarray
+        At most 1; NaN where the vapour alone would exceed the pressure.
+    """
+    return evaluated(_moist_to_dry_density, pressure_pa, dewpoint_k)
+
+
+def moist_to_dry_slope_by_pressure(pressure_pa: Number | float, dewpoint_k: Number | float) -> Number:
+    """Return the derivative of the logarithm of `moist_to_dry_density` by pressure [1/Pa]; parameters as there."""
+    return evaluated(_moist_to_dry_slope_by_pressure, pressure_pa, dewpoint_k)
+
+
+def moist_to_dry_slope_by_dewpoint(pressure_pa: Number | float, dewpoint_k: Number | float) -> Number:
+    """Return the derivative of the logarithm of `moist_to_dry_density` by dew point [1/K]; parameters as there."""
+    return evaluated(_moist_to_dry_slope_by_dewpoint, pressure_pa, dewpoint_k)
+
+
+def _saturation_vapour_pressure(temperature_k: FloatArray, pressure_pa: FloatArray) -> FloatArray:
+    inside = (temperature_k >= LOWEST_DEWPOINT_K) & (temperature_k <= HIGHEST_DEWPOINT_K)
+    if not inside.all():
+        temperature_k = np.where(inside, temperature_k, np.nan)
+    exponent = (
+        _INVERSE / temperature_k
+        + (_CONSTANT + (_LINEAR + _SQUARE * temperature_k) * temperature_k)
+        + _LOGARITHM * np.log(temperature_k)
+    )
+    return positive(np.exp(exponent) * (HECTOPASCAL_PA * _enhancement_factor(positive(pressure_pa) / HECTOPASCAL_PA)))
+
+
+def _enhancement_factor(pressure_hpa: FloatArray) -> FloatArray:
+    return _ENHANCEMENT + _ENHANCEMENT_RISE * pressure_hpa - _ENHANCEMENT_LOSS / pressure_hpa
+
+
+def _virtual_temperature(temperature_k: FloatArray, pressure_pa: FloatArray, dewpoint_k: FloatArray) -> FloatArray:
+    return positive(temperature_k) / _moist_to_dry_density(pressure_pa, dewpoint_k)
+
+
+def _density(pressure_pa: FloatArray, temperature_k: FloatArray, dewpoint_k: FloatArray | None) -> FloatArray:
+    dry = positive(pressure_pa) / (GAS_CONSTANT_J_KG_K * positive(temperature_k))
+    return dry if dewpoint_k is None else dry * _moist_to_dry_density(pressure_pa, dewpoint_k)
+
+
+def _moist_to_dry_density(pressure_pa: FloatArray, dewpoint_k: FloatArray) -> FloatArray:
+    share = _saturation_vapour_pressure(dewpoint_k, pressure_pa) / pressure_pa
+    possible = share <= 1.0
+    if not possible.all():
+        share = np.where(possible, share, np.nan)
+    return 1.0 - (1.0 - MOLAR_MASS_RATIO) * share
+
+
+def _moist_to_dry_slope_by_pressure(pressure_pa: FloatArray, dewpoint_k: FloatArray) -> FloatArray:
+    # The vapour's share f(p) e / p depends on the pressure twice: by the division and by the enhancement factor.
+    ratio = _moist_to_dry_density(pressure_pa, dewpoint_k)
+    pressure_hpa = pressure_pa / HECTOPASCAL_PA
+    factor_rise = (_ENHANCEMENT_RISE * pressure_hpa + _ENHANCEMENT_LOSS / pressure_hpa) / _enhancement_factor(
+        pressure_hpa
+    )
+    return (1.0 - ratio) / ratio * (1.0 - factor_rise) / pressure_pa
+
+
+def _moist_to_dry_slope_by_dewpoint(pressure_pa: FloatArray, dewpoint_k: FloatArray) -> FloatArray:
+    ratio = _moist_to_dry_density(pressure_pa, dewpoint_k)
+    saturation_slope = (
+        -_INVERSE / (dewpoint_k * dewpoint_k) + _LINEAR + 2.0 * _SQUARE * dewpoint_k + _LOGARITHM / dewpoint_k
+    )
+    return -(1.0 - ratio) / ratio * saturation_slope

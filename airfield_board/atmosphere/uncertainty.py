@@ -1,0 +1,271 @@
+"""How far the instruments' uncertainty carries into what is computed from them: exact derivatives, no differences.
+
+The law of propagation: the variance of a result is the sum over the independent inputs (altimeter setting, temperature,
+dew point) of the squared product of derivative and standard uncertainty. An input that acts by several ways has one
+derivative, the sum over the ways. The elevation counts as exact. All is SI; functions take floats (and return a float)
+or arrays that broadcast; NaN gives NaN.
+
+References
+----------
+JCGM 100:2008, Evaluation of measurement data - Guide to the expression of uncertainty in measurement (GUM): 4.3.7 (a
+rectangular distribution of full width r has the standard deviation r/sqrt(12)), 5.1.2 (independent inputs), 6.2.1
+(expanded uncertainty).
+"""
+
+from dataclasses import dataclass
+from typing import Final, Generic
+
+import numpy as np
+
+from airfield_board.atmosphere import altimetry, moist_air, standard
+from airfield_board.atmosphere.evaluation import FloatArray, evaluated
+from airfield_board.units import Number
+
+COVERAGE_FACTOR: Final = 2.0
+"""k of every expanded uncertainty."""
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class DensityAltitudeDerivatives(Generic[Number]):
+    """Derivatives of density altitude by each of what it is computed from.
+
+    Attributes
+    ----------
+    by_altimeter
+        [m/Pa], below 0.
+    by_temperature
+        [m/K], above 0.
+    by_dewpoint
+        [m/K], above 0; 0 for dry air.
+    """
+
+    by_altimeter: Number
+    by_temperature: Number
+    by_dewpoint: Number
+
+
+def standard_uncertainty(resolution: Number | float, accuracy: Number | float) -> Number:
+    """Return the standard uncertainty of an instrument.
+
+    Parameters
+    ----------
+    resolution
+        Step between two readings; it counts as r/sqrt(12).
+    accuracy
+        Half-width of the interval that holds 95 % of the errors; half of it counts.
+
+    Returns
+    -------
+    float or ndarray
+        In the unit of the two.
+    """
+    return evaluated(_standard_uncertainty, resolution, accuracy)
+
+
+def expanded(standard_uncertainties: Number) -> Number:
+    """Return the expanded uncertainty (k = 2) of a standard one; so of a temperature, which is read as it stands."""
+    return evaluated(_expanded, standard_uncertainties)
+
+
+def density_altitude_derivatives(
+    altimeter_pa: Number | float,
+    elevation_m: Number | float,
+    temperature_k: Number | float,
+    dewpoint_k: Number | float | None = None,
+) -> DensityAltitudeDerivatives[Number]:
+    """Exact derivatives of density altitude by altimeter setting, temperature and dew point.
+
+    Parameters
+    ----------
+    altimeter_pa
+        Altimeter setting [Pa].
+    elevation_m
+        Field elevation [m].
+    temperature_k
+        Temperature [K].
+    dewpoint_k
+        Dew point over water [K]; None: dry air, NaN gives NaN.
+
+    Returns
+    -------
+    DensityAltitudeDerivatives
+        Of floats, or of arrays.
+    """
+    inputs = (altimeter_pa, elevation_m, temperature_k, dewpoint_k)
+    return DensityAltitudeDerivatives(
+        by_altimeter=evaluated(_density_altitude_by_altimeter, *inputs),
+        by_temperature=evaluated(_density_altitude_by_temperature, *inputs),
+        by_dewpoint=evaluated(_density_altitude_by_dewpoint, *inputs),
+    )
+
+
+def density_altitude_uncertainty(
+    altimeter_pa: Number | float,
+    elevation_m: Number | float,
+    temperature_k: Number | float,
+    dewpoint_k: Number | float | None,
+    altimeter_uncertainty_pa: Number | float,
+    temperature_uncertainty_k: Number | float,
+    dewpoint_uncertainty_k: Number | float = 0.0,
+) -> Number:
+    """Return the expanded uncertainty (k = 2) of density altitude.
+
+    Parameters
+    ----------
+    altimeter_pa, elevation_m, temperature_k, dewpoint_k
+        As for `density_altitude_derivatives`.
+    altimeter_uncertainty_pa, temperature_uncertainty_k, dewpoint_uncertainty_k
+        Standard uncertainties [Pa, K, K]; that of the dew point does not count for dry air.
+
+    Returns
+    -------
+    float or ndarray
+        [m].
+    """
+    return evaluated(
+        _density_altitude_uncertainty,
+        altimeter_pa,
+        elevation_m,
+        temperature_k,
+        dewpoint_k,
+        altimeter_uncertainty_pa,
+        temperature_uncertainty_k,
+        dewpoint_uncertainty_k,
+    )
+
+
+def pressure_altitude_uncertainty(altimeter_pa: Number | float, altimeter_uncertainty_pa: Number | float) -> Number:
+    """Return the expanded uncertainty (k = 2) of pressure altitude; the elevation, being exact, does not change it.
+
+    Parameters
+    ----------
+    altimeter_pa
+        Altimeter setting [Pa].
+    altimeter_uncertainty_pa
+        Its standard uncertainty [Pa].
+
+    Returns
+    -------
+    float or ndarray
+        [m].
+    """
+    return evaluated(_pressure_altitude_uncertainty, altimeter_pa, altimeter_uncertainty_pa)
+
+
+def isa_deviation_uncertainty(
+    altimeter_pa: Number | float,
+    elevation_m: Number | float,
+    altimeter_uncertainty_pa: Number | float,
+    temperature_uncertainty_k: Number | float,
+) -> Number:
+    """Return the expanded uncertainty (k = 2) of ISA deviation.
+
+    The altimeter setting adds to it by way of the pressure altitude.
+
+    Parameters
+    ----------
+    altimeter_pa
+        Altimeter setting [Pa].
+    elevation_m
+        Field elevation [m].
+    altimeter_uncertainty_pa, temperature_uncertainty_k
+        Standard uncertainties [Pa, K].
+
+    Returns
+    -------
+    float or ndarray
+        [K].
+    """
+    return evaluated(
+        _isa_deviation_uncertainty, altimeter_pa, elevation_m, altimeter_uncertainty_pa, temperature_uncertainty_k
+    )
+
+
+def _standard_uncertainty(resolution: FloatArray, accuracy: FloatArray) -> FloatArray:
+    return np.sqrt(resolution * resolution / 12.0 + accuracy * accuracy / 4.0)
+
+
+def _expanded(standard_uncertainties: FloatArray) -> FloatArray:
+    return COVERAGE_FACTOR * np.abs(standard_uncertainties)
+
+
+def _pressure_altitude_by_altimeter(altimeter_pa: FloatArray) -> FloatArray:
+    return -standard.pressure_scale_height(standard.altitude_from_pressure(altimeter_pa)) / altimeter_pa
+
+
+def _station_pressure_by_altimeter(altimeter_pa: FloatArray, pressure_altitude_m: FloatArray) -> FloatArray:
+    # d(ln p) = -dH / scale height there, and dH is what the setting gives.
+    return (
+        -standard.pressure_at(pressure_altitude_m)
+        / standard.pressure_scale_height(pressure_altitude_m)
+        * _pressure_altitude_by_altimeter(altimeter_pa)
+    )
+
+
+def _scale_height_of(pressure_pa: FloatArray, temperature_k: FloatArray, dewpoint_k: FloatArray | None) -> FloatArray:
+    return standard.density_scale_height(altimetry.density_altitude(pressure_pa, temperature_k, dewpoint_k))
+
+
+def _density_altitude_by_altimeter(
+    altimeter_pa: FloatArray, elevation_m: FloatArray, temperature_k: FloatArray, dewpoint_k: FloatArray | None
+) -> FloatArray:
+    altitude_m = altimetry.pressure_altitude(altimeter_pa, elevation_m)
+    pressure_pa = standard.pressure_at(altitude_m)
+    log_density_by_pressure = 1.0 / pressure_pa
+    if dewpoint_k is not None:
+        # The pressure acts a second time: the same vapour is a smaller share of air under more pressure.
+        log_density_by_pressure = log_density_by_pressure + moist_air.moist_to_dry_slope_by_pressure(
+            pressure_pa, dewpoint_k
+        )
+    scale_height_m = _scale_height_of(pressure_pa, temperature_k, dewpoint_k)
+    return -scale_height_m * log_density_by_pressure * _station_pressure_by_altimeter(altimeter_pa, altitude_m)
+
+
+def _density_altitude_by_temperature(
+    altimeter_pa: FloatArray, elevation_m: FloatArray, temperature_k: FloatArray, dewpoint_k: FloatArray | None
+) -> FloatArray:
+    pressure_pa = altimetry.station_pressure(altimeter_pa, elevation_m)
+    return _scale_height_of(pressure_pa, temperature_k, dewpoint_k) / temperature_k
+
+
+def _density_altitude_by_dewpoint(
+    altimeter_pa: FloatArray, elevation_m: FloatArray, temperature_k: FloatArray, dewpoint_k: FloatArray | None
+) -> FloatArray:
+    pressure_pa = altimetry.station_pressure(altimeter_pa, elevation_m)
+    scale_height_m = _scale_height_of(pressure_pa, temperature_k, dewpoint_k)
+    if dewpoint_k is None:
+        return 0.0 * scale_height_m
+    return -scale_height_m * moist_air.moist_to_dry_slope_by_dewpoint(pressure_pa, dewpoint_k)
+
+
+def _density_altitude_uncertainty(
+    altimeter_pa: FloatArray,
+    elevation_m: FloatArray,
+    temperature_k: FloatArray,
+    dewpoint_k: FloatArray | None,
+    altimeter_uncertainty_pa: FloatArray,
+    temperature_uncertainty_k: FloatArray,
+    dewpoint_uncertainty_k: FloatArray,
+) -> FloatArray:
+    slopes = density_altitude_derivatives(altimeter_pa, elevation_m, temperature_k, dewpoint_k)
+    variance = (slopes.by_altimeter * altimeter_uncertainty_pa) ** 2
+    variance = variance + (slopes.by_temperature * temperature_uncertainty_k) ** 2
+    if dewpoint_k is not None:
+        variance = variance + (slopes.by_dewpoint * dewpoint_uncertainty_k) ** 2
+    return COVERAGE_FACTOR * np.sqrt(variance)
+
+
+def _pressure_altitude_uncertainty(altimeter_pa: FloatArray, altimeter_uncertainty_pa: FloatArray) -> FloatArray:
+    return COVERAGE_FACTOR * np.abs(_pressure_altitude_by_altimeter(altimeter_pa) * altimeter_uncertainty_pa)
+
+
+def _isa_deviation_uncertainty(
+    altimeter_pa: FloatArray,
+    elevation_m: FloatArray,
+    altimeter_uncertainty_pa: FloatArray,
+    temperature_uncertainty_k: FloatArray,
+) -> FloatArray:
+    rate_k_m = standard.lapse_rate_at(altimetry.pressure_altitude(altimeter_pa, elevation_m))
+    by_altimeter = rate_k_m * _pressure_altitude_by_altimeter(altimeter_pa)
+    variance = (by_altimeter * altimeter_uncertainty_pa) ** 2 + temperature_uncertainty_k**2
+    return COVERAGE_FACTOR * np.sqrt(variance)
