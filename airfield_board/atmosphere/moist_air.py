@@ -16,7 +16,7 @@ from typing import Final
 
 import numpy as np
 
-from airfield_board.atmosphere.evaluation import FloatArray, evaluated, positive
+from airfield_board.atmosphere.evaluation import FloatArray, evaluated, evaluated_together, positive, within
 from airfield_board.atmosphere.standard import GAS_CONSTANT_J_KG_K
 from airfield_board.units import HECTOPASCAL_PA, Number
 
@@ -119,26 +119,43 @@ def moist_to_dry_density(pressure_pa: Number | float, dewpoint_k: Number | float
     return evaluated(_moist_to_dry_density, pressure_pa, dewpoint_k)
 
 
-def moist_to_dry_slope_by_pressure(pressure_pa: Number | float, dewpoint_k: Number | float) -> Number:
-    """Return the derivative of the logarithm of `moist_to_dry_density` by pressure [1/Pa]; parameters as there."""
-    return evaluated(_moist_to_dry_slope_by_pressure, pressure_pa, dewpoint_k)
+def moist_to_dry_slopes(pressure_pa: Number | float, dewpoint_k: Number | float) -> tuple[Number, Number]:
+    """Exact derivatives of the logarithm of `moist_to_dry_density`.
 
+    Parameters
+    ----------
+    pressure_pa, dewpoint_k
+        As there.
 
-def moist_to_dry_slope_by_dewpoint(pressure_pa: Number | float, dewpoint_k: Number | float) -> Number:
-    """Return the derivative of the logarithm of `moist_to_dry_density` by dew point [1/K]; parameters as there."""
-    return evaluated(_moist_to_dry_slope_by_dewpoint, pressure_pa, dewpoint_k)
+    Returns
+    -------
+    by_pressure
+        [1/Pa], above 0.
+    by_dewpoint
+        [1/K], below 0.
+    """
+    by_pressure, by_dewpoint = evaluated_together(_moist_to_dry_slopes, pressure_pa, dewpoint_k)
+    return by_pressure, by_dewpoint
 
 
 def _saturation_vapour_pressure(temperature_k: FloatArray, pressure_pa: FloatArray) -> FloatArray:
-    inside = (temperature_k >= LOWEST_DEWPOINT_K) & (temperature_k <= HIGHEST_DEWPOINT_K)
-    if not inside.all():
-        temperature_k = np.where(inside, temperature_k, np.nan)
-    exponent = (
-        _INVERSE / temperature_k
-        + (_CONSTANT + (_LINEAR + _SQUARE * temperature_k) * temperature_k)
-        + _LOGARITHM * np.log(temperature_k)
-    )
-    return positive(np.exp(exponent) * (HECTOPASCAL_PA * _enhancement_factor(positive(pressure_pa) / HECTOPASCAL_PA)))
+    pressure_hpa = positive(pressure_pa) * (1.0 / HECTOPASCAL_PA)
+    return positive(_pure_vapour_pressure(temperature_k) * (HECTOPASCAL_PA * _enhancement_factor(pressure_hpa)))
+
+
+def _pure_vapour_pressure(temperature_k: FloatArray) -> FloatArray:
+    """Saturation vapour pressure without air [hPa]; steps are written over one another, as in `standard`."""
+    temperature_k = within(temperature_k, LOWEST_DEWPOINT_K, HIGHEST_DEWPOINT_K)
+    exponent = temperature_k * _SQUARE
+    exponent += _LINEAR
+    exponent *= temperature_k
+    exponent += _CONSTANT
+    term = _INVERSE / temperature_k
+    exponent += term
+    np.log(temperature_k, out=term)
+    term *= _LOGARITHM
+    exponent += term
+    return np.exp(exponent, out=exponent)
 
 
 def _enhancement_factor(pressure_hpa: FloatArray) -> FloatArray:
@@ -155,26 +172,22 @@ def _density(pressure_pa: FloatArray, temperature_k: FloatArray, dewpoint_k: Flo
 
 
 def _moist_to_dry_density(pressure_pa: FloatArray, dewpoint_k: FloatArray) -> FloatArray:
-    share = _saturation_vapour_pressure(dewpoint_k, pressure_pa) / pressure_pa
-    possible = share <= 1.0
-    if not possible.all():
-        share = np.where(possible, share, np.nan)
+    # f(p) / p as a polynomial of 1/p saves divisions.
+    by_pressure = HECTOPASCAL_PA / positive(pressure_pa)
+    share = by_pressure * -_ENHANCEMENT_LOSS
+    share += _ENHANCEMENT
+    share *= by_pressure
+    share += _ENHANCEMENT_RISE
+    share = within(share * _pure_vapour_pressure(dewpoint_k), 0.0, 1.0)
     return 1.0 - (1.0 - MOLAR_MASS_RATIO) * share
 
 
-def _moist_to_dry_slope_by_pressure(pressure_pa: FloatArray, dewpoint_k: FloatArray) -> FloatArray:
-    # The vapour's share f(p) e / p depends on the pressure twice: by the division and by the enhancement factor.
+def _moist_to_dry_slopes(pressure_pa: FloatArray, dewpoint_k: FloatArray) -> tuple[FloatArray, FloatArray]:
     ratio = _moist_to_dry_density(pressure_pa, dewpoint_k)
+    lost = (1.0 - ratio) / ratio
     pressure_hpa = pressure_pa / HECTOPASCAL_PA
-    factor_rise = (_ENHANCEMENT_RISE * pressure_hpa + _ENHANCEMENT_LOSS / pressure_hpa) / _enhancement_factor(
-        pressure_hpa
-    )
-    return (1.0 - ratio) / ratio * (1.0 - factor_rise) / pressure_pa
-
-
-def _moist_to_dry_slope_by_dewpoint(pressure_pa: FloatArray, dewpoint_k: FloatArray) -> FloatArray:
-    ratio = _moist_to_dry_density(pressure_pa, dewpoint_k)
-    saturation_slope = (
-        -_INVERSE / (dewpoint_k * dewpoint_k) + _LINEAR + 2.0 * _SQUARE * dewpoint_k + _LOGARITHM / dewpoint_k
-    )
-    return -(1.0 - ratio) / ratio * saturation_slope
+    # The vapour's share f(p) e / p depends on the pressure twice: by the division and by the enhancement factor.
+    factor_rise = _ENHANCEMENT_RISE * pressure_hpa + _ENHANCEMENT_LOSS / pressure_hpa
+    by_pressure = lost * (1.0 - factor_rise / _enhancement_factor(pressure_hpa)) / pressure_pa
+    vapour_rise = -_INVERSE / (dewpoint_k * dewpoint_k) + _LINEAR + 2.0 * _SQUARE * dewpoint_k + _LOGARITHM / dewpoint_k
+    return by_pressure, -lost * vapour_rise

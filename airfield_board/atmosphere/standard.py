@@ -15,7 +15,7 @@ from typing import Final
 
 import numpy as np
 
-from airfield_board.atmosphere.evaluation import FloatArray, evaluated
+from airfield_board.atmosphere.evaluation import FloatArray, evaluated, within
 from airfield_board.units import STANDARD_GRAVITY_M_S2, Number
 
 GAS_CONSTANT_J_KG_K: Final = 287.05287
@@ -195,24 +195,31 @@ def within_range(altitude_m: Number) -> Number:
 
 
 def _within_range(altitude_m: FloatArray) -> FloatArray:
-    inside = (altitude_m >= LOWEST_ALTITUDE_M - _ROUNDING_M) & (altitude_m <= HIGHEST_ALTITUDE_M + _ROUNDING_M)
-    return altitude_m if inside.all() else np.where(inside, altitude_m, np.nan)
+    return within(altitude_m, LOWEST_ALTITUDE_M - _ROUNDING_M, HIGHEST_ALTITUDE_M + _ROUNDING_M)
 
 
 def _power(base: FloatArray, exponent: float) -> FloatArray:
     # exp(k ln x) instead of x**k: numpy computes it about twice as fast, and so close to 1, where these bases lie, no
-    # digit that counts is lost.
-    return np.exp(np.log(base) * exponent)
+    # digit that counts is lost. It is written over the base, which is a step of the caller's: a million rows take as
+    # long as the memory they pass through.
+    np.log(base, out=base)
+    base *= exponent
+    return np.exp(base, out=base)
 
 
 def _temperature_at(altitude_m: FloatArray) -> FloatArray:
-    return SEA_LEVEL_TEMPERATURE_K - LAPSE_RATE_K_M * np.minimum(_within_range(altitude_m), TROPOPAUSE_ALTITUDE_M)
+    temperature_k = np.minimum(_within_range(altitude_m), TROPOPAUSE_ALTITUDE_M)
+    temperature_k *= -LAPSE_RATE_K_M
+    temperature_k += SEA_LEVEL_TEMPERATURE_K
+    return temperature_k
 
 
 def _pressure_at(altitude_m: FloatArray) -> FloatArray:
     altitude_m = _within_range(altitude_m)
-    temperature_ratio = 1.0 - altitude_m / _TEMPERATURE_HEIGHT_M
-    pressure_pa = SEA_LEVEL_PRESSURE_PA * _power(temperature_ratio, 1.0 / _TEMPERATURE_BY_PRESSURE)
+    temperature_ratio = altitude_m * (-1.0 / _TEMPERATURE_HEIGHT_M)
+    temperature_ratio += 1.0
+    pressure_pa = _power(temperature_ratio, 1.0 / _TEMPERATURE_BY_PRESSURE)
+    pressure_pa *= SEA_LEVEL_PRESSURE_PA
     above = altitude_m > TROPOPAUSE_ALTITUDE_M
     if above.any():
         falling = np.exp((TROPOPAUSE_ALTITUDE_M - altitude_m) / _TROPOPAUSE_SCALE_HEIGHT_M)
@@ -233,7 +240,9 @@ def _altitude_from_density(density_kg_m3: FloatArray) -> FloatArray:
 
 
 def _inverse(value: FloatArray, at_sea_level: float, at_tropopause: float, exponent: float) -> FloatArray:
-    altitude_m = _TEMPERATURE_HEIGHT_M - _TEMPERATURE_HEIGHT_M * _power(value / at_sea_level, exponent)
+    altitude_m = _power(value * (1.0 / at_sea_level), exponent)
+    altitude_m *= -_TEMPERATURE_HEIGHT_M
+    altitude_m += _TEMPERATURE_HEIGHT_M
     above = value < at_tropopause
     if above.any():
         # At the tropopause and above pressure and density fall alike, since temperature does not change.
@@ -243,7 +252,7 @@ def _inverse(value: FloatArray, at_sea_level: float, at_tropopause: float, expon
 
 
 def _pressure_scale_height(altitude_m: FloatArray) -> FloatArray:
-    return GAS_CONSTANT_J_KG_K / STANDARD_GRAVITY_M_S2 * _temperature_at(altitude_m)
+    return _temperature_at(altitude_m) * (GAS_CONSTANT_J_KG_K / STANDARD_GRAVITY_M_S2)
 
 
 def _density_scale_height(altitude_m: FloatArray) -> FloatArray:

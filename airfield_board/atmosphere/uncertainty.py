@@ -18,7 +18,7 @@ from typing import Final, Generic
 import numpy as np
 
 from airfield_board.atmosphere import altimetry, moist_air, standard
-from airfield_board.atmosphere.evaluation import FloatArray, evaluated
+from airfield_board.atmosphere.evaluation import FloatArray, evaluated, evaluated_together
 from airfield_board.units import Number
 
 COVERAGE_FACTOR: Final = 2.0
@@ -91,12 +91,10 @@ def density_altitude_derivatives(
     DensityAltitudeDerivatives
         Of floats, or of arrays.
     """
-    inputs = (altimeter_pa, elevation_m, temperature_k, dewpoint_k)
-    return DensityAltitudeDerivatives(
-        by_altimeter=evaluated(_density_altitude_by_altimeter, *inputs),
-        by_temperature=evaluated(_density_altitude_by_temperature, *inputs),
-        by_dewpoint=evaluated(_density_altitude_by_dewpoint, *inputs),
+    by_altimeter, by_temperature, by_dewpoint = evaluated_together(
+        _density_altitude_derivatives, altimeter_pa, elevation_m, temperature_k, dewpoint_k
     )
+    return DensityAltitudeDerivatives(by_altimeter=by_altimeter, by_temperature=by_temperature, by_dewpoint=by_dewpoint)
 
 
 def density_altitude_uncertainty(
@@ -193,49 +191,27 @@ def _pressure_altitude_by_altimeter(altimeter_pa: FloatArray) -> FloatArray:
     return -standard.pressure_scale_height(standard.altitude_from_pressure(altimeter_pa)) / altimeter_pa
 
 
-def _station_pressure_by_altimeter(altimeter_pa: FloatArray, pressure_altitude_m: FloatArray) -> FloatArray:
-    # d(ln p) = -dH / scale height there, and dH is what the setting gives.
-    return (
-        -standard.pressure_at(pressure_altitude_m)
-        / standard.pressure_scale_height(pressure_altitude_m)
-        * _pressure_altitude_by_altimeter(altimeter_pa)
+def _density_altitude_derivatives(
+    altimeter_pa: FloatArray, elevation_m: FloatArray, temperature_k: FloatArray, dewpoint_k: FloatArray | None
+) -> tuple[FloatArray, FloatArray, FloatArray]:
+    pressure_altitude_m = altimetry.pressure_altitude(altimeter_pa, elevation_m)
+    pressure_pa = standard.pressure_at(pressure_altitude_m)
+    # d(ln p) = -dH / scale height at the field, where dH is what the setting adds to the pressure altitude.
+    log_pressure_by_altimeter = -_pressure_altitude_by_altimeter(altimeter_pa) / standard.pressure_scale_height(
+        pressure_altitude_m
     )
-
-
-def _scale_height_of(pressure_pa: FloatArray, temperature_k: FloatArray, dewpoint_k: FloatArray | None) -> FloatArray:
-    return standard.density_scale_height(altimetry.density_altitude(pressure_pa, temperature_k, dewpoint_k))
-
-
-def _density_altitude_by_altimeter(
-    altimeter_pa: FloatArray, elevation_m: FloatArray, temperature_k: FloatArray, dewpoint_k: FloatArray | None
-) -> FloatArray:
-    altitude_m = altimetry.pressure_altitude(altimeter_pa, elevation_m)
-    pressure_pa = standard.pressure_at(altitude_m)
-    log_density_by_pressure = 1.0 / pressure_pa
+    log_density_by_log_pressure = np.ones_like(pressure_pa)
+    log_density_by_dewpoint = np.zeros_like(pressure_pa)
     if dewpoint_k is not None:
+        by_pressure, log_density_by_dewpoint = moist_air.moist_to_dry_slopes(pressure_pa, dewpoint_k)
         # The pressure acts a second time: the same vapour is a smaller share of air under more pressure.
-        log_density_by_pressure = log_density_by_pressure + moist_air.moist_to_dry_slope_by_pressure(
-            pressure_pa, dewpoint_k
-        )
-    scale_height_m = _scale_height_of(pressure_pa, temperature_k, dewpoint_k)
-    return -scale_height_m * log_density_by_pressure * _station_pressure_by_altimeter(altimeter_pa, altitude_m)
-
-
-def _density_altitude_by_temperature(
-    altimeter_pa: FloatArray, elevation_m: FloatArray, temperature_k: FloatArray, dewpoint_k: FloatArray | None
-) -> FloatArray:
-    pressure_pa = altimetry.station_pressure(altimeter_pa, elevation_m)
-    return _scale_height_of(pressure_pa, temperature_k, dewpoint_k) / temperature_k
-
-
-def _density_altitude_by_dewpoint(
-    altimeter_pa: FloatArray, elevation_m: FloatArray, temperature_k: FloatArray, dewpoint_k: FloatArray | None
-) -> FloatArray:
-    pressure_pa = altimetry.station_pressure(altimeter_pa, elevation_m)
-    scale_height_m = _scale_height_of(pressure_pa, temperature_k, dewpoint_k)
-    if dewpoint_k is None:
-        return 0.0 * scale_height_m
-    return -scale_height_m * moist_air.moist_to_dry_slope_by_dewpoint(pressure_pa, dewpoint_k)
+        log_density_by_log_pressure = 1.0 + pressure_pa * by_pressure
+    scale_height_m = standard.density_scale_height(altimetry.density_altitude(pressure_pa, temperature_k, dewpoint_k))
+    return (
+        -scale_height_m * log_density_by_log_pressure * log_pressure_by_altimeter,
+        scale_height_m / temperature_k,
+        -scale_height_m * log_density_by_dewpoint,
+    )
 
 
 def _density_altitude_uncertainty(
@@ -247,11 +223,12 @@ def _density_altitude_uncertainty(
     temperature_uncertainty_k: FloatArray,
     dewpoint_uncertainty_k: FloatArray,
 ) -> FloatArray:
-    slopes = density_altitude_derivatives(altimeter_pa, elevation_m, temperature_k, dewpoint_k)
-    variance = (slopes.by_altimeter * altimeter_uncertainty_pa) ** 2
-    variance = variance + (slopes.by_temperature * temperature_uncertainty_k) ** 2
+    by_altimeter, by_temperature, by_dewpoint = _density_altitude_derivatives(
+        altimeter_pa, elevation_m, temperature_k, dewpoint_k
+    )
+    variance = (by_altimeter * altimeter_uncertainty_pa) ** 2 + (by_temperature * temperature_uncertainty_k) ** 2
     if dewpoint_k is not None:
-        variance = variance + (slopes.by_dewpoint * dewpoint_uncertainty_k) ** 2
+        variance = variance + (by_dewpoint * dewpoint_uncertainty_k) ** 2
     return COVERAGE_FACTOR * np.sqrt(variance)
 
 
