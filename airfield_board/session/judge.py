@@ -12,7 +12,8 @@ from airfield_board.limits.in_force import LimitKey, fleet_schedules
 from airfield_board.limits.rules import Episode, JudgedRows, LimitChange, LimitJudge, LimitMemory
 from airfield_board.observations.conditions import ConditionsTable, conditions_of
 from airfield_board.observations.observation import CheckedTable, DewpointUse, ObservationTable, Verdict
-from airfield_board.observations.quality import FUTURE_US, QualityMemory, QualityRules, check
+from airfield_board.observations.quality import QualityMemory, QualityRules, check
+from airfield_board.observations.quality_judgement import FUTURE_US
 from airfield_board.units import MINUTE_US
 
 
