@@ -18,13 +18,14 @@ from PySide6.QtCore import QObject, Qt, QTimer, Signal
 from airfield_board.errors import UserError
 from airfield_board.session.board_state import BoardState
 
-_LOG = logging.getLogger(__name__)
+_logger = logging.getLogger(__name__)
 _LEAST_WATCHDOG_S = 10.0
 _WATCHDOG_POLLS = 3.0
 _UNTIL_FIRST_POLL_S = 5.0
 _THREAD_NAME = "recorder"
 _POLL_WORDS = "read the source"
 _OPEN_WORDS = "open the board"
+_CHANGED_MEANWHILE = "What you saw has changed meanwhile; nothing was done. Look again."
 _Made = TypeVar("_Made")
 
 
@@ -54,9 +55,6 @@ class BoardRecorder(Protocol):
     def accept_settings(self, name: str) -> BoardState:
         """Put the waiting settings in force."""
 
-    def note(self, text: str, about: str, initials: str) -> BoardState:
-        """Record a note."""
-
     def close(self) -> None:
         """Record the stop and close the history."""
 
@@ -71,10 +69,13 @@ class Request:
         In plain words, for messages: "acknowledge".
     run
         Called with the recorder, on its thread.
+    still_seen
+        Asked of the recorder's newest board just before ``run``: whether it is still what the person saw who asked.
     """
 
     what: str
     run: Callable[[BoardRecorder], BoardState] = field(repr=False)
+    still_seen: Callable[[BoardState], bool] = field(default=lambda _: True, repr=False)
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -225,14 +226,17 @@ class Worker(QObject):
         recorder = self._opened()
         if recorder is None:
             return
+        newest: BoardState | None = None
         try:
             while (request := self._requests.get()) is not None:
-                self._tell(_answer(recorder, request))
+                answer = _answer(recorder, request, newest)
+                newest = answer.state or newest
+                self._tell(answer)
         finally:
             try:
                 recorder.close()
             except UserError:
-                _LOG.exception("The history could not be closed in order")
+                _logger.exception("The history could not be closed in order")
 
     def _opened(self) -> BoardRecorder | None:
         recorder, problem = _tried(_OPEN_WORDS, self._open_recorder)
@@ -245,10 +249,12 @@ class Worker(QObject):
         try:
             self._answered.emit(answer)
         except RuntimeError:
-            _LOG.info("The window was gone before the recorder answered")
+            _logger.info("The window was gone before the recorder answered")
 
 
-def _answer(recorder: BoardRecorder, request: Request) -> Answer:
+def _answer(recorder: BoardRecorder, request: Request, newest: BoardState | None) -> Answer:
+    if newest is not None and not request.still_seen(newest):
+        return Answer(request=request, state=None, problem=_CHANGED_MEANWHILE)
     state, problem = _tried(request.what, lambda: request.run(recorder))
     return Answer(request=request, state=state, problem=problem)
 
@@ -264,5 +270,5 @@ def _tried(what: str, run: Callable[[], _Made]) -> tuple[_Made | None, str]:
     except UserError as error:
         return None, str(error)
     except Exception as error:
-        _LOG.exception("Unexpected failure: %s", what)
+        _logger.exception("Unexpected failure: %s", what)
         return None, f"An unexpected fault kept the program from this: {what} ({type(error).__name__}: {error})"

@@ -1,0 +1,197 @@
+"""Opens the window, or says what stands in the way; Qt is imported only once it is known to work."""
+
+import os
+import signal
+import sys
+import tempfile
+from collections.abc import Callable, Iterable
+from pathlib import Path
+from typing import TYPE_CHECKING, TextIO
+from zoneinfo import ZoneInfo
+
+from airfield_board.clock import SystemClock
+from airfield_board.configuration.profile import load_airfield
+from airfield_board.errors import UserError
+from airfield_board.session.board_state import BoardState, Mode
+from airfield_board.session.recorder import Recorder
+from airfield_board.training.demo import DEMO_POLL_S, DEMO_SPEED, DemoDay, running_clock, stepped_day
+from airfield_board.window import formatting
+from airfield_board.window.preflight import no_display_message, require_libraries, require_screen, usable_platform
+
+if TYPE_CHECKING:
+    from airfield_board.window.main_window import Feed
+
+DONE = 0
+_FOLDER_PREFIX = "airfield-board-demo-"
+DEMO_PICTURE = "airfield-board-demo.png"
+_DEMO_PICTURE_PX = (1440, 900)
+_INVENTED = "DEMO: an invented field, invented aircraft, an invented day. Not for use in flight."
+_ADVISES = "The program advises; the flight manual, local orders and the licensed people on duty decide."
+
+
+def run_window(profile_path: Path, *, scheme: str = "system") -> int:
+    """Open the window on an airfield and run until it is closed.
+
+    Parameters
+    ----------
+    profile_path
+        The airfield's profile.
+    scheme
+        ``light``, ``dark`` or ``system``.
+
+    Returns
+    -------
+    int
+        The exit code.
+
+    Raises
+    ------
+    UserError
+        Where the files are wrong, a system library is missing, or there is no display.
+    """
+    load_airfield(profile_path)
+    platform = require_screen(os.environ)
+
+    def start_feed() -> "Feed":
+        from airfield_board.window.main_window import Feed
+        from airfield_board.window.worker import Worker
+
+        clock = SystemClock()
+        return Feed(
+            clock=clock,
+            worker=Worker(lambda: Recorder.open(profile_path, clock=clock, mode=Mode.LIVE)),
+        )
+
+    return _run(platform, start_feed, scheme=scheme, replayable=False)
+
+
+def run_demo(*, scheme: str = "system", out: TextIO | None = None) -> int:
+    """Play the demo: in the window, or without a display in the terminal.
+
+    Parameters
+    ----------
+    scheme
+        ``light``, ``dark`` or ``system``.
+    out
+        Where the terminal's lines go; None: standard output.
+
+    Returns
+    -------
+    int
+        The exit code.
+
+    Raises
+    ------
+    UserError
+        Where a system library is missing.
+    """
+    if usable_platform(os.environ) is None:
+        return play_demo_in_terminal(out or sys.stdout, Path.cwd(), scheme=scheme)
+    platform = require_screen(os.environ)
+    with tempfile.TemporaryDirectory(prefix=_FOLDER_PREFIX, ignore_cleanup_errors=True) as folder:
+
+        def start_feed() -> "Feed":
+            from airfield_board.window.main_window import Feed
+            from airfield_board.window.worker import Worker
+
+            day = DemoDay(Path(tempfile.mkdtemp(dir=folder)), running_clock())
+            worker = Worker(day.open_recorder, before_poll=day.feed, poll_s=DEMO_POLL_S)
+            return Feed(clock=day.clock, worker=worker, speed=DEMO_SPEED)
+
+        return _run(platform, start_feed, scheme=scheme, replayable=True)
+
+
+def play_demo_in_terminal(out: TextIO, folder: Path, *, scheme: str = "light") -> int:
+    """Play the demo's day through the recorder, print its state changes, and paint the board.
+
+    Parameters
+    ----------
+    out
+        Where the lines go.
+    folder
+        Where the picture is put; where it cannot be written, in the folder for temporary files.
+
+    Returns
+    -------
+    int
+        The exit code.
+
+    Raises
+    ------
+    UserError
+        Where a system library that painting needs is missing.
+    """
+    require_libraries("offscreen")
+    why = no_display_message(os.environ).splitlines()[0]
+    out.write(f"{why} The demo plays here.\n{_INVENTED}\n\n")
+    with tempfile.TemporaryDirectory(prefix=_FOLDER_PREFIX, ignore_cleanup_errors=True) as playing:
+        state = write_changes(stepped_day(Path(playing)), out)
+    picture = _paint(state, folder, scheme)
+    out.write(f"\nThe day is over. The board as it stands: {picture}\n{formatting.CAUTION}\n{_ADVISES}\n")
+    return DONE
+
+
+def write_changes(boards: Iterable[BoardState], out: TextIO) -> BoardState:
+    """Write each status change as it comes, and return the last board.
+
+    Parameters
+    ----------
+    boards
+        In order of time; at least one.
+    out
+        Where the lines go.
+    """
+    seen: set[int] = set()
+    last: BoardState | None = None
+    for last in boards:
+        zone = ZoneInfo(last.airfield.time_zone)
+        air = last.conditions
+        height = f"density altitude {formatting.altitude(air.density_altitude_ft)} ft" if air is not None else ""
+        for change in reversed(last.changes):
+            if change.number not in seen:
+                seen.add(change.number)
+                when, word = formatting.clock(change.time, zone), formatting.STATE_WORDS[change.state]
+                out.write(f"{when}  {word:<10}  {change.label:<42}  {height}".rstrip() + "\n")
+                out.flush()
+    if last is None:
+        raise ValueError("no board was played")
+    return last
+
+
+def _paint(state: BoardState, folder: Path, scheme: str) -> Path:
+    os.environ["QT_QPA_PLATFORM"] = "offscreen"
+    from airfield_board.window.picture import paint_to_file
+
+    temporary = Path(tempfile.gettempdir())
+    chosen = folder if os.access(folder, os.W_OK) else temporary
+    picture = chosen / DEMO_PICTURE
+    paint_to_file(state, picture, size_px=_DEMO_PICTURE_PX, scheme="dark" if scheme == "dark" else "light")
+    return picture
+
+
+def _run(platform: str, start_feed: "Callable[[], Feed]", *, scheme: str, replayable: bool) -> int:
+    os.environ["QT_QPA_PLATFORM"] = platform  # what was found to work, and not what Qt might try instead
+    from PySide6.QtWidgets import QApplication
+
+    from airfield_board.window.main_window import MainWindow
+    from airfield_board.window.theme import SchemeChoice
+
+    application = QApplication(sys.argv[:1])
+    application.setApplicationName("Airfield Board")
+    application.setStyle("Fusion")
+    window = MainWindow(start_feed, choice=SchemeChoice(scheme), replayable=replayable)
+    problems: list[str] = []
+
+    def give_up(problem: str) -> None:
+        problems.append(problem)
+        window.close()
+
+    window.opening_failed.connect(give_up)
+    for number in (signal.SIGINT, signal.SIGTERM):
+        signal.signal(number, lambda *_: window.close())  # noticed at the next tick of the window's clock
+    window.show()
+    window.start()
+    code = application.exec()
+    if problems:
+        raise UserError("\n".join(problems))
+    return code

@@ -1,0 +1,448 @@
+"""The window around the board: its menus and keys, its clock, its watchdog, and what it asks the recorder for."""
+
+import logging
+from collections.abc import Callable, Sequence
+from dataclasses import dataclass
+from datetime import datetime, timedelta
+from functools import partial
+from zoneinfo import ZoneInfo
+
+from PySide6.QtCore import Qt, QTimer, Signal
+from PySide6.QtGui import QAction, QActionGroup, QCloseEvent, QKeySequence
+from PySide6.QtWidgets import QMainWindow, QMenu, QMessageBox, QStackedWidget, QVBoxLayout, QWidget
+
+from airfield_board.clock import Clock
+from airfield_board.session.board_state import BoardState, Mode, StatusChange
+from airfield_board.window import formatting
+from airfield_board.window.board_view import BoardView
+from airfield_board.window.dialogs import (
+    ADVISES,
+    AcknowledgeDialog,
+    MessagesDialog,
+    TypeInDialog,
+    WaitingSettingsDialog,
+    plain_label,
+)
+from airfield_board.window.entry import TypedObservation
+from airfield_board.window.notice_bar import NoticeBar
+from airfield_board.window.theme import SchemeChoice, apply_scheme, scheme_of
+from airfield_board.window.worker import Answer, Request, Worker
+
+_logger = logging.getLogger(__name__)
+_SMALLEST_PX = (1200, 760)
+_FIRST_PX = (1440, 900)
+_TICK_MS = 1000
+_FAST_TICK_MS = 250
+_RESUME_AFTER_S = 30.0
+_UNDO_FOR_S = 10.0
+_CLOSE_WAIT_S = 5.0
+_TRUST_NOTHING = timedelta(seconds=-1)
+_KEYS = (
+    ("1, 2", "Board page, Margin page"),
+    ("Up, Down", "move among the rows"),
+    ("A", "acknowledge the focused status change, or the newest"),
+    ("Shift+A", "acknowledge all"),
+    ("P", "read the source now"),
+    ("E", "type in an observation"),
+    ("F11", "full screen"),
+)
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Feed:
+    """What a window lives on.
+
+    Attributes
+    ----------
+    clock
+        What time it is on the board.
+    worker
+        Not yet started.
+    speed
+        Seconds of the clock to one real second.
+    """
+
+    clock: Clock
+    worker: Worker
+    speed: float = 1.0
+
+
+class MainWindow(QMainWindow):
+    """Shows one board, and keeps it going.
+
+    Signals
+    -------
+    opening_failed(object)
+        The recorder could not be opened; carries the message, a str.
+
+    Parameters
+    ----------
+    start_feed
+        Makes the clock and the worker; called once, and again each time the demo is played again.
+    choice
+        Light, dark, or as the system.
+    replayable
+        Whether the feed can be started again: the demo.
+    """
+
+    opening_failed = Signal(object)
+
+    def __init__(self, start_feed: Callable[[], Feed], *, choice: SchemeChoice, replayable: bool = False) -> None:
+        super().__init__()
+        self._start_feed = start_feed
+        self._feed = start_feed()
+        self._state: BoardState | None = None
+        self._initials = ""
+        self._last_tick: datetime | None = None
+        self._type_in: tuple[Request | None, TypeInDialog] | None = None
+        self._messages: MessagesDialog | None = None
+        self._acknowledged: dict[Request, tuple[tuple[int, ...], str]] = {}
+        self._poll_problem = ""
+        self._waiting_shown: object = ()
+
+        self.setWindowTitle("Airfield Board")
+        self.setMinimumSize(*_SMALLEST_PX)
+        self.resize(*_FIRST_PX)
+        self.view = BoardView()
+        self.notice = NoticeBar()
+        self._stack = QStackedWidget()
+        self._stack.addWidget(_nothing_yet())
+        self._stack.addWidget(self.view)
+        middle = QWidget()
+        column = QVBoxLayout(middle)
+        column.setContentsMargins(0, 0, 0, 0)
+        column.setSpacing(0)
+        column.addWidget(self._stack, 1)
+        column.addWidget(self.notice)
+        self.setCentralWidget(middle)
+        self._make_menus(choice, replayable=replayable)
+        self.choose_scheme(choice)
+
+        self.view.acknowledge_asked.connect(self._acknowledge_asked)
+        self.view.poll_asked.connect(self.poll)
+        self.view.type_in_asked.connect(self.type_in)
+        self._ticker = QTimer(self)
+        self._ticker.setTimerType(Qt.TimerType.PreciseTimer)
+        self._ticker.timeout.connect(self.tick)
+
+    @property
+    def state(self) -> BoardState | None:
+        """The newest board; None before the first."""
+        return self._state
+
+    @property
+    def worker(self) -> Worker:
+        """The worker in use."""
+        return self._feed.worker
+
+    def start(self) -> None:
+        """Begin reading, and let the clock run."""
+        self._listen()
+        self._ticker.start(_TICK_MS if self._feed.speed == 1.0 else _FAST_TICK_MS)
+
+    def play_again(self) -> None:
+        """Close the recorder and begin anew with a fresh feed."""
+        self._feed.worker.close(_CLOSE_WAIT_S)
+        self._feed.worker.deleteLater()
+        self._state = None
+        self._last_tick = None
+        self._stack.setCurrentIndex(0)
+        self.notice.dismiss()
+        self._feed = self._start_feed()
+        self._listen()
+
+    def choose_scheme(self, choice: SchemeChoice) -> None:
+        """Show light or dark colours, or those of the system."""
+        scheme = scheme_of(choice)
+        self.view.set_scheme(scheme)
+        apply_scheme(scheme)
+
+    def tick(self) -> None:
+        """Show the time and the age; trust nothing where the recorder has not answered for too long."""
+        state = self._state
+        now = self._feed.clock.now()
+        last, self._last_tick = self._last_tick, now
+        if last is not None and (now - last).total_seconds() > _RESUME_AFTER_S * self._feed.speed:
+            self.poll()  # the machine slept
+        if state is None:
+            return
+        worker = self._feed.worker
+        limit = timedelta(seconds=worker.watchdog_s * self._feed.speed)
+        self.view.set_watchdog(_TRUST_NOTHING if worker.silent else limit)
+        self.view.show_state(state, now)
+        if self._type_in is not None and self._type_in[0] is None:
+            self._type_in[1].refresh()
+
+    # What a person asks for.
+
+    def poll(self) -> None:
+        """Read the source now."""
+        self._feed.worker.poll()
+
+    def acknowledge(self) -> None:
+        """Ask who has seen the focused status change, or the newest that waits."""
+        if self._state is None:
+            return
+        waiting = [change for change in self._state.changes if change.open]
+        focused = self.view.focused_change()
+        self._ask_who_saw([change for change in waiting if change.number == focused] or waiting[:1])
+
+    def acknowledge_all(self) -> None:
+        """Ask who has seen all that waits."""
+        if self._state is not None:
+            self._ask_who_saw([change for change in self._state.changes if change.open])
+
+    def type_in(self) -> None:
+        """Ask for an observation."""
+        if self._state is None or self._type_in is not None:
+            return
+        dialog = TypeInDialog(self._state.airfield, self._initials, lambda: self._feed.clock.now(), self)
+        self._type_in = (None, dialog)
+        dialog.typed.connect(self._record_typed)
+        dialog.finished.connect(self._type_in_closed)
+        dialog.open()
+
+    def show_waiting_settings(self) -> None:
+        """Show the settings that wait, and ask who accepts them."""
+        if self._state is None or not self._state.waiting:
+            return
+        waiting = self._state.waiting
+        dialog = WaitingSettingsDialog(waiting, self._initials, self)
+
+        def accept(name: str) -> None:
+            self._initials = name
+            self._feed.worker.ask(
+                Request(
+                    what="accept the settings",
+                    run=lambda recorder: recorder.accept_settings(name),
+                    still_seen=lambda newest: newest.waiting == waiting,
+                )
+            )
+
+        dialog.accepted_by.connect(accept)
+        dialog.open()
+
+    def show_messages(self) -> None:
+        """List the messages and the rows not used; the list goes on with the board."""
+        if self._state is None:
+            return
+        if self._messages is None:
+            self._messages = MessagesDialog(self._state, self)
+            self._messages.destroyed.connect(self._messages_closed)
+        self._messages.show()
+        self._messages.raise_()
+
+    def show_keys(self) -> None:
+        """Say which key does what."""
+        self._tell("Keys", "\n".join(f"{key}:  {does}" for key, does in _KEYS))
+
+    def show_about(self) -> None:
+        """Say what the program is, and what it is not."""
+        invented = "\n\nThis is the demo: its field, aircraft and weather are invented." if self._in_demo() else ""
+        self._tell(
+            "About Airfield Board",
+            "Airfield Board shows which types may depart at the present density altitude.\n\n"
+            f"{ADVISES}\n\n{formatting.CAUTION}{invented}",
+        )
+
+    def set_full_screen(self, full: bool) -> None:
+        """Show the board alone on the whole screen, or as before."""
+        self.menuBar().setVisible(not full)
+        if full:
+            self.showFullScreen()
+        else:
+            self.showNormal()
+
+    def show_page(self, page: int) -> None:
+        """Show a page, by its place from 0."""
+        self.view.show_page(page)
+
+    # What the recorder answers.
+
+    def _listen(self) -> None:
+        worker = self._feed.worker
+        worker.state_came.connect(self._take_state)
+        worker.ended.connect(self._take_end)
+        worker.start()
+
+    def _take_state(self, state: BoardState) -> None:
+        self._state = state
+        self.setWindowTitle(f"{state.airfield.name} · Airfield Board")
+        if self._stack.currentIndex() == 0:
+            self._stack.setCurrentIndex(1)
+        self.tick()
+        if self._messages is not None:
+            self._messages.show_state(state)
+        self._refresh_actions(state)
+        if state.waiting != self._waiting_shown:
+            self._waiting_shown = state.waiting
+            if state.waiting:
+                self.notice.say(
+                    f"{_count(len(state.waiting), 'loosened setting')} waiting; what is in force holds until accepted.",
+                    action="Look at it",
+                    act=self.show_waiting_settings,
+                )
+
+    def _take_end(self, answer: Answer) -> None:
+        if not answer.opened:
+            self.opening_failed.emit(answer.problem)
+            return
+        if self._type_in is not None and self._type_in[0] is answer.request:
+            self._end_type_in(answer)
+            return
+        acknowledged = self._acknowledged.pop(answer.request, None)
+        if answer.problem:
+            if answer.problem != self._poll_problem:
+                self.notice.say(answer.problem)
+            self._poll_problem = answer.problem
+            return
+        self._poll_problem = ""
+        if acknowledged is not None:
+            numbers, initials = acknowledged
+            self.notice.say(
+                f"{_count(len(numbers), 'status change')} acknowledged by {initials}.",
+                action="Undo",
+                act=lambda: self._withdraw(numbers, initials),
+                for_s=_UNDO_FOR_S,
+            )
+
+    def _ask_who_saw(self, changes: Sequence[StatusChange]) -> None:
+        if not changes or self._state is None:
+            return
+        dialog = AcknowledgeDialog(changes, ZoneInfo(self._state.airfield.time_zone), self._initials, self)
+
+        def acknowledge(initials: str) -> None:
+            self._initials = initials
+            request = Request(what="acknowledge", run=lambda recorder: recorder.acknowledge(dialog.numbers, initials))
+            self._acknowledged[request] = (dialog.numbers, initials)
+            self._feed.worker.ask(request)
+
+        dialog.acknowledged.connect(acknowledge)
+        dialog.open()
+
+    def _acknowledge_asked(self, asked: object) -> None:
+        if self._state is not None:
+            wanted = set(asked) if isinstance(asked, (tuple, list, frozenset, set)) else {asked}
+            self._ask_who_saw([change for change in self._state.changes if change.open and change.number in wanted])
+
+    def _withdraw(self, numbers: tuple[int, ...], initials: str) -> None:
+        self._feed.worker.ask(
+            Request(
+                what="withdraw the acknowledgement",
+                run=lambda recorder: recorder.withdraw_acknowledgement(numbers, initials),
+            )
+        )
+
+    def _record_typed(self, typed: TypedObservation) -> None:
+        if self._type_in is None:
+            return
+        self._initials = typed.initials
+        request = Request(
+            what="record the typed-in observation",
+            run=lambda recorder: recorder.type_in(
+                time=typed.time,
+                altimeter_hpa=typed.altimeter_hpa,
+                temperature_c=typed.temperature_c,
+                dewpoint_c=typed.dewpoint_c,
+                initials=typed.initials,
+            ),
+        )
+        self._type_in = (request, self._type_in[1])
+        self._feed.worker.ask(request)
+
+    def _end_type_in(self, answer: Answer) -> None:
+        if self._type_in is None:
+            return
+        dialog = self._type_in[1]
+        if answer.problem:
+            self._type_in = (None, dialog)
+            dialog.refuse(answer.problem)
+        else:
+            dialog.accept()
+
+    def _type_in_closed(self) -> None:
+        self._type_in = None
+
+    def _messages_closed(self) -> None:
+        self._messages = None
+
+    # The window itself.
+
+    def _make_menus(self, choice: SchemeChoice, *, replayable: bool) -> None:
+        bar = self.menuBar()
+        observation = bar.addMenu("&Observation")
+        self._add(observation, "&Read the source now", self.poll, "P")
+        self._add(observation, "&Type one in …", self.type_in, "E")
+        self._add(observation, "&Messages and unused rows …", self.show_messages, "M")
+        changes = bar.addMenu("&Changes")
+        self._acknowledge_action = self._add(changes, "&Acknowledge …", self.acknowledge, "A")
+        self._acknowledge_all_action = self._add(changes, "Acknowledge a&ll …", self.acknowledge_all, "Shift+A")
+        settings = bar.addMenu("&Settings")
+        self._waiting_action = self._add(settings, "&Waiting …", self.show_waiting_settings)
+        view = bar.addMenu("&View")
+        self._add(view, "&Board", lambda: self.show_page(0), "1")
+        self._add(view, "&Margin", lambda: self.show_page(1), "2")
+        view.addSeparator()
+        group = QActionGroup(self)
+        for each, words in (
+            (SchemeChoice.LIGHT, "&Light"),
+            (SchemeChoice.DARK, "&Dark"),
+            (SchemeChoice.SYSTEM, "&As the system"),
+        ):
+            action = self._add(view, words, partial(self.choose_scheme, each))
+            action.setCheckable(True)
+            action.setChecked(each is choice)
+            group.addAction(action)
+        view.addSeparator()
+        full = self._add(view, "&Full screen", lambda: self.set_full_screen(not self.isFullScreen()), "F11")
+        full.setObjectName("full screen")
+        if replayable:
+            demo = bar.addMenu("&Demo")
+            self._add(demo, "&Play the day again", self.play_again)
+        about = bar.addMenu("&Help")
+        self._add(about, "&Keys", self.show_keys)
+        self._add(about, "&About", self.show_about)
+
+    def _add(self, menu: QMenu, words: str, act: Callable[[], object], key: str = "") -> QAction:
+        action = QAction(words, self)
+        if key:
+            action.setShortcut(QKeySequence(key))
+        action.triggered.connect(lambda: act())
+        menu.addAction(action)
+        self.addAction(action)  # so that the key works where the menu is hidden
+        return action
+
+    def _refresh_actions(self, state: BoardState) -> None:
+        count = sum(change.open for change in state.changes)
+        self._acknowledge_action.setEnabled(count > 0)
+        self._acknowledge_all_action.setEnabled(count > 0)
+        self._waiting_action.setEnabled(bool(state.waiting))
+        self._waiting_action.setText(f"&Waiting ({len(state.waiting)}) …" if state.waiting else "&Waiting …")
+
+    def _in_demo(self) -> bool:
+        return self._state is not None and self._state.mode is Mode.DEMO
+
+    def _tell(self, title: str, text: str) -> None:
+        box = QMessageBox(self)
+        box.setAttribute(Qt.WidgetAttribute.WA_DeleteOnClose)
+        box.setTextFormat(Qt.TextFormat.PlainText)
+        box.setWindowTitle(title)
+        box.setText(text)
+        box.open()
+
+    def closeEvent(self, event: QCloseEvent) -> None:
+        """Let the recorder finish and close the history; one that hangs ends with the program."""
+        self._ticker.stop()
+        if not self._feed.worker.close(_CLOSE_WAIT_S):
+            _logger.warning("The recorder did not close in %.0f s; its stop is not recorded", _CLOSE_WAIT_S)
+        super().closeEvent(event)
+
+
+def _nothing_yet() -> QWidget:
+    label = plain_label("NO DATA\n\nNothing has been read yet. Reading …")
+    label.setAlignment(Qt.AlignmentFlag.AlignCenter)
+    return label
+
+
+def _count(number: int, what: str) -> str:
+    return f"1 {what}" if number == 1 else f"{number} {what}s"
