@@ -168,7 +168,7 @@ class MainWindow(QMainWindow):
             return
         worker = self._feed.worker
         limit = timedelta(seconds=worker.watchdog_s * self._feed.speed)
-        self.view.set_watchdog(_TRUST_NOTHING if worker.silent else limit)
+        self.view.set_watchdog(_TRUST_NOTHING if worker.is_silent() else limit)
         self.view.show_state(state, now)
         if self._type_in is not None and self._type_in[0] is None:
             self._type_in[1].refresh()

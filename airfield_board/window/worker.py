@@ -154,9 +154,8 @@ class Worker(QObject):
         """Longest real time without a board after which the window trusts nothing [s]."""
         return max(_WATCHDOG_POLLS * self._poll_s, _LEAST_WATCHDOG_S)
 
-    @property
-    def silent(self) -> bool:
-        """Whether no board has come for longer than the watchdog allows."""
+    def is_silent(self) -> bool:
+        """Return whether no board has come for longer than the watchdog allows."""
         return self._monotonic() - self._last_state_s > self.watchdog_s
 
     def start(self) -> None:
