@@ -172,7 +172,7 @@ class TypeInDialog(_Form):
         """Say why the recorder did not take it; the form can be corrected."""
         self._waiting = False
         self.refresh()
-        self.said.setText(f"Not used: {problem}")
+        self.said.setText(problem)
 
     def _entry(self) -> Entry:
         fields = Fields(

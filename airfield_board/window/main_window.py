@@ -320,10 +320,9 @@ class MainWindow(QMainWindow):
         dialog.acknowledged.connect(acknowledge)
         dialog.open()
 
-    def _acknowledge_asked(self, asked: object) -> None:
+    def _acknowledge_asked(self, numbers: tuple[int, ...]) -> None:
         if self._state is not None:
-            wanted = set(asked) if isinstance(asked, (tuple, list, frozenset, set)) else {asked}
-            self._ask_who_saw([change for change in self._state.changes if change.open and change.number in wanted])
+            self._ask_who_saw([change for change in self._state.changes if change.open and change.number in numbers])
 
     def _withdraw(self, numbers: tuple[int, ...], initials: str) -> None:
         self._feed.worker.ask(
@@ -357,6 +356,7 @@ class MainWindow(QMainWindow):
         if answer.problem:
             self._type_in = (None, dialog)
             dialog.refuse(answer.problem)
+            self.poll()  # what was not used may have changed the board all the same
         else:
             dialog.accept()
 
