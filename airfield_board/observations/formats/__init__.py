@@ -1,1 +1,1 @@
-"""One module a format; the format is recognised from the content."""
+"""Observation formats: one module each; the format of a file is recognised from its content."""
