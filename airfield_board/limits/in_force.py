@@ -48,13 +48,14 @@ class Standing:
         Lowest limit at the greatest weight among numbers and tables by weight; None where there are only tables by
         pressure altitude.
     light_gain
-        How much higher the limit at the least weight is, 0 where weight does not matter.
+        How much higher the limit at the least weight is, 0 where weight does not matter; of several tables the weight
+        is the least that all of them have.
     tables
         Tables of temperature by pressure altitude, limits in ``unit``.
     weights
         Tables by weight, limits in ``unit``.
     near_band, deadband, off_delay_us
-        Those of the governing entry.
+        The greatest among the entries that can be the lowest.
     guarded
         Whether value + uncertainty is compared.
     governing
@@ -91,7 +92,9 @@ class Standing:
         outside = np.zeros(count, dtype=np.bool_)
         for table in self.tables:
             value = np.interp(pressure_altitude_ft, table.altitudes_ft, table.limits)
-            left = (pressure_altitude_ft < table.altitudes_ft[0]) | (pressure_altitude_ft > table.altitudes_ft[-1])
+            left = (table.altitudes_ft[0] - pressure_altitude_ft >= EQUAL) | (
+                pressure_altitude_ft - table.altitudes_ft[-1] >= EQUAL
+            )
             outside |= left | np.isnan(pressure_altitude_ft)
             limit = np.minimum(limit, np.where(left, np.inf, value))
         limit[~np.isfinite(limit)] = np.nan
@@ -167,12 +170,21 @@ def _at_greatest_weight(entry: Limit) -> float:
             return number
 
 
-def _at_least_weight(entry: Limit) -> float:
+def _at_weight(entry: Limit, weight_lb: float) -> float:
+    """Return the limit at a weight, at the end of a table that does not reach there."""
     match entry.value:
         case WeightTable() as table:
-            return table.limits[0]
+            weights_lb = [weight_in_lb(weight, table.weight_unit) for weight in table.weights]
+            return float(np.interp(weight_lb, weights_lb, table.limits))
         case _:
             return _at_greatest_weight(entry)
+
+
+def _at_least_weight(entries: Sequence[Limit]) -> list[float]:
+    """Return the limit of each entry at the least weight that all tables by weight have."""
+    tables = [entry.value for entry in entries if isinstance(entry.value, WeightTable)]
+    least_lb = max((weight_in_lb(table.weights[0], table.weight_unit) for table in tables), default=0.0)
+    return [_at_weight(entry, least_lb) for entry in entries]
 
 
 def standing_of(entries: Sequence[Limit]) -> Standing:
@@ -186,8 +198,8 @@ def standing_of(entries: Sequence[Limit]) -> Standing:
     Returns
     -------
     Standing
-        Where several tables by pressure altitude, or one and something else, count together, the bands are the
-        greatest of all: which entry rules depends on the pressure altitude.
+        Which entry is the lowest can depend on the weight or the pressure altitude, and two can be equal: the bands
+        are then the greatest among those that can be the lowest, so that none of them is cut short.
     """
     unit = entries[0].unit
     alike = [_converted(entry, unit) for entry in entries]
@@ -200,9 +212,16 @@ def standing_of(entries: Sequence[Limit]) -> Standing:
     constant = [each for each in alike if not isinstance(each.value, PressureAltitudeTable)]
     fixed = min((_at_greatest_weight(each) for each in constant), default=None)
     light_gain = 0.0
+    can_rule = alike
     if fixed is not None and not tables:
-        light_gain = min(_at_least_weight(each) for each in constant) - fixed
-    bands = alike if tables else [entry]
+        at_least_weight = _at_least_weight(constant)
+        lightest = min(at_least_weight)
+        light_gain = lightest - fixed
+        can_rule = [
+            each
+            for each, light in zip(constant, at_least_weight, strict=True)
+            if _at_greatest_weight(each) - fixed < EQUAL or light - lightest < EQUAL
+        ]
     return Standing(
         quantity=entry.quantity,
         unit=unit,
@@ -210,9 +229,9 @@ def standing_of(entries: Sequence[Limit]) -> Standing:
         light_gain=light_gain,
         tables=tables,
         weights=weights,
-        near_band=max(each.near_band for each in bands),
-        deadband=max(each.deadband for each in bands),
-        off_delay_us=round(max(each.off_delay_min for each in bands) * MINUTE_US),
+        near_band=max(each.near_band for each in can_rule),
+        deadband=max(each.deadband for each in can_rule),
+        off_delay_us=round(max(each.off_delay_min for each in can_rule) * MINUTE_US),
         guarded=any(each.guarded for each in alike),
         governing=entries[governing],
     )
@@ -244,9 +263,10 @@ class Schedule:
 def _schedule(key: LimitKey, entries: Sequence[Limit], zone: ZoneInfo) -> Schedule:
     days: set[date] = set()
     for entry in entries:
-        if entry.valid_from is not None:
+        # The first and the last day of the calendar stand for "open": there is no day before or after them.
+        if entry.valid_from is not None and entry.valid_from > date.min:
             days.add(entry.valid_from)
-        if entry.valid_until is not None:
+        if entry.valid_until is not None and entry.valid_until < date.max:
             days.add(entry.valid_until + timedelta(days=1))
     ordered = sorted(days)
     edges = tuple(us_from_time(start_of_local_day(day, zone)) for day in ordered)

@@ -294,12 +294,17 @@ class LimitJudge:
     def _judge_unlimited(self, rows: JudgedRows, start: int, stop: int) -> None:
         """No entry is in force: a hold of the day before ends with the first valid observation, then no state."""
         for row in range(start, stop):
+            if self.memory.state is None:
+                break
+            if rows.stale_at_us[row]:
+                self.go_stale(int(rows.stale_at_us[row]))
             if rows.valid[row]:
-                memory = self.memory
-                if memory.held:
+                if self.memory.held:
                     self._end_episode(int(rows.time_us[row]))
-                self.memory = LimitMemory(last_us=int(rows.time_us[stop - 1]))
-                return
+                self.memory = LimitMemory()
+        valid_us = rows.time_us[start:stop][rows.valid[start:stop]]
+        if len(valid_us):
+            self.memory.last_us = int(valid_us[-1])
 
     # -- one row
 
@@ -421,6 +426,11 @@ class LimitJudge:
             self._valid(standing, row)
         memory.last_us = last_us
 
+    def retire(self, when_us: int) -> None:
+        """End the open episode: the limit is gone from the settings."""
+        if self.memory.held:
+            self._end_episode(when_us)
+
     # -- what follows
 
     def _delay_us(self, standing: Standing) -> int:
@@ -455,16 +465,17 @@ class LimitJudge:
 
     def _end_episode(self, end_us: int) -> None:
         memory = self.memory
-        if memory.gap_from_us is not None:
-            memory.gap_us += end_us - memory.gap_from_us
-            memory.gap_from_us = None
+        self._ended.append(self._episode(end_us, end_us))
         memory.held = False
         memory.slow = False
         memory.run_us = None
-        self._ended.append(self._episode(end_us, end_us))
+        memory.gap_from_us = None
 
     def _episode(self, end_us: int | None, until_us: int) -> Episode:
         memory = self.memory
+        gap_us = memory.gap_us
+        if memory.gap_from_us is not None:
+            gap_us += max(0, until_us - memory.gap_from_us)
         return Episode(
             key=self.schedule.key,
             unit=memory.unit,
@@ -473,7 +484,7 @@ class LimitJudge:
             peak=memory.peak,
             worst_margin=memory.worst_margin,
             minutes=(until_us - memory.start_us) / MINUTE_US,
-            minutes_without_data=memory.gap_us / MINUTE_US,
+            minutes_without_data=gap_us / MINUTE_US,
             limit=memory.onset_limit,
         )
 
@@ -582,7 +593,7 @@ def _plain(standing: Standing, row: _Reading) -> State:
 
 def _lingering(standing: Standing, was: State | None, plain: State, over: float) -> State:
     """Return the state outside a hold, given the one before: better by a deadband, worse at once."""
-    if was is State.REDUCED and over >= EQUAL - standing.deadband:
+    if was is State.REDUCED and standing.light_gain > 0.0 and over >= EQUAL - standing.deadband:
         return State.REDUCED
     if (
         was in (State.REDUCED, State.NEAR)
