@@ -107,10 +107,12 @@ class Past:
         One over 24 h older than the last valid observation can do neither.
         """
         first_us = late.time_us if self.first_dewpoint_us is None else min(self.first_dewpoint_us, late.time_us)
+        known = replace(self, first_dewpoint_us=first_us) if first_us != self.first_dewpoint_us else self
+        if self.last_valid is not None and self.last_valid.time_us - late.time_us > DAY_US:
+            return known
         after = tuple(entry for entry in self.highest_dewpoints if entry.time_us >= late.time_us)
-        old = self.last_valid is not None and self.last_valid.time_us - late.time_us > DAY_US
-        if old or (after and after[0].dewpoint_c >= late.dewpoint_c):
-            return self if first_us == self.first_dewpoint_us else replace(self, first_dewpoint_us=first_us)
+        if after and after[0].dewpoint_c >= late.dewpoint_c:
+            return known
         before = self.highest_dewpoints[: len(self.highest_dewpoints) - len(after)]
         higher = tuple(entry for entry in before if entry.dewpoint_c > late.dewpoint_c)
         return replace(self, first_dewpoint_us=first_us, highest_dewpoints=(*higher, late, *after))

@@ -97,8 +97,9 @@ class Stretches:
             end = min(end, dewpoint if self._auto else first)
         elif self._humid:
             end = min(end, self._next(self._silent, first))
-            if dewpoint > first:
-                end = min(end, self._end_of_carrying(past))
+            silent = self._end_of_carrying(past)
+            if silent < dewpoint:
+                end = min(end, silent)
         last = past.last_dewpoint
         if dewpoint < end and last and abs(self._rows.dewpoint_c[dewpoint] - last.dewpoint_c) > DEWPOINT_STEP_C:
             end = dewpoint
