@@ -1,0 +1,258 @@
+"""The Board page: the day plot, its axes, and the rows that hang on it."""
+
+import math
+from datetime import date, timedelta
+from typing import TYPE_CHECKING
+
+from PySide6.QtCore import QRectF, Qt, QTimer, Signal
+from PySide6.QtGui import QColor, QPainter, QResizeEvent, QShowEvent
+from PySide6.QtWidgets import QWidget
+
+from airfield_board.clock import local_day
+from airfield_board.session.board_state import OperationLine
+from airfield_board.units import ft_from_m
+from airfield_board.window import formatting
+from airfield_board.window.axes import AltitudeAxis, TimeAxis, board_range, day_bounds, hour_marks
+from airfield_board.window.canvas import Canvas
+from airfield_board.window.day_scene import DayScene, Shelf
+from airfield_board.window.fonts import MEDIUM, SEMIBOLD
+from airfield_board.window.lettering import Lettering, baseline_for_middle, width_of
+from airfield_board.window.no_data_card import NoDataCard
+from airfield_board.window.palette import Palette
+from airfield_board.window.reading import View
+from airfield_board.window.row_panel import GUTTER_PX, RowPanel, columns_for
+from airfield_board.window.row_words import tip_of, words_of
+
+if TYPE_CHECKING:
+    from airfield_board.window.plot import DayPlot
+
+AXIS_PX = 58
+PLOT_TOP_PX = 44
+TIME_AXIS_PX = 30
+_TICK_ROOM_PX = 24.0
+_HOUR_ROOM_PX = 56.0
+_MARGINS_PX = 32
+"""What the window is wider than the page."""
+
+
+class BoardPage(Canvas):
+    """Plot and rows on one altitude axis.
+
+    Signals
+    -------
+    selected(str)
+        The key of the row pointed at; empty for none.
+    poll_asked(), type_in_asked()
+        From the card that stands there when there is no current observation.
+    """
+
+    selected = Signal(str)
+    poll_asked = Signal()
+    type_in_asked = Signal()
+
+    def __init__(self, parent: QWidget | None = None) -> None:
+        super().__init__(parent)
+        self.rows = RowPanel(self)
+        self.card = NoDataCard(self)
+        self._view: View | None = None
+        self._scene: DayScene | None = None
+        self._plot: DayPlot | None = None
+        self._range: tuple[date, str, tuple[float, float]] | None = None
+        self.rows.selected.connect(self._on_selected)
+        self.card.poll_asked.connect(self.poll_asked)
+        self.card.type_in_asked.connect(self.type_in_asked)
+
+    def set_colours(self, colours: Palette) -> None:
+        """Take other colours, in all parts."""
+        super().set_colours(colours)
+        self.rows.set_colours(colours)
+        self.card.set_colours(colours)
+        self._show_plot()
+
+    def show_view(self, view: View) -> None:
+        """Show another state or time."""
+        self._view = view
+        words = [words_of(row, view) for row in view.rows]
+        conditions = view.state.conditions if view.trusted else None
+        level_ft = conditions.density_altitude_ft if conditions is not None else None
+        unit = view.state.airfield.altitude_unit
+        label = f"DA now {formatting.altitude(level_ft, unit)} {unit}" if level_ft is not None else ""
+        self.rows.show_rows(
+            words, [tip_of(row, view) for row in view.rows], level_ft, label, self.width() + _MARGINS_PX
+        )
+        self.card.show_view(view)
+        self._arrange()
+
+    def ensure_plot(self) -> None:
+        """Make the plot now, rather than after the first painting: its import takes longer than all the rest."""
+        if self._plot is None:
+            from airfield_board.window.plot import DayPlot
+
+            self._plot = DayPlot(self)
+            self._plot.lower()
+            self._place_plot()
+            self._show_plot()
+            self._plot.show()
+
+    def showEvent(self, event: QShowEvent) -> None:
+        """Ask for the plot once the first picture stands."""
+        super().showEvent(event)
+        QTimer.singleShot(0, self.ensure_plot)
+
+    def resizeEvent(self, event: QResizeEvent) -> None:
+        """Place all parts anew."""
+        super().resizeEvent(event)
+        if self._view is not None:
+            self.show_view(self._view)
+
+    def _arrange(self) -> None:
+        """Give plot and rows their places and their common axes, and make the scene."""
+        view = self._view
+        if view is None:
+            return
+        columns = columns_for(len(view.rows), self.width() + _MARGINS_PX)
+        rows_width = int(GUTTER_PX + columns.width)
+        plot_width = max(self.width() - AXIS_PX - rows_width, 120)
+        self.rows.setGeometry(AXIS_PX + plot_width, 0, self.width() - AXIS_PX - plot_width, self.height())
+        low_ft, high_ft = self._altitude_range(view)
+        bottom = float(self.height() - TIME_AXIS_PX)
+        self.rows.set_axis(AltitudeAxis(low_ft=low_ft, high_ft=high_ft, top_px=PLOT_TOP_PX, bottom_px=bottom))
+        start, end = day_bounds(view.state, view.now, view.zone)
+        time = TimeAxis(start=start, end=end, left_px=0.0, right_px=float(plot_width))
+        per_hour_px = plot_width / ((end - start) / timedelta(hours=1))
+        every_h = next((step for step in (3, 6) if step * per_hour_px >= _HOUR_ROOM_PX), 12)
+        conditions = view.state.conditions if view.trusted else None
+        observation = view.state.observation
+        scene = DayScene(
+            altitude=AltitudeAxis(low_ft=low_ft, high_ft=high_ft, top_px=0.0, bottom_px=bottom - PLOT_TOP_PX),
+            time=time,
+            hours=tuple(hour_marks(start, end, view.zone, every_h)),
+            curve=view.state.curve,
+            shelves=tuple(shelf for row in view.rows if (shelf := shelf_of(row, view)) is not None),
+            level_ft=conditions.density_altitude_ft if conditions is not None else None,
+            observed=observation.time if observation is not None else None,
+            now=view.now.replace(second=0, microsecond=0),
+            gap=not view.trusted,
+        )
+        if scene != self._scene:
+            self._scene = scene
+            self._place_plot()
+            self._show_plot()
+            self.update()
+        self._place_card(plot_width)
+
+    def _altitude_range(self, view: View) -> tuple[float, float]:
+        """Ends of the altitude axis: within a day they only move apart, so that the picture stays still."""
+        day = local_day(view.now, view.zone)
+        low_ft, high_ft = board_range(view.state)
+        if self._range is not None and self._range[:2] == (day, view.state.airfield.name):
+            low_ft, high_ft = min(low_ft, self._range[2][0]), max(high_ft, self._range[2][1])
+        self._range = (day, view.state.airfield.name, (low_ft, high_ft))
+        return low_ft, high_ft
+
+    def _place_plot(self) -> None:
+        if self._plot is not None and self._scene is not None:
+            width = int(self._scene.time.right_px)
+            height = int(self._scene.altitude.bottom_px)
+            self._plot.setGeometry(AXIS_PX, PLOT_TOP_PX, width, height)
+
+    def _show_plot(self) -> None:
+        if self._plot is not None and self._scene is not None:
+            self._plot.show_scene(self._scene, self.colours, self.rows.chosen)
+
+    def _place_card(self, plot_width: int) -> None:
+        size = self.card.sizeHint()
+        left = AXIS_PX + max(plot_width - size.width() - 12, 6)
+        self.card.setGeometry(left, self.height() - TIME_AXIS_PX - size.height() - 12, size.width(), size.height())
+        self.card.raise_()
+
+    def _on_selected(self, key: str) -> None:
+        self._show_plot()
+        self.selected.emit(key)
+
+    def paint(self, painter: QPainter, letters: Lettering) -> None:
+        """Paint the card and the axes; plot and rows paint themselves."""
+        self.paint_card(painter)
+        view, scene = self._view, self._scene
+        if view is None or scene is None:
+            return
+        unit = view.state.airfield.altitude_unit
+        letters.text((14, 23), f"Density altitude, {unit}", self.colours.soft_ink, 13, MEDIUM)
+        self._paint_altitudes(painter, letters, scene, unit)
+        self._paint_hours(painter, letters, scene, view)
+        self._paint_now(painter, letters, scene, view)
+
+    def _paint_altitudes(self, painter: QPainter, letters: Lettering, scene: DayScene, unit: str) -> None:
+        axis, colours = scene.altitude, self.colours
+        painter.fillRect(QRectF(AXIS_PX, PLOT_TOP_PX + axis.bottom_px, scene.time.right_px, 1), QColor(colours.line))
+        for altitude_ft, text in altitude_marks(axis, unit):
+            y = PLOT_TOP_PX + axis.px(altitude_ft)
+            painter.fillRect(QRectF(AXIS_PX - 6, round(y), 6, 1), QColor(colours.line))
+            at = (AXIS_PX - 10, baseline_for_middle(y, 13))
+            letters.text(at, text, colours.soft_ink, 13, side="right")
+
+    def _paint_hours(self, painter: QPainter, letters: Lettering, scene: DayScene, view: View) -> None:
+        colours, bottom = self.colours, PLOT_TOP_PX + scene.altitude.bottom_px
+        free_from = 0.0
+        for mark in scene.hours:
+            x = AXIS_PX + scene.time.px(mark.when)
+            painter.fillRect(QRectF(round(x), bottom, 1, 6 if mark.named else 4), QColor(colours.line))
+            if not mark.named:
+                continue
+            text = formatting.clock(mark.when, view.zone)
+            half = width_of(text, 13) / 2
+            if x - half >= free_from and x + half <= self.rows.x() + 24:
+                letters.text((x, bottom + 22), text, colours.soft_ink, 13, side="centre")
+                free_from = x + half + 8
+
+    def _paint_now(self, painter: QPainter, letters: Lettering, scene: DayScene, view: View) -> None:
+        colours = self.colours
+        text = f"now {formatting.clock(view.now, view.zone)}"
+        width = width_of(text, 14, SEMIBOLD) + 16
+        x = AXIS_PX + scene.time.px(scene.now)
+        title_end = 14 + width_of("Density altitude, ft", 13, MEDIUM) + 12
+        left = min(max(x - width / 2, title_end), self.rows.x() + GUTTER_PX - 12 - width)
+        painter.save()
+        painter.setRenderHint(QPainter.RenderHint.Antialiasing)
+        painter.setPen(Qt.PenStyle.NoPen)
+        painter.setBrush(QColor(colours.ink))
+        painter.drawRoundedRect(QRectF(left, 8, width, 20), 3, 3)
+        painter.restore()
+        painter.fillRect(QRectF(round(x) - 0.75, 28, 1.5, PLOT_TOP_PX - 28), QColor(colours.ink))
+        letters.text((left + 8, 23), text, colours.card, 14, SEMIBOLD)
+        observed = width_of("observed", 13)
+        if left - 10 - observed > title_end:
+            letters.text((left - 10, 23), "observed", colours.soft_ink, 13, side="right")
+
+
+def altitude_marks(axis: AltitudeAxis, unit: str) -> list[tuple[float, str]]:
+    """Return the named altitudes of an axis, in feet, with their texts; as many as there is room for."""
+    to_ft = 1.0 if unit == "ft" else ft_from_m(1.0)
+    low, high = axis.low_ft / to_ft, axis.high_ft / to_ft
+    per_unit_px = (axis.bottom_px - axis.top_px) / (high - low)
+    steps = (500.0, 1000.0, 2000.0, 5000.0) if unit == "ft" else (100.0, 200.0, 500.0, 1000.0, 2000.0)
+    step = next((step for step in steps if step * per_unit_px >= _TICK_ROOM_PX), steps[-1])
+    marks = []
+    value = math.ceil(low / step - 1e-9) * step
+    while value <= high + 1e-6:
+        marks.append((value * to_ft, formatting.number(value)))
+        value += step
+    return marks
+
+
+def shelf_of(row: OperationLine, view: View) -> Shelf | None:
+    """Return a row's limit as it lies on the plot; None where it has no place on it."""
+    line = row.shown
+    if line is None or line.axis_ft is None:
+        return None
+    loud, quiet = formatting.next_change(line, view.now, view.zone)
+    return Shelf(
+        key=row.key,
+        axis_ft=line.axis_ft,
+        state=row.state,
+        spans=line.spans,
+        callout=(
+            f"{formatting.full_name(row)}, {formatting.limit_phrase(line)}",
+            ", ".join(part for part in (formatting.STATE_WORDS[row.state], loud, quiet) if part),
+        ),
+    )

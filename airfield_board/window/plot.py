@@ -1,0 +1,251 @@
+"""The day plot: the curve of the density altitude, the limits as shelves in it, the holds of the day."""
+
+from collections.abc import Sequence
+
+import numpy as np
+import pyqtgraph as pg
+from numpy.typing import NDArray
+from PySide6.QtCore import QPointF, QRectF, Qt
+from PySide6.QtGui import QBrush, QColor, QPainter, QPainterPath, QPen
+from PySide6.QtWidgets import QFrame, QGraphicsItem, QGraphicsPathItem, QStyleOptionGraphicsItem, QWidget
+
+from airfield_board.limits.states import State
+from airfield_board.window.day_scene import DayScene, Shelf, Stretch, stretches_of
+from airfield_board.window.fonts import REGULAR, SEMIBOLD
+from airfield_board.window.lettering import Lettering, PaintedText, cut_to, width_of
+from airfield_board.window.marks import mark_colour
+from airfield_board.window.palette import LIGHT, Palette
+
+SPAN_PX = 6.0
+_HATCH_PX = 9.0
+
+
+class DayPlot(pg.GraphicsView):  # type: ignore[misc]  # pyqtgraph has no types
+    """Paints a `DayScene`; its view box has the axes of the scene, to the pixel.
+
+    Attributes
+    ----------
+    painted
+        The texts of the last pass, in this widget's pixels.
+    """
+
+    def __init__(self, parent: QWidget | None = None) -> None:
+        super().__init__(parent, background=None)
+        self.setFrameShape(QFrame.Shape.NoFrame)
+        self.setFocusPolicy(Qt.FocusPolicy.NoFocus)
+        self.setHorizontalScrollBarPolicy(Qt.ScrollBarPolicy.ScrollBarAlwaysOff)
+        self.setVerticalScrollBarPolicy(Qt.ScrollBarPolicy.ScrollBarAlwaysOff)
+        self.setAccessibleName("Density altitude over the day")
+        self.setAttribute(Qt.WidgetAttribute.WA_TransparentForMouseEvents)
+        self.painted: list[PaintedText] = []
+        self._colours = LIGHT
+        self._scene_shown: DayScene | None = None
+        self._chosen = ""
+        self._parts: list[_CurveItems] = []
+        self.box = pg.ViewBox(enableMouse=False, enableMenu=False, defaultPadding=0.0)
+        self.setCentralItem(self.box)
+        self._under = _Layer(self, self.box, z=-5.0, paints=self._paint_under)
+        self._over = _Layer(self, self.box, z=20.0, paints=self._paint_over)
+
+    def show_scene(self, scene: DayScene, colours: Palette, chosen: str) -> None:
+        """Show another scene, other colours, or another chosen row."""
+        if (scene, chosen) == (self._scene_shown, self._chosen) and colours is self._colours:
+            return
+        fresh = scene is not self._scene_shown or colours is not self._colours
+        self._scene_shown, self._colours, self._chosen = scene, colours, chosen
+        if fresh:
+            length_s = (scene.time.end - scene.time.start).total_seconds()
+            self.box.setRange(
+                xRange=(0.0, length_s),
+                yRange=(scene.altitude.low_ft, scene.altitude.high_ft),
+                padding=0.0,
+                disableAutoRange=True,
+            )
+            self._fill_curves(stretches_of(scene.curve, scene.time), scene.altitude.low_ft)
+        self._under.update()
+        self._over.update()
+
+    def _fill_curves(self, stretches: Sequence[Stretch], floor_ft: float) -> None:
+        """Give each stretch its three items, which are kept and filled anew."""
+        while len(self._parts) < len(stretches):
+            self._parts.append(_CurveItems(self.box))
+        for part in self._parts[len(stretches) :]:
+            part.clear()
+        for part, stretch in zip(self._parts, stretches, strict=False):
+            part.fill(stretch, floor_ft, self._colours)
+
+    def _paint_under(self, painter: QPainter) -> None:
+        scene, colours = self._scene_shown, self._colours
+        if scene is None:
+            return
+        width, height = float(self.width()), float(self.height())
+        for mark in scene.hours:
+            if mark.named:
+                painter.fillRect(QRectF(round(scene.time.px(mark.when)), 0, 1, height), QColor(colours.hairline))
+        for shelf in scene.shelves:
+            if scene.altitude.holds(shelf.axis_ft):
+                y = round(scene.altitude.px(shelf.axis_ft)) + 0.5
+                painter.setPen(QPen(QColor(colours.line), 1))
+                painter.drawLine(QPointF(0, y), QPointF(width, y))
+        painter.setRenderHint(QPainter.RenderHint.Antialiasing)
+        for shelf in sorted(scene.shelves, key=lambda shelf: shelf.state.severity):
+            self._paint_spans(painter, scene, shelf)
+
+    def _paint_spans(self, painter: QPainter, scene: DayScene, shelf: Shelf) -> None:
+        colours = self._colours
+        y = scene.altitude.px(shelf.axis_ft)
+        until = scene.observed or scene.now
+        for span in shelf.spans:
+            left, right = scene.time.px(span.start), scene.time.px(span.end or until)
+            bar = QRectF(left, y - SPAN_PX / 2, max(right - left, 2.0), SPAN_PX)
+            colour = QColor(mark_colour(span.state, colours))
+            if span.state is State.HOLD:
+                painter.fillRect(bar, colour)
+            else:
+                painter.setPen(QPen(colour, 1.6))
+                painter.setBrush(QColor(colours.reduced_block))
+                painter.drawRect(bar.adjusted(0.8, 0.8, -0.8, -0.8))
+
+    def _paint_over(self, painter: QPainter) -> None:
+        scene, colours = self._scene_shown, self._colours
+        self.painted = []
+        if scene is None:
+            return
+        painter.setRenderHint(QPainter.RenderHint.Antialiasing)
+        if scene.gap and scene.observed is not None:
+            self._paint_gap(painter, scene)
+        self._paint_carets(painter, scene)
+        chosen = next((shelf for shelf in scene.shelves if shelf.key == self._chosen), None)
+        if chosen is not None:
+            y = scene.altitude.px(chosen.axis_ft)
+            painter.setPen(QPen(QColor(colours.ink), 2))
+            painter.drawLine(QPointF(0, y), QPointF(self.width(), y))
+            self._paint_spans(painter, scene, chosen)
+        now = scene.time.px(scene.now)
+        painter.fillRect(QRectF(round(now) - 0.75, 0, 1.5, self.height()), QColor(colours.ink))
+        if scene.level_ft is not None and scene.observed is not None:
+            at = QPointF(scene.time.px(scene.observed), scene.altitude.px(scene.level_ft))
+            painter.setPen(QPen(QColor(colours.accent), 1.6))
+            painter.drawLine(at, QPointF(self.width(), at.y()))
+            if scene.time.holds(scene.observed):
+                painter.setPen(QPen(QColor(colours.card), 2))
+                painter.setBrush(QColor(colours.accent))
+                painter.drawEllipse(at, 6.5, 6.5)
+        if chosen is not None:
+            self._paint_callout(painter, scene, chosen)
+
+    def _paint_gap(self, painter: QPainter, scene: DayScene) -> None:
+        if scene.observed is None:
+            return
+        left, right = scene.time.px(scene.observed), scene.time.px(scene.now)
+        gap = QRectF(left, 0, max(right - left, 1.0), self.height())
+        painter.save()
+        painter.setClipRect(gap)
+        painter.fillRect(gap, _clear(self._colours.card, 150))
+        painter.setPen(QPen(QColor(self._colours.line), 1.3))
+        x = gap.left() - gap.height()
+        while x < gap.right():
+            painter.drawLine(QPointF(x, gap.bottom()), QPointF(x + gap.height(), gap.top()))
+            x += _HATCH_PX
+        painter.restore()
+        painter.fillRect(QRectF(gap.left(), 0, 1, gap.height()), QColor(self._colours.line))
+
+    def _paint_carets(self, painter: QPainter, scene: DayScene) -> None:
+        painter.setBrush(Qt.BrushStyle.NoBrush)
+        painter.setPen(QPen(QColor(self._colours.line), 1.4))
+        x = self.width() - 1.0
+        beyond = {
+            shelf.axis_ft > scene.altitude.high_ft for shelf in scene.shelves if not scene.altitude.holds(shelf.axis_ft)
+        }
+        for above in beyond:
+            y, dip = (1.0, 7.0) if above else (self.height() - 1.0, -7.0)
+            path = QPainterPath(QPointF(x - 12, y + dip))
+            path.lineTo(x - 6, y)
+            path.lineTo(x, y + dip)
+            painter.drawPath(path)
+
+    def _paint_callout(self, painter: QPainter, scene: DayScene, shelf: Shelf) -> None:
+        colours = self._colours
+        first, second = shelf.callout
+        room = self.width() - 40.0
+        first, second = cut_to(first, room, 14, SEMIBOLD), cut_to(second, room, 13)
+        width = max(width_of(first, 14, SEMIBOLD), width_of(second, 13)) + 24
+        height = 48.0 if second else 28.0
+        y = scene.altitude.px(shelf.axis_ft)
+        top = y - height - 14 if y - height - 14 > 2 else y + 14
+        left = min(max(scene.time.px(scene.now) - width / 2, 4.0), self.width() - width - 4)
+        box = QRectF(left, top, width, height)
+        painter.setPen(QPen(QColor(colours.accent), 1.5))
+        painter.setBrush(QColor(colours.card))
+        painter.drawRoundedRect(box, 5, 5)
+        letters = Lettering(painter, self.painted)
+        letters.text((left + 12, top + 19), first, colours.ink, 14, SEMIBOLD)
+        letters.text((left + 12, top + 38), second, colours.soft_ink, 13, REGULAR)
+
+
+class _Layer(pg.GraphicsObject):  # type: ignore[misc]  # pyqtgraph has no types
+    """Paints in the plot's own pixels, under or over the curves."""
+
+    def __init__(self, plot: DayPlot, box: QGraphicsItem, z: float, paints: object) -> None:
+        super().__init__()
+        self._plot = plot
+        self._paints = paints
+        self.setParentItem(box)
+        self.setZValue(z)
+
+    def boundingRect(self) -> QRectF:
+        """All of the plot."""
+        return QRectF(0, 0, self._plot.width(), self._plot.height())
+
+    def paint(self, painter: QPainter, option: QStyleOptionGraphicsItem, widget: QWidget | None = None) -> None:
+        """Let the plot paint."""
+        painter.save()
+        self._paints(painter)
+        painter.restore()
+
+
+class _CurveItems:
+    """Water, uncertainty and curve of one stretch of the day."""
+
+    def __init__(self, box: QGraphicsItem) -> None:
+        self._water, self._band = QGraphicsPathItem(), QGraphicsPathItem()
+        self._curve = pg.PlotCurveItem(antialias=True)
+        for item, z in ((self._water, -10.0), (self._band, 1.0), (self._curve, 2.0)):
+            item.setZValue(z)
+            box.addItem(item, ignoreBounds=True)
+        for item in (self._water, self._band):
+            item.setPen(QPen(Qt.PenStyle.NoPen))
+
+    def fill(self, stretch: Stretch, floor_ft: float, colours: Palette) -> None:
+        """Take other points and colours."""
+        ends = stretch.seconds[[-1, 0]]
+        self._water.setPath(
+            _polygon(np.concatenate((stretch.seconds, ends)), np.concatenate((stretch.value, (floor_ft, floor_ft))))
+        )
+        self._water.setBrush(QColor(colours.water))
+        self._band.setPath(
+            _polygon(
+                np.concatenate((stretch.seconds, stretch.seconds[::-1])),
+                np.concatenate((stretch.high, stretch.low[::-1])),
+            )
+        )
+        self._band.setBrush(_clear(colours.accent, 62))
+        self._curve.setData(x=stretch.seconds, y=stretch.value, pen=pg.mkPen(QColor(colours.accent), width=2.2))
+
+    def clear(self) -> None:
+        """Show nothing."""
+        self._water.setPath(QPainterPath())
+        self._band.setPath(QPainterPath())
+        self._curve.setData(x=np.empty(0), y=np.empty(0))
+
+
+def _polygon(x: NDArray[np.float64], y: NDArray[np.float64]) -> QPainterPath:
+    path = pg.arrayToQPath(x, y)
+    path.closeSubpath()
+    return path
+
+
+def _clear(colour: str, alpha: int) -> QBrush:
+    shade = QColor(colour)
+    shade.setAlpha(alpha)
+    return QBrush(shade)

@@ -1,0 +1,165 @@
+"""Whether what the recorder said may still be shown.
+
+The window reckons age by itself, so that a recorder that hangs looks stale and not fresh.
+"""
+
+from dataclasses import dataclass, replace
+from datetime import datetime, timedelta
+from enum import Enum
+from zoneinfo import ZoneInfo
+
+from airfield_board.limits.states import State
+from airfield_board.session.board_state import BoardState, Freshness, Mode, OperationLine
+
+FUTURE_TOLERANCE = timedelta(minutes=5)
+"""An observation may be so far ahead of the clock (contract, section 4)."""
+
+
+class Cause(Enum):
+    """Why the whole board shows NO DATA; `NONE` where it does not."""
+
+    NONE = "none"
+    MISSING = "missing"
+    STALE = "stale"
+    NO_ANSWER = "no answer"
+    CLOCK = "clock"
+    NOT_CALCULATED = "not calculated"
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Reading:
+    """The newest valid observation, judged by the window's clock.
+
+    Attributes
+    ----------
+    age
+        None where there is no observation; never negative.
+    cause
+        Anything but `Cause.NONE` puts the whole view into NO DATA.
+    """
+
+    freshness: Freshness
+    age: timedelta | None
+    cause: Cause
+
+    @property
+    def trusted(self) -> bool:
+        """Whether states may be shown as the recorder gave them."""
+        return self.cause is Cause.NONE
+
+
+def reckon(state: BoardState, now: datetime, watchdog: timedelta | None) -> Reading:
+    """Judge a board by the clock.
+
+    Parameters
+    ----------
+    now
+        The window's clock; it may be later than the state.
+    watchdog
+        Longest time between the state and now; None where there is no recorder that could hang (a picture).
+    """
+    observation = state.observation
+    if observation is None:
+        return Reading(freshness=Freshness.MISSING, age=None, cause=Cause.MISSING)
+    ahead = observation.time - now
+    age = max(-ahead, timedelta(0))
+    if ahead > FUTURE_TOLERANCE:
+        return Reading(freshness=Freshness.STALE, age=age, cause=Cause.CLOCK)
+    if age > timedelta(minutes=state.stale_after_min) or observation.freshness in (
+        Freshness.STALE,
+        Freshness.MISSING,
+    ):
+        return Reading(freshness=Freshness.STALE, age=age, cause=Cause.STALE)
+    freshness = Freshness.AGEING if age > timedelta(minutes=state.ageing_after_min) else Freshness.FRESH
+    if watchdog is not None and abs(now - state.assessed_at) > watchdog:
+        return Reading(freshness=freshness, age=age, cause=Cause.NO_ANSWER)
+    if state.conditions is None:
+        return Reading(freshness=freshness, age=age, cause=Cause.NOT_CALCULATED)
+    return Reading(freshness=freshness, age=age, cause=Cause.NONE)
+
+
+class Frame(Enum):
+    """What frames the whole view; the earlier ones come first, and only one is shown."""
+
+    NO_DATA = "NO DATA"
+    NOT_RECORDING = "NOT RECORDING"
+    TRAINING = "TRAINING"
+    DEMO = "DEMO"
+    PAST_DAY = "PAST DAY"
+    SETTINGS_WAITING = "SETTINGS WAITING"
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class View:
+    """What every part of the window is given to show.
+
+    Attributes
+    ----------
+    now
+        The window's clock.
+    reading
+        The window's judgement of the newest observation.
+    zone
+        The airfield's.
+    """
+
+    state: BoardState
+    now: datetime
+    reading: Reading
+    zone: ZoneInfo
+
+    @property
+    def trusted(self) -> bool:
+        """Whether states may be shown as the recorder gave them."""
+        return self.reading.trusted
+
+    @property
+    def frames(self) -> tuple[Frame, ...]:
+        """All that would frame the view, the one that does first."""
+        state = self.state
+        modes = {Mode.TRAINING: Frame.TRAINING, Mode.DEMO: Frame.DEMO, Mode.PAST: Frame.PAST_DAY}
+        wanted = {
+            Frame.NO_DATA: not self.trusted,
+            Frame.NOT_RECORDING: not state.recording,
+            Frame.SETTINGS_WAITING: bool(state.waiting),
+        }
+        return tuple(frame for frame in Frame if wanted.get(frame, modes.get(state.mode) is frame))
+
+    @property
+    def live(self) -> bool:
+        """Whether all is live, trusted, recorded, and from the file."""
+        observation = self.state.observation
+        return not self.frames and self.state.mode is Mode.LIVE and observation is not None and not observation.initials
+
+    @property
+    def rows(self) -> tuple[OperationLine, ...]:
+        """The rows as they may be shown: where the reading is not trusted, all in NO DATA with what they were."""
+        if self.trusted:
+            return self.state.operations
+        return tuple(self._without_data(row) for row in self.state.operations)
+
+    def _without_data(self, row: OperationLine) -> OperationLine:
+        line = row.shown
+        if line is None:
+            return replace(row, state=State.NO_DATA)
+        observation = self.state.observation
+        kept = line.state is State.NO_DATA or observation is None
+        blank = replace(
+            line,
+            state=State.NO_DATA,
+            value=None,
+            margin=None,
+            was=line.was if kept or observation is None else line.state,
+            was_at=line.was_at if kept or observation is None else observation.time,
+            hold_temperature_c=None,
+            greatest_weight=None,
+            greatest_weight_lb=None,
+            gone_by=None,
+            clearing=None,
+        )
+        return replace(row, state=State.NO_DATA, shown=blank)
+
+
+def view_of(state: BoardState, now: datetime, watchdog: timedelta | None) -> View:
+    """Put together what the window shows of a board at a time."""
+    return View(state=state, now=now, reading=reckon(state, now, watchdog), zone=ZoneInfo(state.airfield.time_zone))

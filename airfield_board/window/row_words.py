@@ -1,0 +1,92 @@
+"""What a row says, and how many lines that takes."""
+
+from dataclasses import dataclass
+from html import escape
+
+from airfield_board.limits.states import State
+from airfield_board.session.board_state import OperationLine
+from airfield_board.window import formatting
+from airfield_board.window.reading import View
+from airfield_board.window.row_layout import Wish
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class RowWords:
+    """The texts of a row.
+
+    Attributes
+    ----------
+    loud, quiet
+        What is known of its next change.
+    details
+        Operation and limit, for a second line.
+    one_line
+        Aircraft and operation, for rows of one line.
+    """
+
+    key: str
+    state: State
+    name: str
+    details: str
+    temporary: str
+    one_line: str
+    limit: str
+    margin: str
+    loud: str
+    quiet: str
+    hold_above: str
+    axis_ft: float | None
+
+    @property
+    def extra_lines(self) -> int:
+        """Third lines that the row has in full."""
+        return 1 if self.temporary else 0
+
+    @property
+    def spoken(self) -> str:
+        """The row as a screen reader says it."""
+        parts = (formatting.STATE_WORDS[self.state], self.one_line, f"margin {self.margin}", self.loud, self.quiet)
+        return ", ".join(part for part in parts if part)
+
+
+def words_of(row: OperationLine, view: View) -> RowWords:
+    """Put a row into words."""
+    line = row.shown
+    loud, quiet = formatting.next_change(line, view.now, view.zone)
+    temporary = formatting.temporary_phrase(line)
+    unit = view.state.airfield.temperature_unit
+    above = line.hold_temperature_c if line is not None else None
+    until = f", {temporary}" if temporary else ""
+    return RowWords(
+        key=row.key,
+        state=row.state,
+        name=row.aircraft_name,
+        details=f"{row.name} · {formatting.limit_phrase(line)}",
+        temporary=temporary,
+        one_line=f"{row.aircraft_name} · {row.name}{until}",
+        limit=formatting.limit_cell(line),
+        margin=formatting.margin_cell(line),
+        loud=loud,
+        quiet=quiet,
+        hold_above=formatting.hold_temperature(above, unit) if above is not None else formatting.DASH,
+        axis_ft=line.axis_ft if line is not None else None,
+    )
+
+
+def wish_of(words: RowWords, target_px: float | None) -> Wish:
+    """Say where a row would stand."""
+    below = words.state in (State.HOLD, State.REDUCED)
+    return Wish(target_px=target_px, below=below, extra_lines=words.extra_lines)
+
+
+def tip_of(row: OperationLine, view: View) -> str:
+    """Say all of a row, for a tooltip: a line a limit, with what it rests on; escaped, for tooltips may be rich text."""
+    lines = [formatting.full_name(row) + (f" ({row.group})" if row.group else "")]
+    for line in row.limits:
+        parts = [f"{line.quantity.value}: {formatting.STATE_WORDS[line.state]}", formatting.limit_phrase(line)]
+        if line.full_weight is not None:
+            parts.append(f"greatest weight {formatting.weight(line.full_weight, line.weight_unit)}")
+        parts += [formatting.temporary_phrase(line), line.reason, line.basis, line.source]
+        lines.append(", ".join(part for part in parts if part))
+    escaped = "<br>".join(escape(text) for text in lines)
+    return f"<qt>{escaped}</qt>" if view.trusted else f"<qt>NO DATA<br>{escape(lines[0])}</qt>"
