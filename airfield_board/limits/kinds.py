@@ -2,16 +2,42 @@
 
 from collections.abc import Mapping
 from dataclasses import dataclass
+from math import isfinite
 from typing import Protocol
 
 import numpy as np
 from numpy.typing import NDArray
 
 from airfield_board.configuration.model import Quantity, Unit
-from airfield_board.observations.conditions import ConditionsTable
-from airfield_board.units import FOOT_M, f_from_c, m_from_ft
+from airfield_board.observations.conditions import (
+    ConditionsTable,
+    StandardUncertainties,
+    density_altitude_at_temperature,
+    hold_temperature_for_density_altitude,
+    hold_temperature_for_isa_deviation,
+    hold_temperature_for_temperature,
+)
+from airfield_board.units import FOOT_M, c_from_f, f_from_c, ft_from_m, m_from_ft
 
 Array = NDArray[np.float64]
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Air:
+    """The present air, all of which but the temperature stays as it is when a hold temperature is asked for.
+
+    Attributes
+    ----------
+    dewpoint_c
+        The one that counts; None: humidity does not.
+    guard
+        With guarded acceptance the standard uncertainties of the readings, else None.
+    """
+
+    altimeter_hpa: float
+    elevation_m: float
+    dewpoint_c: float | None
+    guard: StandardUncertainties | None = None
 
 
 class Kind(Protocol):
@@ -20,27 +46,51 @@ class Kind(Protocol):
     def values(self, conditions: ConditionsTable, unit: Unit) -> tuple[Array, Array]:
         """Value and expanded uncertainty in the limit's unit, each of shape (n,)."""
 
+    def hold_temperature_c(self, limit: float, unit: Unit, air: Air) -> float | None:
+        """Temperature above which the limit would be exceeded; None where temperature does not matter."""
 
-@dataclass(frozen=True, slots=True, kw_only=True)
-class AltitudeKind:
-    """A greatest density or pressure altitude.
 
-    Attributes
-    ----------
-    value, uncertainty
-        Names of the columns of the conditions, in feet.
-    """
+def axis_ft(kind: Kind, limit: float, unit: Unit, air: Air) -> float | None:
+    """Return the density altitude at which a limit is reached in the present air; None where there is none."""
+    temperature_c = kind.hold_temperature_c(limit, unit, air)
+    if temperature_c is None:
+        return None
+    altitude_ft = density_altitude_at_temperature(temperature_c, air.altimeter_hpa, air.elevation_m, air.dewpoint_c)
+    return altitude_ft if isfinite(altitude_ft) else None
 
-    value: str
-    uncertainty: str
+
+def _altitudes(value_ft: Array, uncertainty_ft: Array, unit: Unit) -> tuple[Array, Array]:
+    if unit == "m":
+        return m_from_ft(value_ft), m_from_ft(uncertainty_ft)
+    return value_ft, uncertainty_ft
+
+
+class DensityAltitudeKind:
+    """A greatest density altitude."""
 
     def values(self, conditions: ConditionsTable, unit: Unit) -> tuple[Array, Array]:
         """Value and expanded uncertainty [ft or m], each of shape (n,)."""
-        value_ft: Array = getattr(conditions, self.value)
-        uncertainty_ft: Array = getattr(conditions, self.uncertainty)
-        if unit == "m":
-            return m_from_ft(value_ft), m_from_ft(uncertainty_ft)
-        return value_ft, uncertainty_ft
+        return _altitudes(conditions.density_altitude_ft, conditions.uncertainty_ft, unit)
+
+    def hold_temperature_c(self, limit: float, unit: Unit, air: Air) -> float | None:
+        """Temperature above which the limit would be exceeded [°C]."""
+        limit_ft = ft_from_m(limit) if unit == "m" else limit
+        return hold_temperature_for_density_altitude(
+            limit_ft, air.altimeter_hpa, air.elevation_m, air.dewpoint_c, air.guard
+        )
+
+
+class PressureAltitudeKind:
+    """A greatest pressure altitude; temperature does not matter to it."""
+
+    def values(self, conditions: ConditionsTable, unit: Unit) -> tuple[Array, Array]:
+        """Value and expanded uncertainty [ft or m], each of shape (n,)."""
+        return _altitudes(conditions.pressure_altitude_ft, conditions.pressure_altitude_uncertainty_ft, unit)
+
+    def hold_temperature_c(self, limit: float, unit: Unit, air: Air) -> float | None:
+        """Return None."""
+        del limit, unit, air
+        return None
 
 
 class TemperatureKind:
@@ -52,6 +102,10 @@ class TemperatureKind:
             return f_from_c(conditions.temperature_c), conditions.temperature_uncertainty_c * 1.8
         return conditions.temperature_c, conditions.temperature_uncertainty_c
 
+    def hold_temperature_c(self, limit: float, unit: Unit, air: Air) -> float | None:
+        """Temperature above which the limit would be exceeded [°C]."""
+        return hold_temperature_for_temperature(c_from_f(limit) if unit == "f" else limit, air.guard)
+
 
 class IsaDeviationKind:
     """A greatest deviation from the standard temperature at the pressure altitude."""
@@ -61,12 +115,15 @@ class IsaDeviationKind:
         scale = 1.8 if unit == "f" else 1.0
         return conditions.isa_deviation_c * scale, conditions.isa_deviation_uncertainty_c * scale
 
+    def hold_temperature_c(self, limit: float, unit: Unit, air: Air) -> float | None:
+        """Temperature above which the limit would be exceeded [°C]."""
+        limit_c = limit / 1.8 if unit == "f" else limit
+        return hold_temperature_for_isa_deviation(limit_c, air.altimeter_hpa, air.elevation_m, air.guard)
+
 
 KINDS: Mapping[Quantity, Kind] = {
-    Quantity.DENSITY_ALTITUDE: AltitudeKind(value="density_altitude_ft", uncertainty="uncertainty_ft"),
-    Quantity.PRESSURE_ALTITUDE: AltitudeKind(
-        value="pressure_altitude_ft", uncertainty="pressure_altitude_uncertainty_ft"
-    ),
+    Quantity.DENSITY_ALTITUDE: DensityAltitudeKind(),
+    Quantity.PRESSURE_ALTITUDE: PressureAltitudeKind(),
     Quantity.TEMPERATURE: TemperatureKind(),
     Quantity.ISA_DEVIATION: IsaDeviationKind(),
 }
@@ -77,7 +134,7 @@ def limit_in_unit(limit: float, quantity: Quantity, unit: Unit, wanted: Unit) ->
     if unit == wanted:
         return limit
     if quantity is Quantity.TEMPERATURE:
-        return f_from_c(limit) if wanted == "f" else (limit - 32.0) / 1.8
+        return f_from_c(limit) if wanted == "f" else c_from_f(limit)
     return band_in_unit(limit, unit, wanted)
 
 

@@ -159,8 +159,10 @@ class LimitLine:
     reason
         In NO DATA: why, in a few words ("outside its table", "no observation", "suspect reading").
     hold_temperature_c
-        Above it the limit would be exceeded at the current altimeter setting and dew point; None for a limit on
+        Above it ``limit`` would be exceeded at the current altimeter setting and dew point; None for a limit on
         pressure altitude, and in NO DATA.
+    hold_above_c
+        The same for the screens: in REDUCED of the limit at the least weight, since that one ends in HOLD.
     greatest_weight_lb, greatest_weight
         Greatest weight that may depart now, of a limit by weight: in pounds, and in ``weight_unit``.
     full_weight
@@ -187,6 +189,7 @@ class LimitLine:
     reason: str = ""
     near_band: float = 0.0
     hold_temperature_c: float | None = None
+    hold_above_c: float | None = None
     greatest_weight_lb: float | None = None
     greatest_weight: float | None = None
     full_weight: float | None = None

@@ -201,17 +201,19 @@ class Judge:
 
     def _pass_time(self, checked: CheckedTable, now_us: int, pass_to_us: int | None) -> None:
         """Let time pass with every row, used or not, but for times in the future; then up to the clock."""
-        if self.current is None or self.stale:
-            return
         times_us = checked.rows.time_us
         reached_us = int(times_us[times_us <= now_us + FUTURE_US].max(initial=0))
         if pass_to_us is not None:
             reached_us = max(reached_us, pass_to_us)
-        moment_us = self.current.time_us + self._stale_after_us
-        if reached_us > moment_us:
-            self.stale = True
-            for limit in self.limits.values():
-                limit.go_stale(moment_us)
+        self._pass_time_to(reached_us)
+
+    def _pass_time_to(self, when_us: int) -> None:
+        moment_us = self.stale_at_us
+        if moment_us is None or self.stale or when_us <= moment_us:
+            return
+        self.stale = True
+        for limit in self.limits.values():
+            limit.go_stale(moment_us)
 
     def _answer(self, checked: CheckedTable, conditions: ConditionsTable) -> Judged:
         changes = [change for limit in self.limits.values() for change in limit.take_changes()]
@@ -220,23 +222,39 @@ class Judge:
         ended.sort(key=lambda episode: (episode.start_us, self._order[episode.key]))
         return Judged(checked=checked, conditions=conditions, changes=tuple(changes), ended=tuple(ended))
 
-    def change_settings(self, profile: Profile, fleet: Fleet, when_us: int) -> tuple[LimitChange, ...]:
+    def change_settings(
+        self, profile: Profile, fleet: Fleet, when_us: int
+    ) -> tuple[tuple[LimitChange, ...], tuple[Episode, ...]]:
         """Put other settings in force.
 
         What they tighten acts at once, by the air of the current observation; a hold ends only by the rules, at an
-        observation. A limit that is gone takes its memory along.
+        observation, or with its limit.
 
         Parameters
         ----------
         when_us
             The recorder's time.
+
+        Returns
+        -------
+        tuple
+            The changes, and the episodes of limits that are gone.
         """
-        kept = {key: limit.memory for key, limit in self.limits.items()}
+        before = self.limits
+        self._pass_time_to(when_us)
         self._settings(profile, fleet)
-        self._make_limits(kept)
+        self._make_limits({key: limit.memory for key, limit in before.items()})
+        for key, limit in before.items():
+            if key not in self.limits:
+                limit.retire(when_us)
+        ended = tuple(episode for limit in before.values() for episode in limit.take_ended())
+        self._act_at_once(when_us)
+        return tuple(change for limit in self.limits.values() for change in limit.take_changes()), ended
+
+    def _act_at_once(self, when_us: int) -> None:
         moment_us = self.stale_at_us
         if self.current is None or moment_us is None:
-            return ()
+            return
         if not self.stale and when_us > moment_us:
             self.stale = True
             for limit in self.limits.values():
@@ -245,8 +263,6 @@ class Judge:
             conditions = self.current_conditions()
             for limit in self.limits.values():
                 limit.re_judge(when_us, conditions)
-        changes = [change for limit in self.limits.values() for change in limit.take_changes()]
-        return tuple(changes)
 
     def current_conditions(self) -> ConditionsTable:
         """Return the air of the current observation, one row, by the profile's present elevation and instruments.

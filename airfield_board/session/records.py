@@ -1,0 +1,154 @@
+"""What the recorder writes down, as bodies of records, and rows read back from them."""
+
+from collections.abc import Mapping, Sequence
+from datetime import datetime
+
+import numpy as np
+
+from airfield_board.clock import us_from_time
+from airfield_board.configuration.model import Fleet, Profile
+from airfield_board.history.records import Json, Record, RecordKind, StoredRecord
+from airfield_board.limits.rules import Episode, LimitChange
+from airfield_board.observations.observation import NO_TIME_US, CheckedTable, DewpointUse, ObservationTable, Verdict
+from airfield_board.session.judge import Judged
+
+VALUES = (
+    "altimeter_hpa",
+    "temperature_c",
+    "dewpoint_c",
+    "elevation_m",
+    "temperature_resolution_c",
+    "dewpoint_resolution_c",
+)
+
+
+def _number(value: float) -> float | None:
+    return None if np.isnan(value) else float(value)
+
+
+def observation_records(judged: Judged, form: str, at: datetime) -> list[Record]:
+    """Return the records of checked rows, used and unused, in order of time.
+
+    Parameters
+    ----------
+    form
+        The format they were read in, or ``typed``.
+    at
+        When they were read.
+    """
+    checked = judged.checked
+    read_us = us_from_time(at)
+    return [
+        Record(kind=RecordKind.OBSERVATION, at=at, body=_observation_body(checked, judged, row, form, read_us))
+        for row in range(len(checked))
+    ]
+
+
+def _observation_body(checked: CheckedTable, judged: Judged, row: int, form: str, read_us: int) -> dict[str, Json]:
+    rows = checked.rows
+    verdict = Verdict(int(checked.verdict[row]))
+    time_us = int(rows.time_us[row])
+    body: dict[str, Json] = {
+        "time": None if time_us == NO_TIME_US else time_us,
+        "read": read_us,
+        "raw": rows.raw[row],
+        "pos": int(rows.position[row]),
+        "format": form,
+        "values": {name: _number(getattr(rows, name)[row]) for name in VALUES},
+        "verdict": verdict.name.lower(),
+        "late": bool(checked.late[row]) or None,
+        "initials": rows.initials or None,
+        "fault": rows.faults.get(row),
+        "reason": checked.reason.get(row),
+        "restart": bool(checked.restart[row]) or None,
+    }
+    if verdict is not Verdict.REJECTED:
+        body["use"] = int(checked.dewpoint_use[row])
+        body["da_ft"] = _number(float(judged.conditions.density_altitude_ft[row]))
+        body["u_ft"] = _number(float(judged.conditions.uncertainty_ft[row]))
+        if checked.dewpoint_use[row] in (DewpointUse.CARRIED, DewpointUse.ASSUMED):
+            body["dewpoint_used_c"] = _number(float(checked.dewpoint_used_c[row]))
+    return body
+
+
+def change_body(change: LimitChange) -> dict[str, Json]:
+    """Return the body of a limit's change."""
+    return {
+        "scope": "limit",
+        "time": change.time_us,
+        "aircraft": change.key.aircraft,
+        "operation": change.key.operation,
+        "quantity": change.key.quantity.value,
+        "unit": change.unit,
+        "from": None if change.was is None else change.was.value,
+        "to": change.state.value,
+        "value": change.value,
+        "limit": change.limit,
+    }
+
+
+def episode_body(episode: Episode) -> dict[str, Json]:
+    """Return the body of an episode that has ended."""
+    return {
+        "aircraft": episode.key.aircraft,
+        "operation": episode.key.operation,
+        "quantity": episode.key.quantity.value,
+        "unit": episode.unit,
+        "start": episode.start_us,
+        "end": episode.end_us,
+        "peak": episode.peak,
+        "worst_margin": episode.worst_margin,
+        "minutes": episode.minutes,
+        "minutes_without_data": episode.minutes_without_data,
+        "limit": episode.limit,
+    }
+
+
+def configuration_records(profile: Profile, fleet: Fleet, at: datetime) -> list[Record]:
+    """Return the records of a version of the settings, full text and hash, the fleet's last."""
+    return [
+        Record(
+            kind=RecordKind.CONFIGURATION,
+            at=at,
+            body={"kind": kind, "name": str(path), "sha256": sha256, "text": text},
+        )
+        for kind, path, sha256, text in (
+            ("profile", profile.path, profile.sha256, profile.text),
+            ("fleet", fleet.path, fleet.sha256, fleet.text),
+        )
+    ]
+
+
+def table_from_records(records: Sequence[StoredRecord]) -> ObservationTable:
+    """Return recorded observations as rows not yet checked, in the order in which they were recorded.
+
+    All must have been read at one time and typed in by one person, or by nobody.
+    """
+    bodies = [record.body for record in records]
+    values = [_mapping(body["values"]) for body in bodies]
+
+    def column(name: str) -> np.ndarray[tuple[int], np.dtype[np.float64]]:
+        return np.array([np.nan if value.get(name) is None else value[name] for value in values], dtype=np.float64)
+
+    return ObservationTable(
+        time_us=np.array([NO_TIME_US if body.get("time") is None else body["time"] for body in bodies], dtype=np.int64),
+        altimeter_hpa=column("altimeter_hpa"),
+        temperature_c=column("temperature_c"),
+        dewpoint_c=column("dewpoint_c"),
+        elevation_m=column("elevation_m"),
+        temperature_resolution_c=column("temperature_resolution_c"),
+        dewpoint_resolution_c=column("dewpoint_resolution_c"),
+        position=np.array([body.get("pos", 0) for body in bodies], dtype=np.int64),
+        raw=[str(body["raw"]) for body in bodies],
+        faults={row: str(body["fault"]) for row, body in enumerate(bodies) if body.get("fault")},
+        initials=str(bodies[0].get("initials", "")) if bodies else "",
+    )
+
+
+def _mapping(value: Json) -> Mapping[str, Json]:
+    return value if isinstance(value, Mapping) else {}
+
+
+def empty_table() -> ObservationTable:
+    """Return no rows at all."""
+    return table_from_records(())

@@ -1,0 +1,182 @@
+"""Going on where the last recorder stopped: settings, states, holds, the day's curve, what waits for acknowledgement."""
+
+from collections.abc import Callable, Collection, Mapping
+from dataclasses import dataclass
+from datetime import datetime
+from zoneinfo import ZoneInfo
+
+import numpy as np
+
+from airfield_board.clock import local_day, start_of_local_day, us_from_time
+from airfield_board.configuration.model import Quantity
+from airfield_board.errors import FileFaults
+from airfield_board.history.records import RecordKind, StoredRecord
+from airfield_board.history.store import History
+from airfield_board.limits.in_force import LimitKey
+from airfield_board.limits.states import State
+from airfield_board.observations.observation import Verdict
+from airfield_board.observations.quality_judgement import FUTURE_US
+from airfield_board.session.day_record import KEPT_US, DayRecord
+from airfield_board.session.judge import Judge
+from airfield_board.session.rejudge import SettingsReader, judge_anew
+from airfield_board.session.settings import Airfield, Settings
+from airfield_board.session.status import CURRENT, PAST, RowChange, StatusLog
+from airfield_board.units import HOUR_US
+
+_LONGEST_READ_BACK_US = 31 * 24 * HOUR_US
+_UNUSED = (Verdict.SUSPECT, Verdict.REJECTED, Verdict.SUPERSEDED)
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Start:
+    """What a recorder begins with.
+
+    Attributes
+    ----------
+    recall
+        From a stretch of time: texts of the rows recorded of it.
+    read_back_to_us
+        How far back the observation file is to be read at first.
+    doubt
+        What is odd about the history, in plain words; empty where nothing is.
+    """
+
+    judge: Judge
+    day: DayRecord
+    status: StatusLog
+    recall: Callable[[int, int], Collection[str]]
+    read_back_to_us: int
+    doubt: str
+
+
+def settings_from_history(history: History | None) -> Settings | None:
+    """Return the settings as the last recorder left them; None where the history cannot tell."""
+    if history is None:
+        return None
+    reader = SettingsReader()
+    try:
+        for record in history.records(kinds=(RecordKind.CONFIGURATION, RecordKind.SETTINGS_ACCEPTED)):
+            reader.take(record)
+    except FileFaults:
+        # Texts of an older version of the program, which no longer count as valid, tell nothing.
+        return None
+    return reader.settings
+
+
+def restored(history: History | None, in_force: Airfield, now: datetime) -> Start:
+    """Return what a recorder begins with.
+
+    Parameters
+    ----------
+    history
+        None: nothing is known.
+    in_force
+        The settings in force.
+
+    Raises
+    ------
+    UserError
+        Where the history cannot be read.
+    """
+    now_us = us_from_time(now)
+    day, status = DayRecord(), StatusLog()
+    if history is None:
+        return Start(
+            judge=Judge(*in_force),
+            day=day,
+            status=status,
+            recall=_nothing,
+            read_back_to_us=now_us - KEPT_US,
+            doubt="",
+        )
+    judge = _judge(history, in_force)
+    _fill_day(day, history, judge, now_us)
+    zone = ZoneInfo(in_force[0].time_zone)
+    _fill_status(status, history, us_from_time(start_of_local_day(local_day(now, zone), zone)), now_us)
+    read_back_to_us = now_us - KEPT_US
+    newest = history.newest(RecordKind.OBSERVATION)
+    if newest is not None and isinstance(recorded_us := newest.body.get("time"), int):
+        read_back_to_us = max(now_us - _LONGEST_READ_BACK_US, min(recorded_us, read_back_to_us))
+    return Start(
+        judge=judge,
+        day=day,
+        status=status,
+        recall=history.raw_lines,
+        read_back_to_us=read_back_to_us,
+        doubt=_doubt(history),
+    )
+
+
+def _nothing(from_us: int, until_us: int) -> Collection[str]:
+    del from_us, until_us
+    return ()
+
+
+def _judge(history: History, in_force: Airfield) -> Judge:
+    kept = history.resume()
+    if kept is not None and isinstance(kept[1], Mapping):
+        try:
+            return Judge(*in_force, memory=kept[1])
+        except (KeyError, ValueError, TypeError):
+            # Of another version of the program, or damaged: the journal itself tells.
+            pass
+    anew = judge_anew(history.records()).judge
+    if anew is None:
+        return Judge(*in_force)
+    return anew
+
+
+def _fill_day(day: DayRecord, history: History, judge: Judge, now_us: int) -> None:
+    since_us = now_us - KEPT_US
+    until_us = now_us + FUTURE_US + 1
+    columns = history.observations_between(since_us, until_us)
+    valid = np.flatnonzero(columns.verdict == Verdict.VALID)
+    day.add_values(columns.time_us[valid], columns.density_altitude_ft[valid], columns.uncertainty_ft[valid])
+    for record in history.observation_records(since_us, until_us, verdicts=_UNUSED):
+        time_us = record.body.get("time")
+        day.add_unused(time_us if isinstance(time_us, int) else None, str(record.body.get("reason", "")))
+    seen: set[LimitKey] = set()
+    for record in history.changes_between(since_us, until_us, scope="limit"):
+        key = LimitKey(
+            aircraft=str(record.body["aircraft"]),
+            operation=str(record.body["operation"]),
+            quantity=Quantity(str(record.body["quantity"])),
+        )
+        seen.add(key)
+        day.add_state(key, int(str(record.body["time"])), State(str(record.body["to"])))
+    for key, limit in judge.limits.items():
+        if key not in seen and limit.memory.state is not None:
+            day.add_state(key, limit.memory.since_us, limit.memory.state)
+
+
+def _fill_status(status: StatusLog, history: History, day_start_us: int, now_us: int) -> None:
+    waiting = history.open_changes(scope=CURRENT)
+    today = history.changes_between(day_start_us, now_us + FUTURE_US)
+    records = {record.seq: record for record in (*waiting, *today) if record.body.get("scope") in (CURRENT, PAST)}
+    for number, record in records.items():
+        status.add(number, _row_change(record))
+    for number, found in history.acknowledgements(records).items():
+        status.acknowledge((number,), found.initials, found.at)
+
+
+def _row_change(record: StoredRecord) -> RowChange:
+    body = record.body
+    was = body.get("from")
+    row = (str(body["aircraft"]), str(body["operation"])) if "aircraft" in body else None
+    return RowChange(
+        time_us=int(str(body["time"])),
+        row=row,
+        label=str(body.get("label", "")),
+        was=None if was is None else State(str(was)),
+        state=State(str(body["to"])),
+        scope=str(body["scope"]),
+    )
+
+
+def _doubt(history: History) -> str:
+    """Return what the history found odd about itself when it was opened."""
+    message = history.newest(RecordKind.MESSAGE)
+    start = history.newest(RecordKind.START)
+    if message is None or start is None or message.body.get("topic") != "history" or message.seq != start.seq - 1:
+        return ""
+    return str(message.body.get("text", ""))

@@ -1,0 +1,132 @@
+"""Using a whole observation file at once: the board at a time, a replay, the values of every row."""
+
+from collections.abc import Callable
+from dataclasses import dataclass, replace
+from datetime import UTC, datetime
+from pathlib import Path
+
+import numpy as np
+
+from airfield_board.clock import us_from_time
+from airfield_board.configuration.model import Fleet, Profile
+from airfield_board.errors import UserError
+from airfield_board.limits.rules import Episode, LimitChange
+from airfield_board.observations.formats.reading import ReadingRules, ReadResult
+from airfield_board.observations.formats.recognise import read_table
+from airfield_board.observations.observation import ObservationTable, Verdict
+from airfield_board.session.board import board_state
+from airfield_board.session.board_state import BoardState, Message, Mode, Weight
+from airfield_board.session.day_record import DayRecord
+from airfield_board.session.judge import Judge
+
+
+def read_file(path: Path, *, time_zone: str, station: str, finished: bool) -> ReadResult:
+    """Read a whole observation file.
+
+    Parameters
+    ----------
+    time_zone
+        Of times without an offset.
+    station
+        METAR station whose reports are kept; empty: the file must hold one only.
+    finished
+        Whether a last row without a line end is taken.
+
+    Raises
+    ------
+    UserError
+        Where it cannot be read, or is no observation file.
+    """
+    try:
+        if not path.is_file():
+            raise UserError(f"{path}: {'this is not a file' if path.exists() else 'there is no such file'}")
+        content = path.read_bytes()
+        changed = datetime.fromtimestamp(path.stat().st_mtime, tz=UTC)
+    except OSError as error:
+        raise UserError(f"{path}: {error.strerror or error}") from error
+    rules = ReadingRules(time_zone=time_zone, file_time=changed, finished=finished, station=station, name=str(path))
+    return read_table(content, rules)
+
+
+def read_for(profile: Profile, path: Path, *, finished: bool) -> ReadResult:
+    """Read a whole observation file as a profile says. Raises as `read_file`."""
+    settings = profile.observations
+    return read_file(path, time_zone=settings.time_zone, station=settings.station, finished=finished)
+
+
+def assess(profile: Profile, fleet: Fleet, table: ObservationTable, at: datetime, *, exact: bool) -> BoardState:
+    """Return the board at a time, from a file's rows alone.
+
+    Parameters
+    ----------
+    table
+        The file's rows.
+    at
+        The time the board is of.
+    exact
+        True: rows of a later time are not known yet. False: ``at`` is now, and the checks decide as they do live.
+    """
+    at_us = us_from_time(at)
+    if exact:
+        table = table.take(np.flatnonzero(table.time_us <= at_us))
+    judge, day = Judge(profile, fleet), DayRecord()
+    judged = judge.advance(table, at_us, pass_to_us=at_us)
+    day.add_rows(judged.checked, judged.conditions.density_altitude_ft, judged.conditions.uncertainty_ft)
+    day.add_changes(judged.changes)
+    return board_state(judge, day, Mode.PAST if exact else Mode.LIVE, at)
+
+
+def with_note(state: BoardState, text: str) -> BoardState:
+    """Return the board with a message about its source."""
+    return replace(state, messages=(*state.messages, Message(topic="source", weight=Weight.WARNING, text=text)))
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Replay:
+    """What a replay gave.
+
+    Attributes
+    ----------
+    changes
+        In order of time.
+    episodes
+        In order of their start, the open ones too.
+    counts
+        Rows by verdict.
+    """
+
+    changes: tuple[LimitChange, ...]
+    episodes: tuple[Episode, ...]
+    rows: int
+    counts: dict[Verdict, int]
+
+
+def replay(
+    profile: Profile,
+    fleet: Fleet,
+    table: ObservationTable,
+    now: datetime,
+    progress: Callable[[int], None] | None = None,
+) -> Replay:
+    """Run recorded observations through checks, rules and episodes as if live.
+
+    Parameters
+    ----------
+    now
+        The clock: rows of more than 5 min after it are rejected.
+    progress
+        Told how many rows are done.
+    """
+    judge = Judge(profile, fleet)
+    judged = judge.advance(table, us_from_time(now))
+    if progress is not None:
+        progress(len(table))
+    episodes = [*judged.ended, *judge.open_episodes()]
+    order = {key: place for place, key in enumerate(judge.limits)}
+    episodes.sort(key=lambda episode: (episode.start_us, order[episode.key]))
+    return Replay(
+        changes=judged.changes,
+        episodes=tuple(episodes),
+        rows=len(table),
+        counts={verdict: int((judged.checked.verdict == verdict).sum()) for verdict in Verdict},
+    )
