@@ -273,9 +273,11 @@ class StatusChange:
         return self.needs_acknowledgement and not self.acknowledged_by
 
 
-@dataclass(frozen=True, slots=True, kw_only=True)
+@dataclass(frozen=True, slots=True, kw_only=True, eq=False)
 class DayCurve:
     """The local day's valid observations, for the plot; arrays of shape (n,), read-only.
+
+    Two are equal only if they are the same one: arrays have no single answer to whether they are equal.
 
     Attributes
     ----------
