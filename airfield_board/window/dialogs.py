@@ -133,6 +133,7 @@ class TypeInDialog(_Form):
         self._now = now
         self._opened = now()
         self._waiting = False
+        self._refused = ""
         pressure = formatting.UNIT_WORDS[airfield.altimeter_unit]
         degrees = formatting.UNIT_WORDS[airfield.temperature_unit]
         self.time = QLineEdit(local_text(self._opened, ZoneInfo(airfield.time_zone)))
@@ -157,7 +158,7 @@ class TypeInDialog(_Form):
         )
         self.body.addWidget(self.buttons)
         for field in (self.time, self.altimeter, self.temperature, self.dewpoint, self.initials):
-            field.textChanged.connect(self.refresh)
+            field.textChanged.connect(self._changed)
         self.buttons.accepted.connect(self._record)
         self.altimeter.setFocus()
         self.refresh()
@@ -166,13 +167,20 @@ class TypeInDialog(_Form):
         """Read the fields anew; the age that is shown goes on with the clock."""
         entry = self._entry()
         self.action.setEnabled(entry.observation is not None and not self._waiting)
-        self.said.setText(entry.reading or "\n".join(entry.problems))
+        if self._waiting:
+            self.said.setText("Recording it …")
+        else:
+            self.said.setText(self._refused or entry.reading or "\n".join(entry.problems))
 
     def refuse(self, problem: str) -> None:
         """Say why the recorder did not take it; the form can be corrected."""
         self._waiting = False
+        self._refused = problem
         self.refresh()
-        self.said.setText(problem)
+
+    def _changed(self) -> None:
+        self._refused = ""
+        self.refresh()
 
     def _entry(self) -> Entry:
         fields = Fields(
@@ -190,8 +198,7 @@ class TypeInDialog(_Form):
             self.refresh()
             return
         self._waiting = True
-        self.action.setEnabled(False)
-        self.said.setText("Recording it …")
+        self.refresh()
         self.typed.emit(entry.observation)
 
 

@@ -29,7 +29,6 @@ from airfield_board.window.theme import SchemeChoice, apply_scheme, scheme_of
 from airfield_board.window.worker import Answer, Request, Worker
 
 _logger = logging.getLogger(__name__)
-_SMALLEST_PX = (1200, 760)
 _FIRST_PX = (1440, 900)
 _TICK_MS = 1000
 _FAST_TICK_MS = 250
@@ -101,7 +100,6 @@ class MainWindow(QMainWindow):
         self._waiting_shown: object = ()
 
         self.setWindowTitle("Airfield Board")
-        self.setMinimumSize(*_SMALLEST_PX)
         self.resize(*_FIRST_PX)
         self.view = BoardView()
         self.notice = NoticeBar()
@@ -119,6 +117,7 @@ class MainWindow(QMainWindow):
         self.choose_scheme(choice)
 
         self.view.acknowledge_asked.connect(self._acknowledge_asked)
+        self.view.page_asked.connect(self.show_page)
         self.view.poll_asked.connect(self.poll)
         self.view.type_in_asked.connect(self.type_in)
         self._ticker = QTimer(self)
@@ -170,7 +169,7 @@ class MainWindow(QMainWindow):
         limit = timedelta(seconds=worker.watchdog_s * self._feed.speed)
         self.view.set_watchdog(_TRUST_NOTHING if worker.is_silent() else limit)
         self.view.show_state(state, now)
-        if self._type_in is not None and self._type_in[0] is None:
+        if self._type_in is not None:
             self._type_in[1].refresh()
 
     # What a person asks for.
@@ -184,8 +183,8 @@ class MainWindow(QMainWindow):
         if self._state is None:
             return
         waiting = [change for change in self._state.changes if change.open]
-        focused = self.view.focused_change()
-        self._ask_who_saw([change for change in waiting if change.number == focused] or waiting[:1])
+        focused = self.view.changes.focused_change()
+        self._ask_who_saw([change for change in waiting if change == focused] or waiting[:1])
 
     def acknowledge_all(self) -> None:
         """Ask who has seen all that waits."""
@@ -255,7 +254,7 @@ class MainWindow(QMainWindow):
 
     def show_page(self, page: int) -> None:
         """Show a page, by its place from 0."""
-        self.view.show_page(page)
+        self.view.set_page(page)
 
     # What the recorder answers.
 

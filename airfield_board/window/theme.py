@@ -4,6 +4,7 @@ from enum import StrEnum
 
 from PySide6.QtCore import Qt
 from PySide6.QtGui import QColor, QGuiApplication, QPalette
+from PySide6.QtWidgets import QApplication
 
 from airfield_board.window.palette import Palette, Scheme, palette_for
 
@@ -26,7 +27,7 @@ def scheme_of(choice: SchemeChoice) -> Scheme:
 
 def apply_scheme(scheme: Scheme) -> None:
     """Give menus, dialogs and buttons the scheme's colours."""
-    QGuiApplication.setPalette(_qt_palette(palette_for(scheme, grey=False)))
+    QApplication.setPalette(_qt_palette(palette_for(scheme, grey=False)))
 
 
 def _qt_palette(colours: Palette) -> QPalette:
