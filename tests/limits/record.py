@@ -1,5 +1,6 @@
 """Short records written by hand: a row is a minute and a value, taken as the checks and the session hand rows on."""
 
+import json
 from collections.abc import Iterable, Sequence
 from dataclasses import dataclass, replace
 from datetime import UTC, datetime
@@ -11,7 +12,7 @@ import numpy as np
 from airfield_board.clock import us_from_time
 from airfield_board.configuration.model import Aircraft, Limit, Operation, Quantity, Unit, WeightTable
 from airfield_board.limits.in_force import Schedule, schedules_of
-from airfield_board.limits.rules import JudgedRows, LimitJudge
+from airfield_board.limits.rules import JudgedRows, LimitJudge, LimitMemory
 from airfield_board.limits.states import State
 from airfield_board.observations.conditions import ConditionsTable
 from airfield_board.units import MINUTE_US
@@ -200,6 +201,11 @@ class Desk:
             return None
         self._stale = True
         return self._last_valid_us + self._stale_after_us
+
+    def reload(self) -> None:
+        """Go on with the memory as a file keeps it."""
+        text = json.dumps(self.judge.memory.to_json())
+        self.judge = LimitJudge(self.judge.schedule, LimitMemory.from_json(json.loads(text)))
 
     @property
     def state(self) -> State | None:

@@ -107,7 +107,10 @@ class TestLocalDays:
         desk.take([suspect(965, 9000), valid(970, 5000), valid(975, 9000), valid(980, 5000)])
         assert desk.state is None
         desk.take([valid(2395, 9000), valid(2400, 5800)])  # minute 2400 is midnight again
-        assert [(change.was, str(change.state)) for change in desk.judge.take_changes()] == [(None, "near"), (None, "go")]
+        assert [(change.was, str(change.state)) for change in desk.judge.take_changes()] == [
+            (None, "near"),
+            (None, "go"),
+        ]
 
     def test_no_data_before_midnight_counts_although_the_next_row_comes_on_a_day_without_a_limit(self) -> None:
         today = between(None, "2026-07-14", limit_of(6350))
@@ -303,7 +306,9 @@ class TestByPressureAltitude:
         assert changes_of(HOT, at_height(0, -20, height_ft)) == [(0, "no_data")]
         assert changes_of(HOT, at_height(0, 59, height_ft)) == [(0, "no_data")]
 
-    @pytest.mark.parametrize(("height_ft", "state"), [(2000 - 5e-7, "go"), (6000 + 5e-7, "go"), (6000 + 2e-6, "no_data")])
+    @pytest.mark.parametrize(
+        ("height_ft", "state"), [(2000 - 5e-7, "go"), (6000 + 5e-7, "go"), (6000 + 2e-6, "no_data")]
+    )
     def test_a_difference_under_a_millionth_is_not_outside(self, height_ft: float, state: str) -> None:
         assert changes_of(HOT, at_height(0, 20, height_ft)) == [(0, state)]
 

@@ -65,7 +65,13 @@ def test_a_limit_in_another_unit(limit: float, quantity: Quantity, unit: Unit, w
 
 @pytest.mark.parametrize(
     ("band", "unit", "wanted", "expected"),
-    [(500.0, "ft", "m", 152.4), (152.4, "m", "ft", 500.0), (3.0, "c", "f", 5.4), (5.4, "f", "c", 3.0), (3, "c", "c", 3)],
+    [
+        (500.0, "ft", "m", 152.4),
+        (152.4, "m", "ft", 500.0),
+        (3.0, "c", "f", 5.4),
+        (5.4, "f", "c", 3.0),
+        (3, "c", "c", 3),
+    ],
 )
 def test_a_band_in_another_unit_is_a_difference(band: float, unit: Unit, wanted: Unit, expected: float) -> None:
     assert band_in_unit(band, unit, wanted) == pytest.approx(expected)
