@@ -27,6 +27,8 @@ from airfield_board.window.entry import Entry, Fields, local_text, read_entry, r
 
 _WIDTH_PX = 560
 _LIST_SIZE_PX = (880, 560)
+_MARGINS_PX = (20, 16, 20, 16)
+_SPACING_PX = 12
 ADVISES = "The program advises; the flight manual, local orders and the licensed people on duty decide."
 
 
@@ -41,7 +43,10 @@ def plain_label(text: str = "") -> QLabel:
 
 
 class _Form(QDialog):
-    """A dialog with an action and Cancel; the action can be pressed only when the form is complete."""
+    """A dialog with an action and Cancel; the action can be pressed only when the form is complete.
+
+    The buttons bear words and no icons: those of Qt are red and green, which belong to the states.
+    """
 
     def __init__(self, parent: QWidget | None, title: str, action: str) -> None:
         super().__init__(parent)
@@ -49,20 +54,22 @@ class _Form(QDialog):
         self.setAttribute(Qt.WidgetAttribute.WA_DeleteOnClose)
         self.setMinimumWidth(_WIDTH_PX)
         self.body = QVBoxLayout(self)
+        self.body.setContentsMargins(*_MARGINS_PX)
+        self.body.setSpacing(_SPACING_PX)
+        self.form = QFormLayout()
+        self.form.setSpacing(_SPACING_PX)
         self.buttons = QDialogButtonBox()
         self.action: QPushButton = self.buttons.addButton(action, QDialogButtonBox.ButtonRole.AcceptRole)
         self.action.setDefault(True)
-        self.buttons.addButton(QDialogButtonBox.StandardButton.Cancel)
+        self.buttons.addButton("Cancel", QDialogButtonBox.ButtonRole.RejectRole)
         self.buttons.rejected.connect(self.reject)
 
-    def name_field(self, label: str, remembered: str) -> QLineEdit:
-        """Return a field for initials or a name, with its label, in the form."""
-        field = QLineEdit(remembered)
+    def add_field(self, label: str, text: str = "") -> QLineEdit:
+        """Add a short field with its label to the form, and return it."""
+        field = QLineEdit(text)
         field.setMaxLength(20)
         field.setAccessibleName(label)
-        form = QFormLayout()
-        form.addRow(label, field)
-        self.body.addLayout(form)
+        self.form.addRow(label, field)
         return field
 
 
@@ -86,8 +93,10 @@ class AcknowledgeDialog(_Form):
         self.listed = QPlainTextEdit("\n".join(_change_words(change, zone) for change in changes))
         self.listed.setReadOnly(True)
         self.listed.setAccessibleName("Status changes to acknowledge")
+        self.listed.setFixedHeight(self.listed.fontMetrics().lineSpacing() * min(max(count, 2), 12) + 24)
         self.body.addWidget(self.listed)
-        self.initials = self.name_field("Your initials", initials)
+        self.initials = self.add_field("Your initials", initials)
+        self.body.addLayout(self.form)
         self.body.addWidget(self.buttons)
         self.initials.textChanged.connect(self._refresh)
         self.buttons.accepted.connect(self._acknowledge)
@@ -136,20 +145,13 @@ class TypeInDialog(_Form):
         self._refused = ""
         pressure = formatting.UNIT_WORDS[airfield.altimeter_unit]
         degrees = formatting.UNIT_WORDS[airfield.temperature_unit]
-        self.time = QLineEdit(local_text(self._opened, ZoneInfo(airfield.time_zone)))
-        self.altimeter, self.temperature, self.dewpoint = QLineEdit(), QLineEdit(), QLineEdit()
-        form = QFormLayout()
-        for label, field in (
-            ("Time, local", self.time),
-            (f"Altimeter setting, {pressure}", self.altimeter),
-            (f"Temperature, {degrees}", self.temperature),
-            (f"Dew point, {degrees} (may be left empty)", self.dewpoint),
-        ):
-            field.setAccessibleName(label)
-            field.setMaxLength(20)
-            form.addRow(label, field)
-        self.body.addLayout(form)
-        self.initials = self.name_field("Your initials", initials)
+        self.time = self.add_field("Time, local", local_text(self._opened, ZoneInfo(airfield.time_zone)))
+        self.altimeter = self.add_field(f"Altimeter setting, {pressure}")
+        self.temperature = self.add_field(f"Temperature, {degrees}")
+        self.dewpoint = self.add_field(f"Dew point, {degrees}")
+        self.dewpoint.setPlaceholderText("may be left empty")
+        self.initials = self.add_field("Your initials", initials)
+        self.body.addLayout(self.form)
         self.said = plain_label()
         self.said.setAccessibleName("How the fields are understood")
         self.body.addWidget(self.said)
@@ -224,7 +226,8 @@ class WaitingSettingsDialog(_Form):
         )
         rows = [(change.where, change.in_force, change.waiting) for change in self.shown]
         self.body.addWidget(_table(("Setting", "In force", "Waiting"), rows))
-        self.name = self.name_field("Your name", name)
+        self.name = self.add_field("Your name", name)
+        self.body.addLayout(self.form)
         self.body.addWidget(self.buttons)
         self.name.textChanged.connect(self._refresh)
         self.buttons.accepted.connect(self._accept_settings)
@@ -253,9 +256,11 @@ class MessagesDialog(QDialog):
         self.messages.setReadOnly(True)
         self.messages.setAccessibleName("Messages")
         self.rows = _table(("Time, local", "Why the row is not used"), ())
-        buttons = QDialogButtonBox(QDialogButtonBox.StandardButton.Close)
+        buttons = QDialogButtonBox()
+        buttons.addButton("Close", QDialogButtonBox.ButtonRole.RejectRole)
         buttons.rejected.connect(self.reject)
         body = QVBoxLayout(self)
+        body.setContentsMargins(*_MARGINS_PX)
         for widget in (plain_label("Messages"), self.messages, plain_label("Rows not used today"), self.rows, buttons):
             body.addWidget(widget)
         self._shown: tuple[object, ...] = ()

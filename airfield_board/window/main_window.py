@@ -427,6 +427,7 @@ class MainWindow(QMainWindow):
         box.setTextFormat(Qt.TextFormat.PlainText)
         box.setWindowTitle(title)
         box.setText(text)
+        box.addButton("Close", QMessageBox.ButtonRole.AcceptRole)
         box.open()
 
     def closeEvent(self, event: QCloseEvent) -> None:

@@ -6,7 +6,10 @@ from PySide6.QtCore import Qt
 from PySide6.QtGui import QColor, QGuiApplication, QPalette
 from PySide6.QtWidgets import QApplication
 
+from airfield_board.window.fonts import font
 from airfield_board.window.palette import Palette, Scheme, palette_for
+
+_WORDS_PX = 14
 
 
 class SchemeChoice(StrEnum):
@@ -26,7 +29,8 @@ def scheme_of(choice: SchemeChoice) -> Scheme:
 
 
 def apply_scheme(scheme: Scheme) -> None:
-    """Give menus, dialogs and buttons the scheme's colours."""
+    """Give menus, dialogs and buttons the scheme's colours and the program's typeface."""
+    QApplication.setFont(font(_WORDS_PX))
     QApplication.setPalette(_qt_palette(palette_for(scheme, grey=False)))
 
 
