@@ -160,13 +160,22 @@ def write_changes(boards: Iterable[BoardState], out: TextIO) -> BoardState:
 
 def _paint(state: BoardState, folder: Path, scheme: str) -> Path:
     os.environ["QT_QPA_PLATFORM"] = "offscreen"
-    from airfield_board.window.picture import paint_to_file
+    from airfield_board.window.board_view import PageName
+    from airfield_board.window.picture import offscreen_application, save_page
 
-    temporary = Path(tempfile.gettempdir())
-    chosen = folder if os.access(folder, os.W_OK) else temporary
-    picture = chosen / DEMO_PICTURE
-    paint_to_file(state, picture, size_px=_DEMO_PICTURE_PX, scheme="dark" if scheme == "dark" else "light")
-    return picture
+    application = offscreen_application()
+    look = "dark" if scheme == "dark" else "light"
+    refusal = ""
+    for place in (folder, Path(tempfile.gettempdir())):
+        picture = place / DEMO_PICTURE
+        try:
+            save_page(picture, state, state.assessed_at, page=PageName.BOARD, size_px=_DEMO_PICTURE_PX, scheme=look)
+        except OSError as error:
+            refusal = str(error)
+            continue
+        application.processEvents()
+        return picture
+    raise UserError(refusal)
 
 
 def _run(platform: str, start_feed: "Callable[[], Feed]", *, scheme: str, replayable: bool) -> int:
