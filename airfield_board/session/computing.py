@@ -54,7 +54,7 @@ class Computed:
     table: ObservationTable
     elevation_m: NDArray[np.float64]
     conditions: ConditionsTable
-    quality: Sequence[str]
+    quality: list[str]
 
 
 def compute(read: ReadResult, elevation_m: float | None, now_us: int) -> Computed:

@@ -27,14 +27,13 @@ from airfield_board.session.intake import Intake
 from airfield_board.session.judge import Judge, Judged
 from airfield_board.session.recording import Recording, place_of_history
 from airfield_board.session.records import (
-    change_body,
+    change_records,
     configuration_records,
     empty_table,
-    episode_body,
     observation_records,
 )
-from airfield_board.session.restoring import restored, settings_from_history
-from airfield_board.session.settings import Airfield, Settings, SettingsFiles
+from airfield_board.session.restoring import restored, settings_at_start, settings_from_history
+from airfield_board.session.settings import Airfield, SettingsFiles
 from airfield_board.session.status import RowStates, StatusLog
 from airfield_board.units import HOUR_US
 
@@ -73,7 +72,7 @@ class Recorder:
         self._settings_since = now
         kept = settings_from_history(recording.history)
         start = restored(recording.history, airfield if kept is None else kept.in_force, now)
-        self._settings, new_version = _settings_at_start(kept, airfield)
+        self._settings, new_version = settings_at_start(kept, airfield)
         self._judge: Judge = start.judge
         self._day: DayRecord = start.day
         self._status: StatusLog = start.status
@@ -278,11 +277,7 @@ class Recorder:
         """Record, in the order in which it came about, and follow the rows' states."""
         row_changes = self._rows.follow(changes, self._judge.fleet)
         self._day.add_changes(changes)
-        own = [
-            *records,
-            *(Record(kind=RecordKind.CHANGE, at=now, body=change_body(change)) for change in changes),
-            *(Record(kind=RecordKind.EPISODE, at=now, body=episode_body(episode)) for episode in ended),
-        ]
+        own = [*records, *change_records(changes, ended, now)]
         of_rows = [Record(kind=RecordKind.CHANGE, at=now, body=change.body()) for change in row_changes]
         if not own and not of_rows and not self._recording.kept_back:
             return
@@ -339,27 +334,6 @@ class Recorder:
                 Message(topic="observation", weight=Weight.WARNING, text=text, time=time_from_us(time_us)),
             )
         return tuple(found)
-
-
-def _settings_at_start(kept: Settings | None, airfield: Airfield) -> tuple[Settings, bool]:
-    """Go on with what was in force: what a file has loosened since waits, as if the program had run.
-
-    Returns
-    -------
-    tuple
-        The settings, and whether the files are a version that the history does not know yet.
-    """
-    if kept is None:
-        return Settings(airfield), True
-    if _hashes(kept.read) != _hashes(airfield):
-        kept.take(airfield)
-        return kept, True
-    # The same texts; their paths may have moved with them.
-    return (kept if kept.waiting else Settings(airfield)), False
-
-
-def _hashes(airfield: Airfield) -> tuple[str, str]:
-    return airfield[0].sha256, airfield[1].sha256
 
 
 def _source(profile: Profile) -> FileSource:

@@ -1,6 +1,6 @@
 """What the recorder writes down, as bodies of records, and rows read back from them."""
 
-from collections.abc import Mapping, Sequence
+from collections.abc import Iterable, Mapping, Sequence
 from datetime import datetime
 
 import numpy as np
@@ -102,6 +102,14 @@ def episode_body(episode: Episode) -> dict[str, Json]:
         "minutes_without_data": episode.minutes_without_data,
         "limit": episode.limit,
     }
+
+
+def change_records(changes: Iterable[LimitChange], ended: Iterable[Episode], at: datetime) -> list[Record]:
+    """Return the records of changes of limits, and of episodes that ended."""
+    return [
+        *(Record(kind=RecordKind.CHANGE, at=at, body=change_body(change)) for change in changes),
+        *(Record(kind=RecordKind.EPISODE, at=at, body=episode_body(episode)) for episode in ended),
+    ]
 
 
 def configuration_records(profile: Profile, fleet: Fleet, at: datetime) -> list[Record]:

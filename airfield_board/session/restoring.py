@@ -1,4 +1,4 @@
-"""Going on where the last recorder stopped: settings, states, holds, the day's curve, what waits for acknowledgement."""
+"""Going on where the last recorder stopped: settings, states, holds, the day's curve, what waits."""
 
 from collections.abc import Callable, Collection, Mapping
 from dataclasses import dataclass
@@ -61,6 +61,27 @@ def settings_from_history(history: History | None) -> Settings | None:
         # Texts of an older version of the program, which no longer count as valid, tell nothing.
         return None
     return reader.settings
+
+
+def settings_at_start(kept: Settings | None, airfield: Airfield) -> tuple[Settings, bool]:
+    """Go on with what was in force: what a file has loosened since waits, as if the program had run.
+
+    Returns
+    -------
+    tuple
+        The settings, and whether the files are a version that the history does not know yet.
+    """
+    if kept is None:
+        return Settings(airfield), True
+    if _hashes(kept.read) != _hashes(airfield):
+        kept.take(airfield)
+        return kept, True
+    # The same texts; their paths may have moved with them.
+    return (kept if kept.waiting else Settings(airfield)), False
+
+
+def _hashes(airfield: Airfield) -> tuple[str, str]:
+    return airfield[0].sha256, airfield[1].sha256
 
 
 def restored(history: History | None, in_force: Airfield, now: datetime) -> Start:

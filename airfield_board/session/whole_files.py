@@ -1,7 +1,5 @@
-"""Using a whole observation file at once: the board at a time, a replay, the values of every row."""
+"""Using a whole observation file at once: reading it, and the board at a time."""
 
-from collections.abc import Callable
-from dataclasses import dataclass, replace
 from datetime import UTC, datetime
 from pathlib import Path
 
@@ -10,12 +8,11 @@ import numpy as np
 from airfield_board.clock import us_from_time
 from airfield_board.configuration.model import Fleet, Profile
 from airfield_board.errors import UserError
-from airfield_board.limits.rules import Episode, LimitChange
 from airfield_board.observations.formats.reading import ReadingRules, ReadResult
 from airfield_board.observations.formats.recognise import read_table
-from airfield_board.observations.observation import ObservationTable, Verdict
+from airfield_board.observations.observation import ObservationTable
 from airfield_board.session.board import board_state
-from airfield_board.session.board_state import BoardState, Message, Mode, Weight
+from airfield_board.session.board_state import BoardState, Mode
 from airfield_board.session.day_record import DayRecord
 from airfield_board.session.judge import Judge
 
@@ -74,59 +71,3 @@ def assess(profile: Profile, fleet: Fleet, table: ObservationTable, at: datetime
     day.add_rows(judged.checked, judged.conditions.density_altitude_ft, judged.conditions.uncertainty_ft)
     day.add_changes(judged.changes)
     return board_state(judge, day, Mode.PAST if exact else Mode.LIVE, at)
-
-
-def with_note(state: BoardState, text: str) -> BoardState:
-    """Return the board with a message about its source."""
-    return replace(state, messages=(*state.messages, Message(topic="source", weight=Weight.WARNING, text=text)))
-
-
-@dataclass(frozen=True, slots=True, kw_only=True)
-class Replay:
-    """What a replay gave.
-
-    Attributes
-    ----------
-    changes
-        In order of time.
-    episodes
-        In order of their start, the open ones too.
-    counts
-        Rows by verdict.
-    """
-
-    changes: tuple[LimitChange, ...]
-    episodes: tuple[Episode, ...]
-    rows: int
-    counts: dict[Verdict, int]
-
-
-def replay(
-    profile: Profile,
-    fleet: Fleet,
-    table: ObservationTable,
-    now: datetime,
-    progress: Callable[[int], None] | None = None,
-) -> Replay:
-    """Run recorded observations through checks, rules and episodes as if live.
-
-    Parameters
-    ----------
-    now
-        The clock: rows of more than 5 min after it are rejected.
-    progress
-        Told how many rows are done.
-    """
-    judge = Judge(profile, fleet)
-    judged = judge.advance(table, us_from_time(now))
-    if progress is not None:
-        progress(len(table))
-    episodes = [*judged.ended, *judge.open_episodes()]
-    order = {key: place for place, key in enumerate(judge.limits)}
-    episodes.sort(key=lambda episode: (episode.start_us, order[episode.key]))
-    return Replay(
-        changes=judged.changes,
-        episodes=tuple(episodes),
-        rows=len(table),
-        counts={verdict: int((judged.checked.verdict == verdict).sum()) for verdict in Verdict},
-    )

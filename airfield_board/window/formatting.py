@@ -132,6 +132,11 @@ def value_of_limit(value: float, unit: Unit) -> str:
     return f"{number(tenths, 0 if tenths == tenths.to_integral_value() else 1)} {UNIT_WORDS[unit]}"
 
 
+def value(reading: float, unit: Unit) -> str:
+    """Write a compared value with its unit, rounded up: ``6,830 ft``, ``31.4 °C``."""
+    return f"{number(rounded_up(reading, STEP[unit]), 0 if unit in ('ft', 'm') else 1)} {UNIT_WORDS[unit]}"
+
+
 def weight(value: float, unit: str) -> str:
     """Weight that may depart, rounded down: ``2,410 lb``."""
     return f"{number(rounded_down(value, WEIGHT_STEP[unit]))} {unit}".rstrip()
@@ -218,18 +223,23 @@ def limit_phrase(line: LimitLine | None) -> str:
     return f"limit {value}{', guarded' if line.guarded else ''}"
 
 
-def limit_cell(line: LimitLine | None) -> str:
-    """Limit as it stands in its own column, without the foot: ``6,350``, ``42 °C``."""
+def limit_cell(line: LimitLine | None, column_unit: str) -> str:
+    """Limit as it stands in its own column, with any unit but the column's: ``6,350``, ``42 °C``."""
     if line is None or line.limit is None:
         return DASH
-    return value_of_limit(line.limit, line.unit).removesuffix(" ft")
+    return value_of_limit(line.limit, line.unit).removesuffix(f" {column_unit}")
 
 
-def margin_cell(line: LimitLine | None) -> str:
-    """Margin as it stands in its column, with any unit but the foot: ``+120``, ``+11.6 °C``."""
+def margin_cell(line: LimitLine | None, column_unit: str) -> str:
+    """Margin as it stands in its column, with any unit but the column's: ``+120``, ``+11.6 °C``."""
     if line is None or line.margin is None or not math.isfinite(line.margin):
         return DASH
-    return f"{margin(line.margin, line.unit)} {UNIT_WORDS[line.unit]}".removesuffix(" ft")
+    return f"{margin(line.margin, line.unit)} {UNIT_WORDS[line.unit]}".removesuffix(f" {column_unit}")
+
+
+def temporary_short(line: LimitLine | None) -> str:
+    """Until when a temporary limit is in force, for rows of one line: ``to 30 Sep``."""
+    return f"to {day(date.fromisoformat(line.valid_until))}" if line is not None and line.valid_until else ""
 
 
 def temporary_phrase(line: LimitLine | None) -> str:

@@ -1,0 +1,373 @@
+"""The commands; each one's own code is imported when it runs.
+
+Results go to standard output, messages to standard error. Exit codes: 0 done; 1 the answer is no; 2 wrong use or
+unreadable input.
+"""
+
+import argparse
+import os
+import sys
+from collections.abc import Callable, Iterable, Sequence
+from contextlib import suppress
+from datetime import UTC, datetime
+from pathlib import Path
+from typing import TextIO
+
+from airfield_board import __version__
+from airfield_board.errors import UserError
+
+DONE, NO, WRONG_USE = 0, 1, 2
+_ADVISES = "Airfield Board advises; the flight manual, local orders and the licensed people on duty decide."
+
+
+def main(arguments: Sequence[str] | None = None) -> int:
+    """Run a command.
+
+    Parameters
+    ----------
+    arguments
+        Without the program's name; None: those of the process.
+
+    Returns
+    -------
+    int
+        The exit code.
+    """
+    parser = _parser()
+    options = parser.parse_args(arguments)
+    run: Callable[[argparse.Namespace], int] = options.run
+    try:
+        return run(options)
+    except UserError as error:
+        sys.stderr.write(f"{error}\n")
+        return WRONG_USE
+    except BrokenPipeError:
+        # Whoever read the output has had enough; what Python still holds for it must not be written at the end.
+        with suppress(OSError):
+            os.dup2(os.open(os.devnull, os.O_WRONLY), sys.stdout.fileno())
+        return DONE
+    except KeyboardInterrupt:
+        sys.stderr.write("Stopped.\n")
+        return WRONG_USE
+
+
+def _parser() -> argparse.ArgumentParser:
+    parser = argparse.ArgumentParser(
+        prog="airfield-board",
+        description="Which types may depart now, by density altitude. Without a command it opens the window.",
+        epilog=_ADVISES,
+        allow_abbrev=False,
+    )
+    parser.add_argument("--version", action="version", version=f"Airfield Board {__version__}")
+    source = parser.add_mutually_exclusive_group()
+    source.add_argument("--airfield", type=Path, metavar="PROFILE", help="open the window on this airfield profile")
+    source.add_argument("--demo", action="store_true", help="open the demo: an invented field that feeds itself")
+    parser.add_argument("--scheme", choices=("light", "dark", "system"), default="system", help="colours of the window")
+    parser.set_defaults(run=_window)
+    commands = parser.add_subparsers(title="commands", metavar="COMMAND")
+    _add_assess(commands)
+    _add_compute(commands)
+    _add_replay(commands)
+    _add_check(commands)
+    _add_snapshot(commands)
+    _add_verify(commands)
+    _add_schema(commands)
+    return parser
+
+
+def _command(
+    commands: "argparse._SubParsersAction[argparse.ArgumentParser]",
+    name: str,
+    run: Callable[[argparse.Namespace], int],
+    tells: str,
+) -> argparse.ArgumentParser:
+    parser = commands.add_parser(name, help=tells, description=tells, epilog=_ADVISES, allow_abbrev=False)
+    parser.set_defaults(run=run)
+    return parser
+
+
+def _airfield_option(parser: argparse.ArgumentParser) -> None:
+    parser.add_argument("--airfield", type=Path, metavar="PROFILE", required=True, help="the airfield profile")
+
+
+def _time(text: str) -> datetime:
+    expected = f"{text!r} is no time with an offset, such as 2026-07-14T20:05:00Z"
+    try:
+        when = datetime.fromisoformat(text)
+    except ValueError as error:
+        raise argparse.ArgumentTypeError(expected) from error
+    if when.tzinfo is None:
+        raise argparse.ArgumentTypeError(expected)
+    return when.astimezone(UTC)
+
+
+# -- the window
+
+
+def _window(options: argparse.Namespace) -> int:
+    if options.demo:
+        from airfield_board.window.application import run_demo
+
+        return run_demo(scheme=options.scheme)
+    if options.airfield is None:
+        raise UserError(
+            "Say which airfield: --airfield PROFILE opens the window on it; --demo shows an invented one.\n"
+            "airfield-board --help lists the commands."
+        )
+    from airfield_board.window.application import run_window
+
+    return run_window(options.airfield, scheme=options.scheme)
+
+
+# -- assess
+
+
+def _add_assess(commands: "argparse._SubParsersAction[argparse.ArgumentParser]") -> None:
+    parser = _command(
+        commands, "assess", _assess, "the board once, as a table or JSON, from the observation file alone"
+    )
+    _airfield_option(parser)
+    parser.add_argument("--observations", type=Path, metavar="FILE", help="instead of the profile's file")
+    parser.add_argument("--at", type=_time, metavar="TIME", help="from the rows up to this time (default now)")
+    parser.add_argument("--json", action="store_true", help="JSON instead of a table")
+
+
+def _assess(options: argparse.Namespace) -> int:
+    from airfield_board.configuration.profile import load_airfield
+    from airfield_board.session.records import empty_table
+    from airfield_board.session.whole_files import assess, read_for
+
+    profile, fleet = load_airfield(options.airfield)
+    path: Path = options.observations or profile.observations.file
+    trouble: UserError | None = None
+    try:
+        read = read_for(profile, path, finished=False)
+        table = read.table
+        _say(f"{path}: {note}" for note in read.notes)
+    except UserError as error:
+        # The board is given all the same: without observations every state is NO DATA.
+        trouble, table = error, empty_table()
+    at = options.at or datetime.now(UTC)
+    state = assess(profile, fleet, table, at, exact=options.at is not None)
+    if options.json:
+        from airfield_board.session.board_json import board_json
+
+        _print_json(board_json(state), indent=2)
+    else:
+        from airfield_board.window.text_board import text_board
+
+        sys.stdout.write(text_board(state))
+    if trouble is not None:
+        _say([str(trouble)])
+        return WRONG_USE
+    return DONE
+
+
+# -- compute
+
+
+def _add_compute(commands: "argparse._SubParsersAction[argparse.ArgumentParser]") -> None:
+    parser = _command(commands, "compute", _compute, "the air of every row of an observation file, as CSV")
+    parser.add_argument("file", type=Path, metavar="FILE", help="observations: CSV, JSON or METAR")
+    parser.add_argument("--elevation-ft", type=float, metavar="N", help="of the field; default: each row's own")
+    parser.add_argument("--station", default="", metavar="ID", help="METAR: take this station's reports only")
+    parser.add_argument("--out", type=Path, metavar="FILE", help="default: standard output")
+
+
+def _compute(options: argparse.Namespace) -> int:
+    from airfield_board.clock import us_from_time
+    from airfield_board.configuration.profile import elevation_in_range
+    from airfield_board.session.computing import compute, write_csv
+    from airfield_board.session.whole_files import read_file
+    from airfield_board.units import m_from_ft
+
+    elevation_m = None
+    if options.elevation_ft is not None:
+        elevation_m = m_from_ft(options.elevation_ft)
+        if not elevation_in_range(elevation_m):
+            raise UserError(f"--elevation-ft {options.elevation_ft:g}: no elevation of an airfield")
+    read = read_file(options.file, time_zone="UTC", station=options.station, finished=True)
+    _say(f"{options.file}: {note}" for note in read.notes)
+    computed = compute(read, elevation_m, us_from_time(datetime.now(UTC)))
+    progress = _progress("rows written", len(computed.table))
+    if options.out is None:
+        write_csv(computed, sys.stdout, progress)
+    else:
+        _write_file(options.out, lambda out: write_csv(computed, out, progress))
+    return DONE
+
+
+def _write_file(path: Path, write: Callable[[TextIO], None]) -> None:
+    try:
+        with path.open("w", encoding="utf-8", newline="") as out:
+            write(out)
+    except OSError as error:
+        raise UserError(f"{path}: {error.strerror or error}") from error
+
+
+# -- replay
+
+
+def _add_replay(commands: "argparse._SubParsersAction[argparse.ArgumentParser]") -> None:
+    parser = _command(
+        commands, "replay", _replay, "recorded observations through checks, rules and episodes as if live"
+    )
+    parser.add_argument("file", type=Path, metavar="FILE", help="observations: CSV, JSON or METAR")
+    _airfield_option(parser)
+    parser.add_argument("--history", type=Path, metavar="DB", help="also record it into this new history")
+    parser.add_argument("--json", action="store_true", help="one JSON object a line instead of text")
+
+
+def _replay(options: argparse.Namespace) -> int:
+    from airfield_board.configuration.profile import load_airfield
+    from airfield_board.session.replaying import replay
+    from airfield_board.session.whole_files import read_for
+
+    profile, fleet = load_airfield(options.airfield)
+    read = read_for(profile, options.file, finished=True)
+    _say(f"{options.file}: {note}" for note in read.notes)
+    now = datetime.now(UTC)
+    if options.history is not None and options.history.exists():
+        raise UserError(f"{options.history} exists; a replay records into a new history only")
+    progress = _progress("rows judged", len(read.table))
+    outcome = replay(profile, fleet, read, now, history_path=options.history, progress=progress)
+    if options.json:
+        from airfield_board.session.board_json import change_json, episode_json
+
+        for change in outcome.changes:
+            _print_json(change_json(change))
+        for episode in outcome.episodes:
+            _print_json(episode_json(episode))
+        _print_json(outcome.summary())
+    else:
+        from airfield_board.window.text_board import text_replay
+
+        sys.stdout.write(text_replay(outcome, profile, fleet))
+    return DONE
+
+
+# -- check, schema
+
+
+def _add_check(commands: "argparse._SubParsersAction[argparse.ArgumentParser]") -> None:
+    parser = _command(commands, "check", _check, "validates airfield profiles and fleets")
+    parser.add_argument("files", type=Path, nargs="+", metavar="FILE", help="a profile or a fleet")
+
+
+def _check(options: argparse.Namespace) -> int:
+    from airfield_board.configuration.checking import check_files
+
+    findings = check_files(options.files)
+    for line in findings.lines:
+        sys.stdout.write(f"{line}\n")
+    if findings.unreadable:
+        return WRONG_USE
+    return NO if findings.faults else DONE
+
+
+def _add_schema(commands: "argparse._SubParsersAction[argparse.ArgumentParser]") -> None:
+    parser = _command(commands, "schema", _schema, "prints the JSON Schema of a file")
+    parser.add_argument("of", choices=("profile", "fleet"), metavar="profile|fleet")
+
+
+def _schema(options: argparse.Namespace) -> int:
+    from airfield_board.configuration.json_schema import fleet_schema, profile_schema
+
+    _print_json(profile_schema() if options.of == "profile" else fleet_schema(), indent=2)
+    return DONE
+
+
+# -- snapshot
+
+
+def _size(text: str) -> tuple[int, int]:
+    width, cross, height = text.partition("x")
+    if not (cross and width.isascii() and width.isdigit() and height.isascii() and height.isdigit()):
+        raise argparse.ArgumentTypeError(f"{text!r} is no size, such as 1440x900")
+    size = int(width), int(height)
+    if not (1200 <= size[0] <= 7680 and 760 <= size[1] <= 4320):
+        raise argparse.ArgumentTypeError("the size must be from 1200x760 to 7680x4320")
+    return size
+
+
+def _add_snapshot(commands: "argparse._SubParsersAction[argparse.ArgumentParser]") -> None:
+    parser = _command(commands, "snapshot", _snapshot, "paints a page to a PNG, without a screen")
+    _airfield_option(parser)
+    parser.add_argument("--out", type=Path, metavar="PNG", required=True, help="the picture")
+    parser.add_argument("--page", choices=("board", "margin"), default="board")
+    parser.add_argument("--size", type=_size, metavar="WxH", default=(1440, 900), help="in pixels (default 1440x900)")
+    parser.add_argument("--at", type=_time, metavar="TIME", help="from the rows up to this time (default now)")
+    parser.add_argument("--scheme", choices=("light", "dark"), default="light")
+
+
+def _snapshot(options: argparse.Namespace) -> int:
+    from airfield_board.session.snapshot import snapshot_state
+    from airfield_board.window.preflight import require_libraries
+
+    state, notes = snapshot_state(options.airfield, options.at, datetime.now(UTC))
+    _say(notes)
+    require_libraries("offscreen")
+    os.environ["QT_QPA_PLATFORM"] = "offscreen"
+    from airfield_board.window.board_view import PageName
+    from airfield_board.window.picture import offscreen_application, save_page
+
+    application = offscreen_application()
+    page = PageName.BOARD if options.page == "board" else PageName.MARGIN
+    try:
+        save_page(options.out, state, state.assessed_at, page=page, size_px=options.size, scheme=options.scheme)
+    except OSError as error:
+        raise UserError(f"{options.out}: {error.strerror or error}") from error
+    application.processEvents()
+    return DONE
+
+
+# -- verify
+
+
+def _add_verify(commands: "argparse._SubParsersAction[argparse.ArgumentParser]") -> None:
+    parser = _command(commands, "verify", _verify, "proves a history whole and unaltered")
+    parser.add_argument("history", type=Path, metavar="DB")
+    parser.add_argument("--closing-hash", metavar="HASH", help="a hash printed or kept elsewhere; it must occur")
+    parser.add_argument("--rejudge", action="store_true", help="judge every logged observation anew and compare")
+
+
+def _verify(options: argparse.Namespace) -> int:
+    from airfield_board.session.verifying import verify_history
+
+    findings = verify_history(
+        options.history,
+        closing_hash=options.closing_hash,
+        rejudge=options.rejudge,
+        progress=_progress("records checked", None),
+    )
+    for line in findings.lines:
+        sys.stdout.write(f"{line}\n")
+    return DONE if findings.whole else NO
+
+
+# -- what they share
+
+
+def _say(lines: Iterable[str]) -> None:
+    for line in lines:
+        sys.stderr.write(f"{line}\n")
+
+
+def _print_json(value: object, indent: int | None = None) -> None:
+    import json
+
+    sys.stdout.write(json.dumps(value, ensure_ascii=False, allow_nan=False, indent=indent) + "\n")
+
+
+def _progress(words: str, of: int | None) -> Callable[[int], None] | None:
+    """Return something that shows progress on a terminal, on one line; nothing where standard error is none."""
+    if not sys.stderr.isatty():
+        return None
+
+    def show(done: int) -> None:
+        whole = "" if of is None else f" of {of:,}"
+        end = "\n" if done == of else ""
+        sys.stderr.write(f"\r{done:,}{whole} {words}{end}")
+        sys.stderr.flush()
+
+    return show

@@ -1,0 +1,144 @@
+"""Recorded observations through checks, rules and episodes, as if live."""
+
+from collections.abc import Callable, Iterator
+from dataclasses import dataclass
+from datetime import datetime
+from pathlib import Path
+
+import numpy as np
+
+from airfield_board import __version__
+from airfield_board.clock import time_from_us, us_from_time
+from airfield_board.configuration.model import Fleet, Profile
+from airfield_board.history.records import Json, Record, RecordKind
+from airfield_board.history.store import History
+from airfield_board.limits.rules import Episode, LimitChange
+from airfield_board.observations.formats.reading import ReadResult
+from airfield_board.observations.observation import ObservationTable, Verdict
+from airfield_board.session.judge import Judge, Judged
+from airfield_board.session.records import change_records, configuration_records, observation_records
+from airfield_board.session.status import RowStates
+
+_BATCH_ROWS = 5_000
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Replay:
+    """What a replay gave.
+
+    Attributes
+    ----------
+    changes
+        In order of time.
+    episodes
+        In order of their start, the open ones too.
+    rows
+        How many were read.
+    counts
+        Rows by verdict.
+    """
+
+    changes: tuple[LimitChange, ...]
+    episodes: tuple[Episode, ...]
+    rows: int
+    counts: dict[Verdict, int]
+
+    def summary(self) -> dict[str, Json]:
+        """Return the last line of a replay."""
+        return {
+            "kind": "summary",
+            "rows": self.rows,
+            **{verdict.name.lower(): self.counts[verdict] for verdict in Verdict},
+        }
+
+
+def replay(
+    profile: Profile,
+    fleet: Fleet,
+    read: ReadResult,
+    now: datetime,
+    *,
+    history_path: Path | None = None,
+    progress: Callable[[int], None] | None = None,
+) -> Replay:
+    """Run recorded observations through checks, rules and episodes.
+
+    Time passes with the rows; after the last one nothing more happens.
+
+    Parameters
+    ----------
+    now
+        The clock: rows of more than 5 min after it are rejected.
+    history_path
+        Of a history that does not exist yet, to record it all in; None: nothing is recorded.
+    progress
+        Told how many rows are done.
+
+    Raises
+    ------
+    UserError
+        Where the history cannot be made or written.
+    """
+    judge = Judge(profile, fleet)
+    if history_path is None:
+        steps = [judge.advance(read.table, us_from_time(now))]
+        if progress is not None:
+            progress(len(read.table))
+    else:
+        steps = list(_recorded(judge, read, now, history_path, progress))
+    place = {key: index for index, key in enumerate(judge.limits)}
+    episodes = [episode for step in steps for episode in step.ended] + list(judge.open_episodes())
+    episodes.sort(key=lambda episode: (episode.start_us, place[episode.key]))
+    return Replay(
+        changes=tuple(change for step in steps for change in step.changes),
+        episodes=tuple(episodes),
+        rows=len(read.table),
+        counts={verdict: sum(int((step.checked.verdict == verdict).sum()) for step in steps) for verdict in Verdict},
+    )
+
+
+def _recorded(
+    judge: Judge, read: ReadResult, now: datetime, path: Path, progress: Callable[[int], None] | None
+) -> Iterator[Judged]:
+    """Judge in batches, each recorded as if it had been read when its last row was new."""
+    table = read.table
+    order: np.ndarray[tuple[int], np.dtype[np.int64]] = np.argsort(table.time_us, kind="stable")
+    first_us = int(table.time_us[table.time_us > 0].min(initial=us_from_time(now)))
+    begun = min(now, time_from_us(first_us))
+    history = History.open(path, now=begun, program_version=__version__)
+    closed_at = begun
+    try:
+        rows = RowStates(judge)
+        source: dict[str, Json] = {"topic": "replay", "text": "recorded by a replay of past observations"}
+        message = Record(kind=RecordKind.MESSAGE, at=begun, body=source)
+        history.append([message, *configuration_records(judge.profile, judge.fleet, begun)])
+        for start, stop in _batches(table.time_us[order]):
+            batch = table.take(order[start:stop])
+            judged, closed_at = _batch_step(judge, batch, now, closed_at)
+            records = observation_records(judged, read.format, closed_at)
+            records += change_records(judged.changes, judged.ended, closed_at)
+            followed = rows.follow(judged.changes, judge.fleet)
+            records += [Record(kind=RecordKind.CHANGE, at=closed_at, body=change.body()) for change in followed]
+            history.append(records, resume=judge.to_json())  # type: ignore[arg-type] # plain values only
+            if progress is not None:
+                progress(stop)
+            yield judged
+    finally:
+        history.close(now=closed_at)
+
+
+def _batches(time_us: np.ndarray[tuple[int], np.dtype[np.int64]]) -> Iterator[tuple[int, int]]:
+    """Yield stretches of rows in order of time, none of which parts two rows of one time."""
+    start = 0
+    while start < len(time_us):
+        stop = min(start + _BATCH_ROWS, len(time_us))
+        stop = int(np.searchsorted(time_us, time_us[stop - 1], side="right"))
+        yield start, stop
+        start = stop
+
+
+def _batch_step(judge: Judge, batch: ObservationTable, now: datetime, before: datetime) -> tuple[Judged, datetime]:
+    last_us = int(batch.time_us.max())
+    at = before if last_us <= us_from_time(before) else min(now, time_from_us(last_us))
+    at_us = us_from_time(at)
+    return judge.advance(batch, at_us, pass_to_us=at_us), at
