@@ -136,7 +136,7 @@ def day_bounds(state: BoardState, now: datetime, zone: ZoneInfo) -> tuple[dateti
 
 def hour_marks(start: datetime, end: datetime, zone: ZoneInfo, every_h: int) -> list[HourMark]:
     """Return the full local hours of a time axis; every ``every_h``-th of the clock is named."""
-    marks = []
+    marks: list[HourMark] = []
     when = start
     while when <= end:
         local = when.astimezone(zone)

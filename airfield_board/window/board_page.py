@@ -20,7 +20,7 @@ from airfield_board.window.lettering import Lettering, baseline_for_middle, widt
 from airfield_board.window.no_data_card import NoDataCard
 from airfield_board.window.palette import Palette
 from airfield_board.window.reading import View
-from airfield_board.window.row_panel import GUTTER_PX, RowPanel, columns_for
+from airfield_board.window.row_panel import GUTTER_PX, Headings, RowPanel, columns_for
 from airfield_board.window.row_words import tip_of, words_of
 
 if TYPE_CHECKING:
@@ -76,10 +76,11 @@ class BoardPage(Canvas):
         conditions = view.state.conditions if view.trusted else None
         level_ft = conditions.density_altitude_ft if conditions is not None else None
         unit = view.state.airfield.altitude_unit
-        label = f"DA now {formatting.altitude(level_ft, unit)} {unit}" if level_ft is not None else ""
-        self.rows.show_rows(
-            words, [tip_of(row, view) for row in view.rows], level_ft, label, self.width() + _MARGINS_PX
-        )
+        level = (level_ft, f"DA now {formatting.altitude(level_ft, unit)} {unit}") if level_ft is not None else None
+        degrees = formatting.UNIT_WORDS[view.state.airfield.temperature_unit]
+        headings = Headings(margin=f"Margin, {unit}", last=f"Hold above {degrees}")
+        tips = [tip_of(row, view) for row in view.rows]
+        self.rows.show_rows(words, tips, headings, level=level, window_px=self.width() + _MARGINS_PX)
         self.card.show_view(view)
         self._arrange()
 
@@ -142,7 +143,7 @@ class BoardPage(Canvas):
         self._place_card(plot_width)
 
     def _altitude_range(self, view: View) -> tuple[float, float]:
-        """Ends of the altitude axis: within a day they only move apart, so that the picture stays still."""
+        """Return the ends of the altitude axis: within a day they only move apart, so that the picture stays still."""
         day = local_day(view.now, view.zone)
         low_ft, high_ft = board_range(view.state)
         if self._range is not None and self._range[:2] == (day, view.state.airfield.name):
@@ -162,7 +163,9 @@ class BoardPage(Canvas):
 
     def _place_card(self, plot_width: int) -> None:
         size = self.card.sizeHint()
-        left = AXIS_PX + max(plot_width - size.width() - 12, 6)
+        now_px = self._scene.time.px(self._scene.now) if self._scene is not None else 0.0
+        right_of_now = now_px + size.width() + 20 <= plot_width
+        left = AXIS_PX + (plot_width - size.width() - 12 if right_of_now else 12)
         self.card.setGeometry(left, self.height() - TIME_AXIS_PX - size.height() - 12, size.width(), size.height())
         self.card.raise_()
 

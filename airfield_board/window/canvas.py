@@ -37,10 +37,13 @@ class Canvas(QWidget):
     def paintEvent(self, event: QPaintEvent) -> None:
         """Paint, remembering the texts."""
         painter = QPainter(self)
-        painter.setRenderHint(QPainter.RenderHint.TextAntialiasing)
         self.painted = []
-        self.paint(painter, Lettering(painter, self.painted))
-        painter.end()
+        try:
+            painter.setRenderHint(QPainter.RenderHint.TextAntialiasing)
+            self.paint(painter, Lettering(painter, self.painted))
+        finally:
+            # A painter left active by an error would take the whole process with it.
+            painter.end()
 
     @abstractmethod
     def paint(self, painter: QPainter, letters: Lettering) -> None:

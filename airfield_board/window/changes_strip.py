@@ -67,7 +67,7 @@ class ChangesStrip(Canvas):
         """Return the waiting change that was chosen, or else the newest that waits; None where none does."""
         waiting = self.open_changes()
         chosen = [change for change in waiting if change.number == self._focused]
-        return (chosen or list(waiting) or [None])[0]
+        return next(iter((*chosen, *waiting)), None)
 
     def paint(self, painter: QPainter, letters: Lettering) -> None:
         """Paint all of it."""

@@ -58,8 +58,21 @@ def save_page(
         Where the file cannot be written.
     """
     image = paint_page(state, now, page=page, size_px=size_px, scheme=scheme)
-    if not image.save(str(path), "PNG"):
+    if not image.save(str(path), b"PNG"):
         raise OSError(f"cannot write the picture {path}")
+
+
+def paint_to_file(state: BoardState, path: Path, *, size_px: tuple[int, int], scheme: str) -> None:
+    """Paint the Board as of the state's own time to a PNG file, making the application if there is none.
+
+    Raises
+    ------
+    OSError
+        Where the file cannot be written.
+    """
+    application = offscreen_application()
+    save_page(path, state, state.assessed_at, page=PageName.BOARD, size_px=size_px, scheme=scheme)
+    application.processEvents()
 
 
 def offscreen_application() -> QApplication:

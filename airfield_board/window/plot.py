@@ -1,12 +1,12 @@
 """The day plot: the curve of the density altitude, the limits as shelves in it, the holds of the day."""
 
-from collections.abc import Sequence
+from collections.abc import Callable
 
 import numpy as np
 import pyqtgraph as pg
 from numpy.typing import NDArray
 from PySide6.QtCore import QPointF, QRectF, Qt
-from PySide6.QtGui import QBrush, QColor, QPainter, QPainterPath, QPen
+from PySide6.QtGui import QBrush, QColor, QPainter, QPainterPath, QPen, QResizeEvent
 from PySide6.QtWidgets import QFrame, QGraphicsItem, QGraphicsPathItem, QStyleOptionGraphicsItem, QWidget
 
 from airfield_board.limits.states import State
@@ -20,11 +20,13 @@ SPAN_PX = 6.0
 _HATCH_PX = 9.0
 
 
-class DayPlot(pg.GraphicsView):  # type: ignore[misc]  # pyqtgraph has no types
-    """Paints a `DayScene`; its view box has the axes of the scene, to the pixel.
+class PixelPlot(pg.GraphicsView):  # type: ignore[misc]  # pyqtgraph has no types
+    """A view box that fills the widget to the pixel, with a layer of own painting under its curves and one over them.
 
     Attributes
     ----------
+    box
+        The view box.
     painted
         The texts of the last pass, in this widget's pixels.
     """
@@ -35,50 +37,81 @@ class DayPlot(pg.GraphicsView):  # type: ignore[misc]  # pyqtgraph has no types
         self.setFocusPolicy(Qt.FocusPolicy.NoFocus)
         self.setHorizontalScrollBarPolicy(Qt.ScrollBarPolicy.ScrollBarAlwaysOff)
         self.setVerticalScrollBarPolicy(Qt.ScrollBarPolicy.ScrollBarAlwaysOff)
-        self.setAccessibleName("Density altitude over the day")
         self.setAttribute(Qt.WidgetAttribute.WA_TransparentForMouseEvents)
         self.painted: list[PaintedText] = []
+        self.box = pg.ViewBox(enableMouse=False, enableMenu=False, defaultPadding=0.0)
+        self.setCentralItem(self.box)
+        self._under = _Layer(self, self.box, z=-5.0, paints=self.paint_under)
+        self._over = _Layer(self, self.box, z=20.0, paints=self.paint_over)
+
+    def set_ranges(self, length_s: float, low: float, high: float) -> None:
+        """Give the view box its axes."""
+        self.box.setRange(xRange=(0.0, length_s), yRange=(low, high), padding=0.0, disableAutoRange=True)
+
+    def repaint_layers(self) -> None:
+        """Paint both layers again."""
+        self._under.update()
+        self._over.update()
+
+    def resizeEvent(self, event: QResizeEvent | None) -> None:
+        """Let the layers grow with the widget."""
+        super().resizeEvent(event)
+        # pyqtgraph calls this once from its own constructor, before there are layers.
+        for layer in (getattr(self, "_under", None), getattr(self, "_over", None)):
+            if layer is not None:
+                layer.resize()
+
+    def paint_under(self, painter: QPainter) -> None:
+        """Paint what lies under the curves."""
+
+    def paint_over(self, painter: QPainter) -> None:
+        """Paint what lies over the curves."""
+
+
+class DayPlot(PixelPlot):
+    """Paints a `DayScene`; its view box has the axes of the scene, to the pixel."""
+
+    def __init__(self, parent: QWidget | None = None) -> None:
+        super().__init__(parent)
+        self.setAccessibleName("Density altitude over the day")
         self._colours = LIGHT
         self._scene_shown: DayScene | None = None
         self._chosen = ""
         self._parts: list[_CurveItems] = []
-        self.box = pg.ViewBox(enableMouse=False, enableMenu=False, defaultPadding=0.0)
-        self.setCentralItem(self.box)
-        self._under = _Layer(self, self.box, z=-5.0, paints=self._paint_under)
-        self._over = _Layer(self, self.box, z=20.0, paints=self._paint_over)
+        self._stretches: list[Stretch] = []
 
     def show_scene(self, scene: DayScene, colours: Palette, chosen: str) -> None:
         """Show another scene, other colours, or another chosen row."""
-        if (scene, chosen) == (self._scene_shown, self._chosen) and colours is self._colours:
-            return
         fresh = scene is not self._scene_shown or colours is not self._colours
+        if not fresh and chosen == self._chosen:
+            return
         self._scene_shown, self._colours, self._chosen = scene, colours, chosen
         if fresh:
+            self.setBackground(QColor(colours.card))
             length_s = (scene.time.end - scene.time.start).total_seconds()
-            self.box.setRange(
-                xRange=(0.0, length_s),
-                yRange=(scene.altitude.low_ft, scene.altitude.high_ft),
-                padding=0.0,
-                disableAutoRange=True,
-            )
-            self._fill_curves(stretches_of(scene.curve, scene.time), scene.altitude.low_ft)
-        self._under.update()
-        self._over.update()
+            self.set_ranges(length_s, scene.altitude.low_ft, scene.altitude.high_ft)
+            self._stretches = stretches_of(scene.curve, scene.time)
+            self._fill_curves()
+        self.repaint_layers()
 
-    def _fill_curves(self, stretches: Sequence[Stretch], floor_ft: float) -> None:
-        """Give each stretch its three items, which are kept and filled anew."""
-        while len(self._parts) < len(stretches):
+    def _fill_curves(self) -> None:
+        """Give each stretch its items, which are kept and filled anew."""
+        while len(self._parts) < len(self._stretches):
             self._parts.append(_CurveItems(self.box))
-        for part in self._parts[len(stretches) :]:
+        for part in self._parts[len(self._stretches) :]:
             part.clear()
-        for part, stretch in zip(self._parts, stretches, strict=False):
-            part.fill(stretch, floor_ft, self._colours)
+        for part, stretch in zip(self._parts, self._stretches, strict=False):
+            part.fill(stretch, self._colours)
 
-    def _paint_under(self, painter: QPainter) -> None:
+    def paint_under(self, painter: QPainter) -> None:
+        """Paint water, hours, limits and holds."""
         scene, colours = self._scene_shown, self._colours
         if scene is None:
             return
         width, height = float(self.width()), float(self.height())
+        painter.setRenderHint(QPainter.RenderHint.Antialiasing)
+        self._paint_water(painter, scene)
+        painter.setRenderHint(QPainter.RenderHint.Antialiasing, on=False)
         for mark in scene.hours:
             if mark.named:
                 painter.fillRect(QRectF(round(scene.time.px(mark.when)), 0, 1, height), QColor(colours.hairline))
@@ -90,6 +123,18 @@ class DayPlot(pg.GraphicsView):  # type: ignore[misc]  # pyqtgraph has no types
         painter.setRenderHint(QPainter.RenderHint.Antialiasing)
         for shelf in sorted(scene.shelves, key=lambda shelf: shelf.state.severity):
             self._paint_spans(painter, scene, shelf)
+
+    def _paint_water(self, painter: QPainter, scene: DayScene) -> None:
+        painter.setPen(Qt.PenStyle.NoPen)
+        painter.setBrush(QColor(self._colours.water))
+        altitude, time = scene.altitude, scene.time
+        px_per_s = (time.right_px - time.left_px) / (time.end - time.start).total_seconds()
+        for part in self._stretches:
+            x = part.seconds * px_per_s
+            y = [altitude.px(value) for value in part.value.tolist()]
+            painter.drawPath(
+                _polygon(np.concatenate((x, x[[-1, 0]])), np.concatenate((y, [altitude.bottom_px, altitude.bottom_px])))
+            )
 
     def _paint_spans(self, painter: QPainter, scene: DayScene, shelf: Shelf) -> None:
         colours = self._colours
@@ -106,14 +151,16 @@ class DayPlot(pg.GraphicsView):  # type: ignore[misc]  # pyqtgraph has no types
                 painter.setBrush(QColor(colours.reduced_block))
                 painter.drawRect(bar.adjusted(0.8, 0.8, -0.8, -0.8))
 
-    def _paint_over(self, painter: QPainter) -> None:
+    def paint_over(self, painter: QPainter) -> None:
+        """Paint the level, now, the gap, and what is pointed at."""
         scene, colours = self._scene_shown, self._colours
         self.painted = []
         if scene is None:
             return
         painter.setRenderHint(QPainter.RenderHint.Antialiasing)
         if scene.gap and scene.observed is not None:
-            self._paint_gap(painter, scene)
+            left, right = scene.time.px(scene.observed), scene.time.px(scene.now)
+            paint_gap(painter, QRectF(left, 0, max(right - left, 1.0), self.height()), colours)
         self._paint_carets(painter, scene)
         chosen = next((shelf for shelf in scene.shelves if shelf.key == self._chosen), None)
         if chosen is not None:
@@ -133,22 +180,6 @@ class DayPlot(pg.GraphicsView):  # type: ignore[misc]  # pyqtgraph has no types
                 painter.drawEllipse(at, 6.5, 6.5)
         if chosen is not None:
             self._paint_callout(painter, scene, chosen)
-
-    def _paint_gap(self, painter: QPainter, scene: DayScene) -> None:
-        if scene.observed is None:
-            return
-        left, right = scene.time.px(scene.observed), scene.time.px(scene.now)
-        gap = QRectF(left, 0, max(right - left, 1.0), self.height())
-        painter.save()
-        painter.setClipRect(gap)
-        painter.fillRect(gap, _clear(self._colours.card, 150))
-        painter.setPen(QPen(QColor(self._colours.line), 1.3))
-        x = gap.left() - gap.height()
-        while x < gap.right():
-            painter.drawLine(QPointF(x, gap.bottom()), QPointF(x + gap.height(), gap.top()))
-            x += _HATCH_PX
-        painter.restore()
-        painter.fillRect(QRectF(gap.left(), 0, 1, gap.height()), QColor(self._colours.line))
 
     def _paint_carets(self, painter: QPainter, scene: DayScene) -> None:
         painter.setBrush(Qt.BrushStyle.NoBrush)
@@ -186,12 +217,17 @@ class DayPlot(pg.GraphicsView):  # type: ignore[misc]  # pyqtgraph has no types
 class _Layer(pg.GraphicsObject):  # type: ignore[misc]  # pyqtgraph has no types
     """Paints in the plot's own pixels, under or over the curves."""
 
-    def __init__(self, plot: DayPlot, box: QGraphicsItem, z: float, paints: object) -> None:
+    def __init__(self, plot: QWidget, box: QGraphicsItem, z: float, paints: Callable[[QPainter], None]) -> None:
         super().__init__()
         self._plot = plot
         self._paints = paints
         self.setParentItem(box)
         self.setZValue(z)
+
+    def resize(self) -> None:
+        """Say that the bounds are others now."""
+        self.prepareGeometryChange()
+        self.update()
 
     def boundingRect(self) -> QRectF:
         """All of the plot."""
@@ -200,29 +236,24 @@ class _Layer(pg.GraphicsObject):  # type: ignore[misc]  # pyqtgraph has no types
     def paint(self, painter: QPainter, option: QStyleOptionGraphicsItem, widget: QWidget | None = None) -> None:
         """Let the plot paint."""
         painter.save()
-        self._paints(painter)
-        painter.restore()
+        try:
+            self._paints(painter)
+        finally:
+            painter.restore()
 
 
 class _CurveItems:
-    """Water, uncertainty and curve of one stretch of the day."""
+    """Uncertainty and curve of one stretch of the day."""
 
-    def __init__(self, box: QGraphicsItem) -> None:
-        self._water, self._band = QGraphicsPathItem(), QGraphicsPathItem()
+    def __init__(self, box: pg.ViewBox) -> None:
+        self._band = QGraphicsPathItem()
         self._curve = pg.PlotCurveItem(antialias=True)
-        for item, z in ((self._water, -10.0), (self._band, 1.0), (self._curve, 2.0)):
-            item.setZValue(z)
+        self._band.setPen(QPen(Qt.PenStyle.NoPen))
+        for item in (self._band, self._curve):
             box.addItem(item, ignoreBounds=True)
-        for item in (self._water, self._band):
-            item.setPen(QPen(Qt.PenStyle.NoPen))
 
-    def fill(self, stretch: Stretch, floor_ft: float, colours: Palette) -> None:
+    def fill(self, stretch: Stretch, colours: Palette) -> None:
         """Take other points and colours."""
-        ends = stretch.seconds[[-1, 0]]
-        self._water.setPath(
-            _polygon(np.concatenate((stretch.seconds, ends)), np.concatenate((stretch.value, (floor_ft, floor_ft))))
-        )
-        self._water.setBrush(QColor(colours.water))
         self._band.setPath(
             _polygon(
                 np.concatenate((stretch.seconds, stretch.seconds[::-1])),
@@ -234,15 +265,28 @@ class _CurveItems:
 
     def clear(self) -> None:
         """Show nothing."""
-        self._water.setPath(QPainterPath())
         self._band.setPath(QPainterPath())
         self._curve.setData(x=np.empty(0), y=np.empty(0))
 
 
 def _polygon(x: NDArray[np.float64], y: NDArray[np.float64]) -> QPainterPath:
-    path = pg.arrayToQPath(x, y)
+    path: QPainterPath = pg.arrayToQPath(x, y)
     path.closeSubpath()
     return path
+
+
+def paint_gap(painter: QPainter, gap: QRectF, colours: Palette) -> None:
+    """Strike out the time of which nothing is known."""
+    painter.save()
+    painter.setClipRect(gap)
+    painter.fillRect(gap, _clear(colours.card, 150))
+    painter.setPen(QPen(QColor(colours.line), 1.3))
+    x = gap.left() - gap.height()
+    while x < gap.right():
+        painter.drawLine(QPointF(x, gap.bottom()), QPointF(x + gap.height(), gap.top()))
+        x += _HATCH_PX
+    painter.restore()
+    painter.fillRect(QRectF(gap.left(), 0, 1, gap.height()), QColor(colours.line))
 
 
 def _clear(colour: str, alpha: int) -> QBrush:

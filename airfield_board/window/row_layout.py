@@ -24,6 +24,7 @@ COMFORTABLE_FROM_PX = 34
 STANDARD_FROM_PX = 22
 PITCH_LARGEST_PX = 42
 PITCH_SMALLEST_PX = 11
+EASED_PX = 36
 EXTRA_LINE_PX = 15.0
 LEVEL_PX = {Density.COMFORTABLE: 30.0, Density.STANDARD: 24.0, Density.DENSE: 15.0}
 FOOT_GAP_PX = {Density.COMFORTABLE: 6.0, Density.STANDARD: 6.0, Density.DENSE: 4.0}
@@ -206,6 +207,7 @@ def plan_rows(wishes: Sequence[Wish], level_target_px: float | None, top_px: flo
         extra_lines=sum(wish.extra_lines for wish in wishes),
         with_foot=bool(foot) and bool(placed),
     )
+    pitch = _eased(pitch, wishes, level_target_px, top_px)
     heights = [
         pitch.px + (wish.extra_lines * EXTRA_LINE_PX if pitch.density is Density.COMFORTABLE else 0.0)
         for wish in wishes
@@ -230,11 +232,20 @@ def plan_rows(wishes: Sequence[Wish], level_target_px: float | None, top_px: flo
     )
     level_px = None
     upper = []
-    for index, middle_px in zip(order, middles, strict=True):
-        if index is None:
+    for place, middle_px in zip(order, middles, strict=True):
+        if place is None:
             level_px = middle_px
         else:
-            upper.append(RowBox(index=index, middle_px=middle_px, height_px=heights[index]))
+            upper.append(RowBox(index=place, middle_px=middle_px, height_px=heights[place]))
     return RowPlan(
         pitch=pitch, boxes=(*upper, *boxes), level_px=level_px, water_bottom_px=max(room_bottom_px, level_px or 0.0)
     )
+
+
+def _eased(pitch: Pitch, wishes: Sequence[Wish], level_target_px: float | None, top_px: float) -> Pitch:
+    """Lower the rows a little where the level could then stand nearer to where the air is."""
+    above = sum(wish.target_px is not None and not wish.below for wish in wishes)
+    if level_target_px is None or not above or pitch.density is not Density.COMFORTABLE:
+        return pitch
+    wanted_px = (level_target_px - LEVEL_PX[pitch.density] / 2 - top_px) / above
+    return Pitch(px=min(pitch.px, max(wanted_px, EASED_PX)), density=pitch.density)

@@ -76,9 +76,17 @@ def columns_for(rows: int, window_px: int) -> Columns:
         limit_right=None,
         margin_right=406,
         change=424,
-        change_right=640 if with_hold else 640,
+        change_right=640,
         hold_right=698 if with_hold else None,
     )
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Headings:
+    """Headings of the columns whose unit or content changes."""
+
+    margin: str
+    last: str
 
 
 class RowPanel(Canvas):
@@ -97,8 +105,8 @@ class RowPanel(Canvas):
         self._words: tuple[RowWords, ...] = ()
         self._tips: tuple[str, ...] = ()
         self._axis: AltitudeAxis | None = None
-        self._level_ft: float | None = None
-        self._level_words = ""
+        self._level: tuple[float, str] | None = None
+        self._headings = Headings(margin="", last="")
         self._columns = columns_for(0, HOLD_COLUMN_FROM_PX)
         self._plan: RowPlan | None = None
         self._chosen = ""
@@ -118,7 +126,13 @@ class RowPanel(Canvas):
         return self._plan
 
     def show_rows(
-        self, words: Sequence[RowWords], tips: Sequence[str], level_ft: float | None, level_words: str, window_px: int
+        self,
+        words: Sequence[RowWords],
+        tips: Sequence[str],
+        headings: Headings,
+        *,
+        level: tuple[float, str] | None,
+        window_px: int,
     ) -> None:
         """Show other rows.
 
@@ -126,17 +140,17 @@ class RowPanel(Canvas):
         ----------
         tips
             A text for each row that says all of it; plain text.
-        level_ft, level_words
-            The air's density altitude and its label; None and empty where it is not known.
+        level
+            The air's density altitude and its label; None where it is not known.
         window_px
             Width of the window, by which columns are left out.
         """
         columns = columns_for(len(words), window_px)
-        fresh = (tuple(words), level_ft, level_words, columns)
-        if fresh == (self._words, self._level_ft, self._level_words, self._columns) and self._plan is not None:
+        self._tips = tuple(tips)
+        fresh = (tuple(words), level, columns, headings)
+        if fresh == (self._words, self._level, self._columns, self._headings) and self._plan is not None:
             return
-        self._words, self._tips = tuple(words), tuple(tips)
-        self._level_ft, self._level_words, self._columns = level_ft, level_words, columns
+        self._words, self._level, self._columns, self._headings = fresh
         self.setAccessibleDescription("; ".join(row.spoken for row in self._words))
         if self._chosen and self._chosen not in {row.key for row in self._words}:
             self._choose("", pin=False)
@@ -154,7 +168,7 @@ class RowPanel(Canvas):
         if axis is None:
             return
         wishes = [wish_of(row, axis.px(row.axis_ft) if row.axis_ft is not None else None) for row in self._words]
-        level_px = axis.px(self._level_ft) if self._level_ft is not None else None
+        level_px = axis.px(self._level[0]) if self._level is not None else None
         self._plan = plan_rows(wishes, level_px, ROWS_TOP_PX, self.height() - ROWS_BOTTOM_PX)
         self.update()
 
@@ -179,10 +193,10 @@ class RowPanel(Canvas):
         letters.text((left + columns.name, 23), "Operation" if dense else "Operation and limit", ink, small, MEDIUM)
         if columns.limit_right is not None:
             letters.text((left + columns.limit_right, 23), "Limit", ink, small, MEDIUM, side="right")
-        letters.text((left + columns.margin_right, 23), "Margin, ft", ink, small, MEDIUM, side="right")
+        letters.text((left + columns.margin_right, 23), self._headings.margin, ink, small, MEDIUM, side="right")
         letters.text((left + columns.change, 23), "Next change", ink, small, MEDIUM)
         if columns.hold_right is not None:
-            letters.text((left + columns.hold_right, 23), "Hold above °C", ink, small, MEDIUM, side="right")
+            letters.text((left + columns.hold_right, 23), self._headings.last, ink, small, MEDIUM, side="right")
 
     def _paint_water(self, painter: QPainter, plan: RowPlan) -> None:
         if plan.level_px is None:
@@ -195,7 +209,6 @@ class RowPanel(Canvas):
     def _paint_leaders(self, painter: QPainter, plan: RowPlan, axis: AltitudeAxis) -> None:
         painter.save()
         painter.setRenderHint(QPainter.RenderHint.Antialiasing)
-        carets = set()
         quiet_first = sorted(plan.boxes, key=lambda box: self._words[box.index].state.severity)
         for box in quiet_first:
             row = self._words[box.index]
@@ -209,24 +222,23 @@ class RowPanel(Canvas):
                 width = 1.3 if loud else 1.0
             painter.setPen(QPen(QColor(colour), width))
             _leader(painter, axis.px(row.axis_ft), box.middle_px)
-            if not axis.holds(row.axis_ft):
-                carets.add(row.axis_ft > axis.high_ft)
         painter.restore()
 
     def _paint_level(self, painter: QPainter, letters: Lettering, plan: RowPlan, axis: AltitudeAxis) -> None:
-        if plan.level_px is None or self._level_ft is None:
+        if plan.level_px is None or self._level is None:
             return
+        level_ft, words = self._level
         colours, level_px = self.colours, plan.level_px
         painter.save()
         painter.setRenderHint(QPainter.RenderHint.Antialiasing)
         painter.setPen(QPen(QColor(colours.accent), 1.6))
-        _leader(painter, axis.px(self._level_ft), level_px)
+        _leader(painter, axis.px(level_ft), level_px)
         painter.drawLine(QPointF(GUTTER_PX - 10, level_px), QPointF(self.width(), level_px))
         dense = plan.pitch.density is Density.DENSE
         size, height = (12, 14.0) if dense else (14, 22.0)
         if plan.pitch.density is Density.STANDARD:
             size, height = 13, 19.0
-        width = width_of(self._level_words, size, SEMIBOLD) + 16
+        width = width_of(words, size, SEMIBOLD) + 16
         label = QRectF(GUTTER_PX, level_px - height / 2, width, height)
         painter.setPen(Qt.PenStyle.NoPen)
         painter.setBrush(QColor(colours.accent))
@@ -234,7 +246,7 @@ class RowPanel(Canvas):
         painter.restore()
         letters.text(
             (label.left() + 8, baseline_for_middle(level_px, size)),
-            self._level_words,
+            words,
             colours.on_accent,
             size,
             SEMIBOLD,
@@ -323,7 +335,7 @@ class RowPanel(Canvas):
             side="right",
         )
         self._paint_change_in_two(letters, box, row)
-        self._paint_hold_above(letters, box, row, 14)
+        self._paint_last(letters, box, row, 14)
 
     def _paint_change_in_two(self, letters: Lettering, box: RowBox, row: RowWords) -> None:
         colours, columns, left = self.colours, self._columns, float(GUTTER_PX)
@@ -357,14 +369,18 @@ class RowPanel(Canvas):
                 letters.text((change + end + 8, baseline), row.quiet, colours.soft_ink, size_px)
         elif row.quiet:
             letters.text((change, baseline), row.quiet, colours.soft_ink, size_px, room_px=room)
-        self._paint_hold_above(letters, box, row, size_px)
+        self._paint_last(letters, box, row, size_px)
 
-    def _paint_hold_above(self, letters: Lettering, box: RowBox, row: RowWords, size_px: int) -> None:
+    def _paint_last(self, letters: Lettering, box: RowBox, row: RowWords, size_px: int) -> None:
         if self._columns.hold_right is None:
             return
-        ink = self.colours.soft_ink if row.hold_above == formatting.DASH else self.colours.ink
-        at = (GUTTER_PX + self._columns.hold_right, baseline_for_middle(box.middle_px, size_px))
-        letters.text(at, row.hold_above, ink, size_px, MEDIUM, side="right")
+        ink = self.colours.soft_ink if row.last == formatting.DASH else self.colours.ink
+        right = GUTTER_PX + self._columns.hold_right
+        middle = box.middle_px - (8 if row.last_below else 0)
+        letters.text((right, baseline_for_middle(middle, size_px)), row.last, ink, size_px, MEDIUM, side="right")
+        if row.last_below:
+            baseline = baseline_for_middle(box.middle_px + 8, 13)
+            letters.text((right, baseline), row.last_below, self.colours.soft_ink, 13, side="right")
 
     def _choose(self, key: str, *, pin: bool) -> None:
         self._pinned = pin and bool(key)

@@ -22,6 +22,10 @@ class RowWords:
         Operation and limit, for a second line.
     one_line
         Aircraft and operation, for rows of one line.
+    last, last_below
+        What the last column has, and a line under it.
+    axis_ft
+        Where the row's leader begins; on the Margin page a margin.
     """
 
     key: str
@@ -34,8 +38,9 @@ class RowWords:
     margin: str
     loud: str
     quiet: str
-    hold_above: str
+    last: str
     axis_ft: float | None
+    last_below: str = ""
 
     @property
     def extra_lines(self) -> int:
@@ -56,19 +61,20 @@ def words_of(row: OperationLine, view: View) -> RowWords:
     temporary = formatting.temporary_phrase(line)
     unit = view.state.airfield.temperature_unit
     above = line.hold_temperature_c if line is not None else None
-    until = f", {temporary}" if temporary else ""
+    short = formatting.temporary_short(line)
+    column_unit = view.state.airfield.altitude_unit
     return RowWords(
         key=row.key,
         state=row.state,
         name=row.aircraft_name,
         details=f"{row.name} · {formatting.limit_phrase(line)}",
         temporary=temporary,
-        one_line=f"{row.aircraft_name} · {row.name}{until}",
-        limit=formatting.limit_cell(line),
-        margin=formatting.margin_cell(line),
+        one_line=f"{row.aircraft_name} · {row.name}{f', {short}' if short else ''}",
+        limit=formatting.limit_cell(line, column_unit),
+        margin=formatting.margin_cell(line, column_unit),
         loud=loud,
         quiet=quiet,
-        hold_above=formatting.hold_temperature(above, unit) if above is not None else formatting.DASH,
+        last=formatting.hold_temperature(above, unit) if above is not None else formatting.DASH,
         axis_ft=line.axis_ft if line is not None else None,
     )
 
@@ -80,7 +86,7 @@ def wish_of(words: RowWords, target_px: float | None) -> Wish:
 
 
 def tip_of(row: OperationLine, view: View) -> str:
-    """Say all of a row, for a tooltip: a line a limit, with what it rests on; escaped, for tooltips may be rich text."""
+    """Say all of a row, for a tooltip: a line a limit; escaped, for a tooltip may be taken for rich text."""
     lines = [formatting.full_name(row) + (f" ({row.group})" if row.group else "")]
     for line in row.limits:
         parts = [f"{line.quantity.value}: {formatting.STATE_WORDS[line.state]}", formatting.limit_phrase(line)]

@@ -22,6 +22,8 @@ HEIGHT_PX = 96
 COMPACT_HEIGHT_PX = 76
 _PADDING_PX = 20.0
 _AGE_PX = 126.0
+_GAP_SMALLEST_PX = 13.0
+_GAP_LARGEST_PX = 44.0
 _DEWPOINT_LABEL = {
     DewpointUse.OBSERVED: "Dew point",
     DewpointUse.CARRIED: "Dew point, carried",
@@ -235,32 +237,37 @@ class ObservationStrip(Canvas):
         content = self._content
         if content is None:
             return
-        room = self.width() - 2 * _PADDING_PX - _AGE_PX
-        for sizes in _SIZES:
-            loud_width = self._loud_width(content, sizes)
-            groups = [[_cell_width(cell, sizes) for cell in group] for group in content.cells]
-            natural = loud_width + sum(map(sum, groups)) + sum(16.0 * (len(group) - 1) for group in groups)
-            if natural + 8 * 14.0 <= room:
-                break
-        spare = max((room - natural) / 8, 6.0)
+        sizes, gap = self._fit(content)
         left = _PADDING_PX
         self._paint_loud(painter, letters, left, content, sizes)
-        left += loud_width
-        starts: list[float] = []
-        for group, widths in zip(content.cells, groups, strict=True):
-            left += min(spare, 46.0)
+        left += self._loud_width(content, sizes)
+        start = left
+        for group in content.cells:
+            left += gap
             self._separator(painter, left)
-            left += min(spare, 26.0)
-            starts.append(left)
-            gap = 16.0 + min(spare, 20.0) if len(group) > 1 else 0.0
-            for cell, width in zip(group, widths, strict=True):
+            left += min(gap, _PADDING_PX)
+            start = left
+            for cell in group:
                 self._paint_cell(painter, letters, left, cell, sizes)
-                left += width + gap
+                left += _cell_width(cell, sizes) + gap
             left -= gap
         age_left = self.width() - _PADDING_PX - _AGE_PX
-        self._separator(painter, age_left - 16)
-        self._paint_source(letters, starts[-1], age_left - 28, content, sizes)
+        self._separator(painter, age_left - 18)
+        self._paint_source(letters, start, age_left - 30, content, sizes)
         self._paint_age(painter, letters, age_left, content)
+
+    def _fit(self, content: StripContent) -> tuple[_Sizes, float]:
+        """Choose the largest sizes at which all cells fit, and the gap between them."""
+        room = self.width() - 2 * _PADDING_PX - _AGE_PX - 18
+        cells = [cell for group in content.cells for cell in group]
+        fitted = _SIZES[-1], _GAP_SMALLEST_PX
+        for sizes in _SIZES:
+            natural = self._loud_width(content, sizes) + sum(_cell_width(cell, sizes) for cell in cells)
+            gaps = len(cells) + len(content.cells) + 1
+            gap = (room - natural) / gaps
+            if gap >= _GAP_SMALLEST_PX:
+                return sizes, min(gap, _GAP_LARGEST_PX)
+        return fitted
 
     def _rows(self) -> tuple[float, float, float]:
         """Baselines of label, value and the line below."""
