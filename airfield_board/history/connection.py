@@ -9,7 +9,7 @@ from dataclasses import dataclass
 from pathlib import Path
 
 from airfield_board.errors import UserError
-from airfield_board.history.errors import NotAHistory, unusable
+from airfield_board.history.errors import SQL_ERRORS, NotAHistory, unusable
 from airfield_board.history.lock import holder_of
 from airfield_board.history.schema import MIGRATIONS, migrate, version_of
 
@@ -21,7 +21,7 @@ def plain_errors(path: Path) -> Iterator[None]:
         yield
     except NotAHistory as error:
         raise NotAHistory(f"{path}: {error}") from error
-    except (sqlite3.Error, OSError) as error:
+    except (*SQL_ERRORS, OSError) as error:
         raise unusable(path, error) from error
 
 

@@ -21,6 +21,9 @@ class NotRecorded(UserError):
     """Nothing of what was to be recorded is in the history; a later attempt may succeed."""
 
 
+SQL_ERRORS = (sqlite3.Error, UnicodeDecodeError)
+"""What a statement can raise: of a damaged schema even SQLite's message may be no text."""
+
 _PLAIN_REASONS = {
     sqlite3.SQLITE_BUSY: "another program holds it locked",
     sqlite3.SQLITE_LOCKED: "another program holds it locked",
@@ -43,18 +46,22 @@ def primary_code(error: sqlite3.Error) -> int | None:
     return None if code is None else code & 0xFF
 
 
-def plain_reason(error: sqlite3.Error | OSError) -> str:
+def plain_reason(error: Exception) -> str:
     """Say in plain words what went wrong, with the system's own words behind it."""
+    if isinstance(error, UnicodeDecodeError):
+        return "the file is damaged"
     if isinstance(error, OSError):
         return error.strerror or str(error)
-    code = primary_code(error)
+    code = primary_code(error) if isinstance(error, sqlite3.Error) else None
     plain = None if code is None else _PLAIN_REASONS.get(code)
     return f"{plain} ({error})" if plain else str(error)
 
 
-def unusable(path: object, error: sqlite3.Error | OSError) -> UserError:
+def unusable(path: object, error: Exception) -> UserError:
     """Return the error that tells the user why a history cannot be opened or read."""
     text = f"{path}: {plain_reason(error)}"
+    if isinstance(error, UnicodeDecodeError):
+        return HistoryDamaged(text)
     if isinstance(error, sqlite3.Error):
         if primary_code(error) == sqlite3.SQLITE_NOTADB:
             return NotAHistory(f"{path}: not a history of this program, or damaged beyond reading ({error})")

@@ -12,7 +12,7 @@ from airfield_board.clock import us_from_time
 from airfield_board.errors import UserError
 from airfield_board.history.chain import EMPTY, Head, bind, link
 from airfield_board.history.connection import Reading, connect_reader, connect_recorder, plain_errors
-from airfield_board.history.errors import NotRecorded, plain_reason
+from airfield_board.history.errors import SQL_ERRORS, NotRecorded, plain_reason
 from airfield_board.history.head_file import head_path, read_heads, write_heads
 from airfield_board.history.lock import RecorderLock
 from airfield_board.history.queries import HistoryQueries
@@ -177,7 +177,7 @@ class History(HistoryQueries):
         resume_text = None if resume is None else json_text(resume)
         try:
             return self._write(kinds, times_us, texts, [record.body for record in records], resume_text)
-        except (sqlite3.Error, OSError) as error:
+        except (*SQL_ERRORS, OSError) as error:
             raise NotRecorded(f"{self._path}: not recorded: {plain_reason(error)}") from error
 
     def _write(

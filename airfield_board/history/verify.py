@@ -16,7 +16,7 @@ from airfield_board.errors import UserError
 from airfield_board.history.chain import EMPTY, GENESIS, Head, bind, link
 from airfield_board.history.connection import Reading, connect_reader
 from airfield_board.history.diagnosis import JOURNAL_SELECT, Damage, HistoryFault, JournalRow, diagnose
-from airfield_board.history.errors import HistoryDamaged, NotAHistory, plain_reason
+from airfield_board.history.errors import SQL_ERRORS, HistoryDamaged, NotAHistory, plain_reason
 from airfield_board.history.head_file import head_path, read_heads
 from airfield_board.history.records import RecordKind, body_from_text
 from airfield_board.history.schema import TYPED, expected_objects, objects_of, version_of
@@ -123,9 +123,9 @@ class _Scan:
             self._walk(keep)
         except _Broken as broken:
             self.faults.append(broken.fault)
-        except (sqlite3.Error, TypeError) as error:
+        except (*SQL_ERRORS, TypeError) as error:
             # TypeError: a column whose type was changed in the file.
-            reason = plain_reason(error) if isinstance(error, sqlite3.Error) else str(error)
+            reason = plain_reason(error)
             self.faults.append(
                 HistoryFault(
                     seq=self.head.records + 1,
@@ -253,6 +253,8 @@ def _verify_reading(reading: Reading, wanted: bytes | None, progress: Progress |
     faults += head_fault
     if heads is None:
         notes.append(f"there is no {head_path(reading.path).name}: a tail cut off would not be seen")
+    elif not heads and not head_fault:
+        notes.append(f"the recorder never paused: the end was not compared with {head_path(reading.path).name}")
     elif heads and unbroken:
         faults += _end_faults(scan, heads, head_path(reading.path).name)
     if wanted is not None and scan.closing_record is None:
@@ -295,7 +297,7 @@ def _heads_at_snapshot(reading: Reading) -> tuple[tuple[Head, ...] | None, list[
 
 def _fix_snapshot(connection: sqlite3.Connection) -> None:
     # The snapshot is that of the first reading; where the file is damaged the walk says so.
-    with suppress(sqlite3.Error):
+    with suppress(*SQL_ERRORS):
         connection.execute("BEGIN")
         connection.execute("SELECT count(*) FROM resume").fetchone()
 
@@ -332,7 +334,7 @@ def _end_faults(scan: _Scan, heads: tuple[Head, ...], name: str) -> list[History
 def _memory_seq(connection: sqlite3.Connection) -> int:
     try:
         found = connection.execute("SELECT seq FROM resume").fetchone()
-    except sqlite3.Error:
+    except SQL_ERRORS:
         return 0
     return 0 if found is None else int(found[0])
 
@@ -344,8 +346,8 @@ def _memory_faults(connection: sqlite3.Connection, scan: _Scan) -> list[HistoryF
             if taken_at is None or bind(taken_at, text) != tie:
                 message = f"the recorder's memory does not fit record {seq}; the next start judges anew without it"
                 return [HistoryFault(seq=None, damage=Damage.MEMORY, message=message)]
-    except (sqlite3.Error, TypeError) as error:
-        message = f"the recorder's memory cannot be read: {error}"
+    except (*SQL_ERRORS, TypeError) as error:
+        message = f"the recorder's memory cannot be read: {plain_reason(error)}"
         return [HistoryFault(seq=None, damage=Damage.MEMORY, message=message)]
     return []
 
@@ -359,8 +361,8 @@ def _structure_faults(connection: sqlite3.Connection) -> list[HistoryFault]:
                 message = f"the part {name} of the database's structure is {what}"
                 return [HistoryFault(seq=None, damage=Damage.SCHEMA, message=message)]
         (answer,) = connection.execute("PRAGMA integrity_check(1)").fetchone()
-    except sqlite3.Error as error:
-        answer = str(error)
+    except SQL_ERRORS as error:
+        answer = plain_reason(error)
     if answer == "ok":
         return []
     message = f"the database file is damaged, though every record fits: {answer}"
