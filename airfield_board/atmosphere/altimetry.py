@@ -8,9 +8,39 @@ The field's elevation is used as it stands, without a change from geometric to g
 setting is defined with the elevation as it stands, so a conversion would put an error in where there is none.
 """
 
+from dataclasses import dataclass
+
 from airfield_board.atmosphere import moist_air, standard
 from airfield_board.atmosphere.evaluation import FloatArray, evaluated, positive
 from airfield_board.units import Number
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class FieldAir:
+    """The air at the field with the steps that values and their uncertainties share; arrays that broadcast, SI.
+
+    Attributes
+    ----------
+    altimeter_pa, elevation_m, temperature_k
+        As read.
+    dewpoint_k
+        Dew point over water; it does not count where ``moist_to_dry`` is 1, but must be above 0 there too.
+    pressure_altitude_m, pressure_pa
+        Of the field.
+    moist_to_dry
+        Ratio of the density to that of dry air; 1 where the air counts as dry.
+    density_altitude_m
+        With humidity where it counts.
+    """
+
+    altimeter_pa: FloatArray
+    elevation_m: FloatArray
+    temperature_k: FloatArray
+    dewpoint_k: FloatArray
+    pressure_altitude_m: FloatArray
+    pressure_pa: FloatArray
+    moist_to_dry: FloatArray
+    density_altitude_m: FloatArray
 
 
 def pressure_altitude(altimeter_pa: Number | float, elevation_m: Number | float) -> Number:

@@ -119,22 +119,26 @@ def moist_to_dry_density(pressure_pa: Number | float, dewpoint_k: Number | float
     return evaluated(_moist_to_dry_density, pressure_pa, dewpoint_k)
 
 
-def moist_to_dry_slopes(pressure_pa: Number | float, dewpoint_k: Number | float) -> tuple[Number, Number]:
+def moist_to_dry_slopes(
+    pressure_pa: Number | float, dewpoint_k: Number | float, ratio: Number | float | None = None
+) -> tuple[Number, Number]:
     """Exact derivatives of the logarithm of `moist_to_dry_density`.
 
     Parameters
     ----------
     pressure_pa, dewpoint_k
         As there.
+    ratio
+        What it gives, where that is known already; a ratio of 1, dry air, has the slopes 0.
 
     Returns
     -------
     by_pressure
-        [1/Pa], above 0.
+        [1/Pa], not below 0.
     by_dewpoint
-        [1/K], below 0.
+        [1/K], not above 0.
     """
-    by_pressure, by_dewpoint = evaluated_together(_moist_to_dry_slopes, pressure_pa, dewpoint_k)
+    by_pressure, by_dewpoint = evaluated_together(_moist_to_dry_slopes, pressure_pa, dewpoint_k, ratio)
     return by_pressure, by_dewpoint
 
 
@@ -182,12 +186,24 @@ def _moist_to_dry_density(pressure_pa: FloatArray, dewpoint_k: FloatArray) -> Fl
     return 1.0 - (1.0 - MOLAR_MASS_RATIO) * share
 
 
-def _moist_to_dry_slopes(pressure_pa: FloatArray, dewpoint_k: FloatArray) -> tuple[FloatArray, FloatArray]:
-    ratio = _moist_to_dry_density(pressure_pa, dewpoint_k)
-    lost = (1.0 - ratio) / ratio
-    pressure_hpa = pressure_pa / HECTOPASCAL_PA
-    # The vapour's share f(p) e / p depends on the pressure twice: by the division and by the enhancement factor.
-    factor_rise = _ENHANCEMENT_RISE * pressure_hpa + _ENHANCEMENT_LOSS / pressure_hpa
-    by_pressure = lost * (1.0 - factor_rise / _enhancement_factor(pressure_hpa)) / pressure_pa
-    vapour_rise = -_INVERSE / (dewpoint_k * dewpoint_k) + _LINEAR + 2.0 * _SQUARE * dewpoint_k + _LOGARITHM / dewpoint_k
-    return by_pressure, -lost * vapour_rise
+def _moist_to_dry_slopes(
+    pressure_pa: FloatArray, dewpoint_k: FloatArray, ratio: FloatArray | None
+) -> tuple[FloatArray, FloatArray]:
+    if ratio is None:
+        ratio = _moist_to_dry_density(pressure_pa, dewpoint_k)
+    lost = 1.0 / ratio
+    lost -= 1.0
+    by_dewpoint = 1.0 / dewpoint_k
+    vapour_rise = by_dewpoint * -_INVERSE
+    vapour_rise += _LOGARITHM
+    vapour_rise *= by_dewpoint
+    vapour_rise += _LINEAR
+    vapour_rise += (2.0 * _SQUARE) * dewpoint_k
+    # The vapour's share f(p) e / p depends on the pressure twice: by the division and by the enhancement factor f. With
+    # f = a + b p - c / p that makes -(a - 2 c / p) / (f p) of it for each pascal more.
+    by_pressure_hpa = HECTOPASCAL_PA / pressure_pa
+    falling = _ENHANCEMENT - (2.0 * _ENHANCEMENT_LOSS) * by_pressure_hpa
+    falling /= _enhancement_factor(pressure_pa * (1.0 / HECTOPASCAL_PA))
+    falling *= by_pressure_hpa
+    falling *= lost * (1.0 / HECTOPASCAL_PA)
+    return falling, -lost * vapour_rise

@@ -18,6 +18,7 @@ from typing import Final, Generic
 import numpy as np
 
 from airfield_board.atmosphere import altimetry, moist_air, standard
+from airfield_board.atmosphere.altimetry import FieldAir
 from airfield_board.atmosphere.evaluation import FloatArray, evaluated, evaluated_together
 from airfield_board.units import Number
 
@@ -132,6 +133,39 @@ def density_altitude_uncertainty(
     )
 
 
+def field_air_uncertainties(
+    air: FieldAir,
+    altimeter_uncertainty_pa: float,
+    temperature_uncertainty_k: FloatArray,
+    dewpoint_uncertainty_k: FloatArray,
+) -> tuple[FloatArray, FloatArray, FloatArray]:
+    """Return the expanded uncertainties (k = 2) of air whose values are known already.
+
+    Parameters
+    ----------
+    air
+        The air.
+    altimeter_uncertainty_pa, temperature_uncertainty_k, dewpoint_uncertainty_k
+        Standard uncertainties [Pa, K, K].
+
+    Returns
+    -------
+    density_altitude, pressure_altitude, isa_deviation
+        [m, m, K]: what `density_altitude_uncertainty`, `pressure_altitude_uncertainty` and
+        `isa_deviation_uncertainty` give for the same air.
+    """
+    with np.errstate(all="ignore"):
+        by_altimeter_m = _pressure_altitude_by_altimeter(air.altimeter_pa, air.pressure_altitude_m - air.elevation_m)
+        derivatives = _derivatives_of(air, by_altimeter_m)
+        return (
+            _combined(*derivatives, altimeter_uncertainty_pa, temperature_uncertainty_k, dewpoint_uncertainty_k),
+            COVERAGE_FACTOR * np.abs(by_altimeter_m * altimeter_uncertainty_pa),
+            _of_isa_deviation(
+                air.pressure_altitude_m, by_altimeter_m, altimeter_uncertainty_pa, temperature_uncertainty_k
+            ),
+        )
+
+
 def pressure_altitude_uncertainty(altimeter_pa: Number | float, altimeter_uncertainty_pa: Number | float) -> Number:
     """Return the expanded uncertainty (k = 2) of pressure altitude; the elevation, being exact, does not change it.
 
@@ -187,31 +221,48 @@ def _expanded(standard_uncertainties: FloatArray) -> FloatArray:
     return COVERAGE_FACTOR * np.abs(standard_uncertainties)
 
 
-def _pressure_altitude_by_altimeter(altimeter_pa: FloatArray) -> FloatArray:
-    return -standard.pressure_scale_height(standard.altitude_from_pressure(altimeter_pa)) / altimeter_pa
+def _pressure_altitude_by_altimeter(altimeter_pa: FloatArray, altitude_of_setting_m: FloatArray) -> FloatArray:
+    return -standard.pressure_scale_height(altitude_of_setting_m) / altimeter_pa
+
+
+def _air(
+    altimeter_pa: FloatArray, elevation_m: FloatArray, temperature_k: FloatArray, dewpoint_k: FloatArray | None
+) -> FieldAir:
+    pressure_altitude_m = altimetry.pressure_altitude(altimeter_pa, elevation_m)
+    pressure_pa = standard.pressure_at(pressure_altitude_m)
+    return FieldAir(
+        altimeter_pa=altimeter_pa,
+        elevation_m=elevation_m,
+        temperature_k=temperature_k,
+        dewpoint_k=temperature_k if dewpoint_k is None else dewpoint_k,
+        pressure_altitude_m=pressure_altitude_m,
+        pressure_pa=pressure_pa,
+        moist_to_dry=(
+            np.ones_like(pressure_pa) if dewpoint_k is None else moist_air.moist_to_dry_density(pressure_pa, dewpoint_k)
+        ),
+        density_altitude_m=altimetry.density_altitude(pressure_pa, temperature_k, dewpoint_k),
+    )
+
+
+def _derivatives_of(air: FieldAir, by_altimeter_m: FloatArray) -> tuple[FloatArray, FloatArray, FloatArray]:
+    by_pressure, by_dewpoint = moist_air.moist_to_dry_slopes(air.pressure_pa, air.dewpoint_k, air.moist_to_dry)
+    # The pressure acts a second time: the same vapour is a smaller share of air under more pressure.
+    log_density_by_log_pressure = 1.0 + air.pressure_pa * by_pressure
+    scale_height_m = standard.density_scale_height(air.density_altitude_m)
+    # d(ln p) = -dH / scale height at the field, where dH is what the setting adds to the pressure altitude.
+    stretch = scale_height_m / standard.pressure_scale_height(air.pressure_altitude_m)
+    return (
+        stretch * log_density_by_log_pressure * by_altimeter_m,
+        scale_height_m / air.temperature_k,
+        -scale_height_m * by_dewpoint,
+    )
 
 
 def _density_altitude_derivatives(
     altimeter_pa: FloatArray, elevation_m: FloatArray, temperature_k: FloatArray, dewpoint_k: FloatArray | None
 ) -> tuple[FloatArray, FloatArray, FloatArray]:
-    pressure_altitude_m = altimetry.pressure_altitude(altimeter_pa, elevation_m)
-    pressure_pa = standard.pressure_at(pressure_altitude_m)
-    # d(ln p) = -dH / scale height at the field, where dH is what the setting adds to the pressure altitude.
-    log_pressure_by_altimeter = -_pressure_altitude_by_altimeter(altimeter_pa) / standard.pressure_scale_height(
-        pressure_altitude_m
-    )
-    log_density_by_log_pressure = np.ones_like(pressure_pa)
-    log_density_by_dewpoint = np.zeros_like(pressure_pa)
-    if dewpoint_k is not None:
-        by_pressure, log_density_by_dewpoint = moist_air.moist_to_dry_slopes(pressure_pa, dewpoint_k)
-        # The pressure acts a second time: the same vapour is a smaller share of air under more pressure.
-        log_density_by_log_pressure = 1.0 + pressure_pa * by_pressure
-    scale_height_m = standard.density_scale_height(altimetry.density_altitude(pressure_pa, temperature_k, dewpoint_k))
-    return (
-        -scale_height_m * log_density_by_log_pressure * log_pressure_by_altimeter,
-        scale_height_m / temperature_k,
-        -scale_height_m * log_density_by_dewpoint,
-    )
+    by_altimeter_m = _pressure_altitude_by_altimeter(altimeter_pa, standard.altitude_from_pressure(altimeter_pa))
+    return _derivatives_of(_air(altimeter_pa, elevation_m, temperature_k, dewpoint_k), by_altimeter_m)
 
 
 def _density_altitude_uncertainty(
@@ -223,17 +274,27 @@ def _density_altitude_uncertainty(
     temperature_uncertainty_k: FloatArray,
     dewpoint_uncertainty_k: FloatArray,
 ) -> FloatArray:
-    by_altimeter, by_temperature, by_dewpoint = _density_altitude_derivatives(
-        altimeter_pa, elevation_m, temperature_k, dewpoint_k
-    )
-    variance = (by_altimeter * altimeter_uncertainty_pa) ** 2 + (by_temperature * temperature_uncertainty_k) ** 2
-    if dewpoint_k is not None:
-        variance = variance + (by_dewpoint * dewpoint_uncertainty_k) ** 2
+    derivatives = _density_altitude_derivatives(altimeter_pa, elevation_m, temperature_k, dewpoint_k)
+    return _combined(*derivatives, altimeter_uncertainty_pa, temperature_uncertainty_k, dewpoint_uncertainty_k)
+
+
+def _combined(
+    by_altimeter: FloatArray,
+    by_temperature: FloatArray,
+    by_dewpoint: FloatArray,
+    altimeter_uncertainty_pa: FloatArray | float,
+    temperature_uncertainty_k: FloatArray,
+    dewpoint_uncertainty_k: FloatArray,
+) -> FloatArray:
+    variance = (by_altimeter * altimeter_uncertainty_pa) ** 2
+    variance = variance + (by_temperature * temperature_uncertainty_k) ** 2
+    variance = variance + (by_dewpoint * dewpoint_uncertainty_k) ** 2
     return COVERAGE_FACTOR * np.sqrt(variance)
 
 
 def _pressure_altitude_uncertainty(altimeter_pa: FloatArray, altimeter_uncertainty_pa: FloatArray) -> FloatArray:
-    return COVERAGE_FACTOR * np.abs(_pressure_altitude_by_altimeter(altimeter_pa) * altimeter_uncertainty_pa)
+    by_altimeter_m = _pressure_altitude_by_altimeter(altimeter_pa, standard.altitude_from_pressure(altimeter_pa))
+    return COVERAGE_FACTOR * np.abs(by_altimeter_m * altimeter_uncertainty_pa)
 
 
 def _isa_deviation_uncertainty(
@@ -242,7 +303,17 @@ def _isa_deviation_uncertainty(
     altimeter_uncertainty_pa: FloatArray,
     temperature_uncertainty_k: FloatArray,
 ) -> FloatArray:
-    rate_k_m = standard.lapse_rate_at(altimetry.pressure_altitude(altimeter_pa, elevation_m))
-    by_altimeter = rate_k_m * _pressure_altitude_by_altimeter(altimeter_pa)
-    variance = (by_altimeter * altimeter_uncertainty_pa) ** 2 + temperature_uncertainty_k**2
+    by_altimeter_m = _pressure_altitude_by_altimeter(altimeter_pa, standard.altitude_from_pressure(altimeter_pa))
+    pressure_altitude_m = altimetry.pressure_altitude(altimeter_pa, elevation_m)
+    return _of_isa_deviation(pressure_altitude_m, by_altimeter_m, altimeter_uncertainty_pa, temperature_uncertainty_k)
+
+
+def _of_isa_deviation(
+    pressure_altitude_m: FloatArray,
+    by_altimeter_m: FloatArray,
+    altimeter_uncertainty_pa: FloatArray | float,
+    temperature_uncertainty_k: FloatArray,
+) -> FloatArray:
+    by_altimeter_k = standard.lapse_rate_at(pressure_altitude_m) * by_altimeter_m
+    variance = (by_altimeter_k * altimeter_uncertainty_pa) ** 2 + temperature_uncertainty_k**2
     return COVERAGE_FACTOR * np.sqrt(variance)

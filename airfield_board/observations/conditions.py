@@ -12,6 +12,7 @@ import numpy as np
 from numpy.typing import NDArray
 
 from airfield_board.atmosphere import altimetry, moist_air, standard, uncertainty
+from airfield_board.atmosphere.altimetry import FieldAir
 from airfield_board.units import (
     FOOT_M,
     HECTOPASCAL_PA,
@@ -139,10 +140,10 @@ def standard_uncertainties(
         What the row itself implies; NaN: the instruments' counts.
     """
     altimeter_hpa, temperature_c, dewpoint_c = _uncertainties(
-        instruments, np.asarray(temperature_resolution_c), np.asarray(dewpoint_resolution_c)
+        instruments, np.array([temperature_resolution_c]), np.array([dewpoint_resolution_c])
     )
     return StandardUncertainties(
-        altimeter_hpa=altimeter_hpa, temperature_c=float(temperature_c), dewpoint_c=float(dewpoint_c)
+        altimeter_hpa=altimeter_hpa, temperature_c=float(temperature_c[0]), dewpoint_c=float(dewpoint_c[0])
     )
 
 
@@ -187,10 +188,10 @@ def conditions_of(
         altimeter_pa = pa_from_hpa(altimeter_hpa[part])
         temperature_k = k_from_c(temperature_c[part])
         dewpoint_k = k_from_c(dewpoint_used_c[part])
-        _fill_values(out, altimeter_pa, elevations_m[part], temperature_k, dewpoint_k)
+        air = _fill_values(out, altimeter_pa, elevations_m[part], temperature_k, dewpoint_k)
         if instruments is not None:
             readings = _uncertainties(instruments, temperature_resolution_c[part], dewpoint_resolution_c[part])
-            _fill_uncertainties(out, altimeter_pa, elevations_m[part], temperature_k, dewpoint_k, readings)
+            _fill_uncertainties(out, air, readings)
     return ConditionsTable(temperature_c=temperature_c, **columns)
 
 
@@ -318,50 +319,47 @@ def _fill_values(
     elevation_m: FloatArray,
     temperature_k: FloatArray,
     dewpoint_k: FloatArray,
-) -> None:
+) -> FieldAir:
     pressure_altitude_m = altimetry.pressure_altitude(altimeter_pa, elevation_m)
     pressure_pa = standard.pressure_at(pressure_altitude_m)
     dry = moist_air.density(pressure_pa, temperature_k)
-    density = dry * moist_air.moist_to_dry_density(pressure_pa, dewpoint_k)
+    moist_to_dry = moist_air.moist_to_dry_density(pressure_pa, dewpoint_k)
     is_dry = np.isnan(dewpoint_k)
     if is_dry.any():
         # Only a dew point that is not there makes the air dry; one that is there but absurd leaves NaN.
-        density = np.where(is_dry, dry, density)
+        moist_to_dry = np.where(is_dry, 1.0, moist_to_dry)
+        dewpoint_k = np.where(is_dry, temperature_k, dewpoint_k)
+    density = dry * moist_to_dry
+    density_altitude_m = standard.altitude_from_density(density)
     np.divide(pressure_pa, HECTOPASCAL_PA, out=out["station_pressure_hpa"])
     np.divide(pressure_altitude_m, FOOT_M, out=out["pressure_altitude_ft"])
     np.divide(standard.altitude_from_density(dry), FOOT_M, out=out["density_altitude_dry_ft"])
-    np.divide(standard.altitude_from_density(density), FOOT_M, out=out["density_altitude_ft"])
+    np.divide(density_altitude_m, FOOT_M, out=out["density_altitude_ft"])
     np.divide(density, standard.SEA_LEVEL_DENSITY_KG_M3, out=out["density_ratio"])
     out["isa_deviation_c"][:] = altimetry.isa_deviation(pressure_altitude_m, temperature_k)
+    return FieldAir(
+        altimeter_pa=altimeter_pa,
+        elevation_m=elevation_m,
+        temperature_k=temperature_k,
+        dewpoint_k=dewpoint_k,
+        pressure_altitude_m=pressure_altitude_m,
+        pressure_pa=pressure_pa,
+        moist_to_dry=moist_to_dry,
+        density_altitude_m=density_altitude_m,
+    )
 
 
 def _fill_uncertainties(
-    out: dict[str, FloatArray],
-    altimeter_pa: FloatArray,
-    elevation_m: FloatArray,
-    temperature_k: FloatArray,
-    dewpoint_k: FloatArray,
-    readings: tuple[float, FloatArray, FloatArray],
+    out: dict[str, FloatArray], air: FieldAir, readings: tuple[float, FloatArray, FloatArray]
 ) -> None:
     altimeter_hpa, temperature_c, dewpoint_c = readings
-    uncertainty_pa = pa_from_hpa(altimeter_hpa)
-    moist_m = uncertainty.density_altitude_uncertainty(
-        altimeter_pa, elevation_m, temperature_k, dewpoint_k, uncertainty_pa, temperature_c, dewpoint_c
+    of_density_m, of_pressure_m, of_deviation_k = uncertainty.field_air_uncertainties(
+        air, pa_from_hpa(altimeter_hpa), temperature_c, dewpoint_c
     )
-    is_dry = np.isnan(dewpoint_k)
-    if is_dry.any():
-        dry_m = uncertainty.density_altitude_uncertainty(
-            altimeter_pa, elevation_m, temperature_k, None, uncertainty_pa, temperature_c
-        )
-        moist_m = np.where(is_dry, dry_m, moist_m)
-    out["uncertainty_ft"][:] = ft_from_m(moist_m)
-    out["pressure_altitude_uncertainty_ft"][:] = ft_from_m(
-        uncertainty.pressure_altitude_uncertainty(altimeter_pa, uncertainty_pa)
-    )
+    np.divide(of_density_m, FOOT_M, out=out["uncertainty_ft"])
+    np.divide(of_pressure_m, FOOT_M, out=out["pressure_altitude_uncertainty_ft"])
     out["temperature_uncertainty_c"][:] = uncertainty.expanded(temperature_c)
-    out["isa_deviation_uncertainty_c"][:] = uncertainty.isa_deviation_uncertainty(
-        altimeter_pa, elevation_m, uncertainty_pa, temperature_c
-    )
+    out["isa_deviation_uncertainty_c"][:] = of_deviation_k
 
 
 def _uncertainties(
@@ -369,15 +367,16 @@ def _uncertainties(
 ) -> tuple[float, FloatArray, FloatArray]:
     return (
         uncertainty.standard_uncertainty(instruments.altimeter_resolution_hpa, instruments.altimeter_accuracy_hpa),
-        uncertainty.standard_uncertainty(
-            _first_given(temperature_resolution_c, instruments.temperature_resolution_c),
-            instruments.temperature_accuracy_c,
+        _uncertainty_of_rows(
+            temperature_resolution_c, instruments.temperature_resolution_c, instruments.temperature_accuracy_c
         ),
-        uncertainty.standard_uncertainty(
-            _first_given(dewpoint_resolution_c, instruments.dewpoint_resolution_c), instruments.dewpoint_accuracy_c
-        ),
+        _uncertainty_of_rows(dewpoint_resolution_c, instruments.dewpoint_resolution_c, instruments.dewpoint_accuracy_c),
     )
 
 
-def _first_given(of_row_c: FloatArray, of_instrument_c: float) -> FloatArray:
-    return np.where(np.isnan(of_row_c), of_instrument_c, of_row_c)
+def _uncertainty_of_rows(resolution_c: FloatArray, of_instrument_c: float, accuracy_c: float) -> FloatArray:
+    not_given = np.isnan(resolution_c)
+    if not_given.all():
+        # One value for all the rows, as it is for every format but one.
+        return np.array([uncertainty.standard_uncertainty(of_instrument_c, accuracy_c)])
+    return uncertainty.standard_uncertainty(np.where(not_given, of_instrument_c, resolution_c), accuracy_c)
