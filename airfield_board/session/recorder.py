@@ -15,6 +15,8 @@ from airfield_board.clock import Clock, iso_utc, local_day, start_of_local_day, 
 from airfield_board.configuration.model import Profile
 from airfield_board.configuration.profile import load_airfield
 from airfield_board.errors import UserError
+from airfield_board.history.errors import HistoryLocked
+from airfield_board.history.lock import holder_of
 from airfield_board.history.records import Json, Record, RecordKind
 from airfield_board.history.store import History
 from airfield_board.limits.rules import Episode, LimitChange
@@ -127,6 +129,9 @@ class Recorder:
 
         try:
             recording = Recording(open_history(), "", open_history)
+        except HistoryLocked as error:
+            # Locked by a recorder: this one only watches. Locked by anything else: it is tried again.
+            recording = Recording(None, str(error), None if holder_of(path) is not None else open_history)
         except UserError as error:
             recording = Recording(None, str(error), open_history)
         return cls(airfield, clock=clock, mode=mode, recording=recording, watch_settings=watch_settings)

@@ -25,10 +25,11 @@ class Recording:
     problem
         Why it could not.
     reopen
-        Tried again before each writing while there is no history.
+        Tried again before each writing while there is no history; None: another recorder records into it, and this
+        one only watches.
     """
 
-    def __init__(self, history: History | None, problem: str, reopen: Callable[[], History]) -> None:
+    def __init__(self, history: History | None, problem: str, reopen: Callable[[], History] | None) -> None:
         self.history = history
         self.problem = problem
         self._reopen = reopen
@@ -52,28 +53,32 @@ class Recording:
         """
         numbers = tuple(range(self._next_provisional, self._next_provisional - len(records), -1))
         self._next_provisional -= len(records)
+        if self.history is None and self._reopen is None:
+            return numbers, {}
         waiting = [*self._waiting, *records]
         provisional = [*self._provisional, *numbers]
         if not waiting:
             return (), {}
         try:
             if self.history is None:
-                self.history = self._reopen()
+                self.history = self._opened()
             first = self.history.count + 1
             found = {old: first + place for place, old in enumerate(provisional)}
             self.history.append(
                 [_late(_named(record, found), place < len(self._waiting)) for place, record in enumerate(waiting)],
                 resume=resume,
             )
-        except NotRecorded as error:
-            self._waiting, self._provisional, self.problem = waiting, provisional, str(error)
-            return numbers, {}
         except UserError as error:
             self._waiting, self._provisional, self.problem = waiting, provisional, str(error)
             return numbers, {}
         moved = {old: found[old] for old in self._provisional}
         self._waiting, self._provisional, self.problem = [], [], ""
         return tuple(found[old] for old in numbers), moved
+
+    def _opened(self) -> History:
+        if self._reopen is None:
+            raise NotRecorded(self.problem)
+        return self._reopen()
 
     @property
     def kept_back(self) -> int:
