@@ -1,11 +1,11 @@
 """The rules: what one limit says at each observation.
 
 The definition is scalar: `LimitJudge` takes one row after the other. Arrays serve only to skip rows at which nothing
-can happen: between two rows on the same side of every threshold the state stays as it is, and only a running
-off-delay can still change it.
+can happen: valid ones in the range of values in which the present state stays as it is, up to the end of a running
+off-delay.
 """
 
-from collections.abc import Mapping, Sequence
+from collections.abc import Mapping
 from dataclasses import asdict, dataclass, fields
 
 import numpy as np
@@ -212,51 +212,35 @@ class LimitJudge:
             return
         value, over, outside = compared(standing, rows.conditions, start, stop)
         time_us = rows.time_us[start:stop]
-        events = self._eventful(standing, rows, over, outside, start, stop)
-        memory = self.memory
-        for place, index in enumerate(events):
+        special = ~rows.valid[start:stop] | rows.restart[start:stop] | (rows.stale_at_us[start:stop] != 0) | outside
+        looked_at = _crossings(standing, over, special)
+        over_there, special_there = over[looked_at].tolist(), special[looked_at].tolist()
+        ahead: list[int] = looked_at.tolist()
+        index, place, memory = 0, 0, self.memory
+        while index < stop - start:
             self._take(standing, rows, value, over, outside, start, index)
-            following = events[place + 1] if place + 1 < len(events) else stop - start
-            cleared_at = index
-            if memory.held and memory.run_us is not None:
-                due = int(np.searchsorted(time_us, memory.run_us + self._delay_us(standing), side="left"))
-                due = max(due, index + 1)
-                if due < following:
-                    self._follow(standing, value, over, index + 1, due)
-                    self._take(standing, rows, value, over, outside, start, due)
-                    cleared_at = due
-            self._follow(standing, value, over, cleared_at + 1, following)
-            if following > index + 1:
-                memory.last_us = int(time_us[following - 1])
+            following = index + 1
+            # What a special row began, the next row may end, so that one is always taken too.
+            if not special[index] and memory.state is not State.NO_DATA:
+                low, high = _stays(standing, memory)
+                due = self._due(standing, time_us, following)
+                while place < len(ahead) and (
+                    ahead[place] <= index
+                    or (ahead[place] < due and not special_there[place] and low <= over_there[place] < high)
+                ):
+                    place += 1
+                following = min(due, ahead[place]) if place < len(ahead) else due
+                if following > index + 1:
+                    self._follow(standing, value, over, index + 1, following)
+                    memory.last_us = int(time_us[following - 1])
+            index = following
 
-    def _eventful(
-        self,
-        standing: Standing,
-        rows: JudgedRows,
-        over: NDArray[np.float64],
-        outside: NDArray[np.bool_],
-        start: int,
-        stop: int,
-    ) -> Sequence[int]:
-        """Return the rows, counted from ``start``, at which more can happen than an off-delay running out."""
-        count = stop - start
-        if count < _FEW_ROWS:
-            return range(count)
-        side = np.zeros(count, dtype=np.int8)
-        for threshold in sorted(set(_thresholds(standing))):
-            side += over >= threshold
-        eventful = np.empty(count, dtype=np.bool_)
-        eventful[0] = True
-        np.not_equal(side[1:], side[:-1], out=eventful[1:])
-        special = ~rows.valid[start:stop]
-        special |= rows.restart[start:stop]
-        special |= rows.stale_at_us[start:stop] != 0
-        special |= outside
-        eventful |= special
-        # After a special row the next one is looked at too: it may be the one that ends what the special row began.
-        eventful[1:] |= special[:-1]
-        found: list[int] = np.flatnonzero(eventful).tolist()
-        return found
+    def _due(self, standing: Standing, time_us: NDArray[np.int64], following: int) -> int:
+        """Return the row at which a running off-delay is over, not before ``following``; none: the number of rows."""
+        if self.memory.run_us is None:
+            return len(time_us)
+        end_us = self.memory.run_us + self._delay_us(standing)
+        return max(following, int(np.searchsorted(time_us, end_us, side="left")))
 
     def _take(
         self,
@@ -567,10 +551,39 @@ def _limit_shown(standing: Standing, state: State, row: _Reading) -> float:
     return limit + standing.light_gain if state is State.HOLD else limit
 
 
-def _thresholds(standing: Standing) -> tuple[float, ...]:
-    """All the values of ``over`` at which anything can change, each as the least one beyond it."""
+def _crossings(standing: Standing, over: NDArray[np.float64], special: NDArray[np.bool_]) -> NDArray[np.int64]:
+    """Return the special rows, and those on another side of any threshold than the row before."""
+    if len(over) < _FEW_ROWS:
+        return np.arange(len(over))
     gain, near, dead = standing.light_gain, standing.near_band, standing.deadband
-    return (gain + EQUAL, EQUAL, EQUAL - near, EQUAL - near - dead, EQUAL - dead, gain - dead + EQUAL)
+    # Each threshold is the least value of ``over`` beyond it; `_stays` gives ranges between two of them.
+    thresholds = {gain + EQUAL, _clear_over(standing), EQUAL, EQUAL - dead, EQUAL - near, EQUAL - near - dead}
+    side = np.zeros(len(over), dtype=np.int8)
+    for threshold in thresholds:
+        side += over >= threshold
+    crossing = special.copy()
+    crossing[0] = True
+    crossing[1:] |= side[1:] != side[:-1]
+    return np.flatnonzero(crossing)
+
+
+def _stays(standing: Standing, memory: LimitMemory) -> tuple[float, float]:
+    """Return the range of ``over``, its end excluded, in which a valid row leaves the state as it is.
+
+    In a hold that is: leaves the run as it is.
+    """
+    near, dead = standing.near_band, standing.deadband
+    match memory.state:
+        case State.HOLD if memory.run_us is None:
+            return _clear_over(standing), np.inf
+        case State.HOLD:
+            return -np.inf, _clear_over(standing)
+        case State.REDUCED:
+            return EQUAL - dead, standing.light_gain + EQUAL
+        case State.NEAR:
+            return EQUAL - near - dead, EQUAL
+        case _:
+            return -np.inf, EQUAL - near
 
 
 def _clear_over(standing: Standing) -> float:

@@ -93,10 +93,17 @@ def limit_of(
     )
 
 
-def by_weight(points: dict[float, float], unit: Literal["lb", "kg"] = "lb", **bands: float) -> Limit:
+def by_weight(
+    points: dict[float, float],
+    unit: Literal["lb", "kg"] = "lb",
+    *,
+    near_band: float = 500.0,
+    deadband: float = 150.0,
+    off_delay_min: float = 10.0,
+) -> Limit:
     """A density-altitude limit by weight."""
     table = WeightTable(weight_unit=unit, weights=tuple(points), limits=tuple(points.values()))
-    return replace(limit_of(**bands), value=table)
+    return replace(limit_of(near_band=near_band, deadband=deadband, off_delay_min=off_delay_min), value=table)
 
 
 def schedule_of(*entries: Limit, zone: ZoneInfo = ZONE) -> Schedule:

@@ -24,8 +24,8 @@ TOMORROW = date(2026, 7, 15)
 TOW = {1950.0: 7400.0, 2200.0: 6950.0, 2450.0: 6550.0}
 
 
-def temperature(value: float | PressureAltitudeTable, **bands: float) -> Limit:
-    base = limit_of(45, quantity=Quantity.TEMPERATURE, unit="c", **{"near_band": 3, "deadband": 0.5, **bands})
+def temperature(value: float | PressureAltitudeTable, *, off_delay_min: float = 10.0) -> Limit:
+    base = limit_of(45, quantity=Quantity.TEMPERATURE, unit="c", near_band=3, deadband=0.5, off_delay_min=off_delay_min)
     return replace(base, value=value)
 
 
