@@ -16,7 +16,7 @@ from airfield_board.session.board_state import BoardState, Mode
 from airfield_board.session.recorder import Recorder
 from airfield_board.training.demo import DEMO_POLL_S, DEMO_SPEED, DemoDay, running_clock, stepped_day
 from airfield_board.window import formatting
-from airfield_board.window.preflight import no_display_message, require_libraries, require_screen, usable_platform
+from airfield_board.window.preflight import no_display_message, require_libraries, require_screen, usable_platforms
 
 if TYPE_CHECKING:
     from airfield_board.window.main_window import Feed
@@ -85,7 +85,7 @@ def run_demo(*, scheme: str = "system", out: TextIO | None = None) -> int:
     UserError
         Where a system library is missing.
     """
-    if usable_platform(os.environ) is None:
+    if not usable_platforms(os.environ):
         return play_demo_in_terminal(out or sys.stdout, Path.cwd(), scheme=scheme)
     platform = require_screen(os.environ)
     with tempfile.TemporaryDirectory(prefix=_FOLDER_PREFIX, ignore_cleanup_errors=True) as folder:

@@ -56,7 +56,6 @@ _XCB = (
 _WAYLAND = (
     ("libwayland-client.so.0", "libwayland-client0"),
     ("libwayland-cursor.so.0", "libwayland-cursor0"),
-    ("libwayland-egl.so.1", "libwayland-egl1"),
 )
 _PACKAGE_OF = dict(_EVERYWHERE + _XCB + _WAYLAND)
 
@@ -130,8 +129,8 @@ def missing_message(missing: Iterable[Missing]) -> str:
     return "\n".join(lines)
 
 
-def usable_platform(environment: Mapping[str, str]) -> str | None:
-    """Return the Qt platform that has a screen to open a window on.
+def usable_platforms(environment: Mapping[str, str]) -> tuple[str, ...]:
+    """Return the Qt platforms that have a screen to open a window on.
 
     Parameters
     ----------
@@ -140,21 +139,22 @@ def usable_platform(environment: Mapping[str, str]) -> str | None:
 
     Returns
     -------
-    str or None
-        Qt's name of the platform; None where there is no display, or none that lets us in.
+    tuple of str
+        Qt's names, the best first; empty where there is no display, or none that lets us in.
     """
     wanted = environment.get("QT_QPA_PLATFORM", "").split(";")[0].split(":")[0]
     if wanted in _PLATFORMS_WITHOUT_SCREEN:
-        return None
+        return ()
     if not sys.platform.startswith("linux"):
-        return wanted or {"darwin": "cocoa", "win32": "windows"}.get(sys.platform, "xcb")
+        return (wanted or {"darwin": "cocoa", "win32": "windows"}.get(sys.platform, "xcb"),)
     if wanted not in {"", "xcb", "wayland"}:
-        return wanted  # asked for by name (a frame buffer, VNC): the user knows this screen better than we do
+        return (wanted,)  # asked for by name (a frame buffer, VNC): the user knows this screen better than we do
+    found = []
     if wanted != "xcb" and _wayland_answers(environment):
-        return "wayland"
+        found.append("wayland")
     if wanted != "wayland" and _x11_answers(environment.get("DISPLAY", "")):
-        return "xcb"
-    return None
+        found.append("xcb")
+    return tuple(found)
 
 
 def require_screen(environment: Mapping[str, str]) -> str:
@@ -165,11 +165,12 @@ def require_screen(environment: Mapping[str, str]) -> str:
     NoDisplay
         Where there is no display; names the commands that need none.
     MissingLibraries
-        Where Qt would miss a system library.
+        Where Qt would miss a system library on every display there is; names those of the best one.
     """
-    platform = usable_platform(environment)
-    if platform is None:
+    platforms = usable_platforms(environment)
+    if not platforms:
         raise NoDisplay(no_display_message(environment))
+    platform = next((each for each in platforms if not missing_libraries(each)), platforms[0])
     require_libraries(platform)
     return platform
 

@@ -16,7 +16,7 @@ from airfield_board.window.preflight import (
     no_display_message,
     require_libraries,
     require_screen,
-    usable_platform,
+    usable_platforms,
 )
 from tests.interpreter import run_python
 
@@ -135,12 +135,12 @@ def test_preflight_itself_imports_no_qt() -> None:
 
 @pytest.mark.parametrize("platform", ["offscreen", "minimal", "minimalegl", "offscreen:size=10x10"])
 def test_a_platform_without_a_screen_is_no_display(platform: str) -> None:
-    assert usable_platform({"QT_QPA_PLATFORM": platform, "DISPLAY": ":0", "WAYLAND_DISPLAY": "wayland-0"}) is None
+    assert usable_platforms({"QT_QPA_PLATFORM": platform, "DISPLAY": ":0", "WAYLAND_DISPLAY": "wayland-0"}) == ()
 
 
 @linux_only
 def test_without_display_variables_there_is_no_display() -> None:
-    assert usable_platform({}) is None
+    assert usable_platforms({}) == ()
     with pytest.raises(NoDisplay, match="no display"):
         require_screen({})
 
@@ -148,13 +148,13 @@ def test_without_display_variables_there_is_no_display() -> None:
 @linux_only
 @pytest.mark.parametrize("display", [":7931", "localhost:7931", "nonsense", ":", ":x", "host:99999", "unix:7931.0"])
 def test_a_display_that_cannot_be_reached_is_no_display(display: str) -> None:
-    assert usable_platform({"DISPLAY": display}) is None
+    assert usable_platforms({"DISPLAY": display}) == ()
 
 
 @linux_only
 def test_a_server_that_does_not_let_us_in_is_no_display(monkeypatch: pytest.MonkeyPatch) -> None:
     monkeypatch.setattr(preflight, "_connects", lambda *_: True)
-    assert usable_platform({"DISPLAY": ":7931"}) is None
+    assert usable_platforms({"DISPLAY": ":7931"}) == ()
 
 
 @linux_only
@@ -162,28 +162,28 @@ def test_a_wayland_socket_that_answers_is_a_display(tmp_path: Path) -> None:
     with socket.socket(socket.AF_UNIX) as server:
         server.bind(str(tmp_path / "wayland-9"))
         server.listen()
-        assert usable_platform({"XDG_RUNTIME_DIR": str(tmp_path), "WAYLAND_DISPLAY": "wayland-9"}) == "wayland"
-    assert usable_platform({"XDG_RUNTIME_DIR": str(tmp_path), "WAYLAND_DISPLAY": "wayland-9"}) is None
+        assert usable_platforms({"XDG_RUNTIME_DIR": str(tmp_path), "WAYLAND_DISPLAY": "wayland-9"}) == ("wayland",)
+    assert usable_platforms({"XDG_RUNTIME_DIR": str(tmp_path), "WAYLAND_DISPLAY": "wayland-9"}) == ()
 
 
 @linux_only
 def test_an_x_server_that_lets_us_in_is_a_display(monkeypatch: pytest.MonkeyPatch) -> None:
     monkeypatch.setattr(preflight, "_connects", lambda *_: True)
     monkeypatch.setattr(preflight, "_x11_lets_us_in", lambda _: True)
-    assert usable_platform({"DISPLAY": ":5"}) == "xcb"
-    assert usable_platform({"DISPLAY": "far:5.0", "QT_QPA_PLATFORM": "xcb"}) == "xcb"
-    assert usable_platform({"DISPLAY": ":5", "QT_QPA_PLATFORM": "wayland"}) is None
+    assert usable_platforms({"DISPLAY": ":5"}) == ("xcb",)
+    assert usable_platforms({"DISPLAY": "far:5.0", "QT_QPA_PLATFORM": "xcb"}) == ("xcb",)
+    assert usable_platforms({"DISPLAY": ":5", "QT_QPA_PLATFORM": "wayland"}) == ()
 
 
 @linux_only
 def test_a_platform_asked_for_by_name_is_trusted() -> None:
-    assert usable_platform({"QT_QPA_PLATFORM": "vnc:size=800x600"}) == "vnc"
+    assert usable_platforms({"QT_QPA_PLATFORM": "vnc:size=800x600"}) == ("vnc",)
 
 
 @pytest.mark.parametrize(("system", "platform"), [("darwin", "cocoa"), ("win32", "windows")])
 def test_other_systems_have_their_own_platform(monkeypatch: pytest.MonkeyPatch, system: str, platform: str) -> None:
     monkeypatch.setattr(sys, "platform", system)
-    assert usable_platform({}) == platform
+    assert usable_platforms({}) == (platform,)
 
 
 def test_the_message_names_the_display_and_the_commands_that_need_none() -> None:
@@ -195,8 +195,16 @@ def test_the_message_names_the_display_and_the_commands_that_need_none() -> None
 
 @linux_only
 def test_a_screen_that_is_there_still_needs_its_libraries(monkeypatch: pytest.MonkeyPatch) -> None:
-    monkeypatch.setattr(preflight, "usable_platform", lambda _: "xcb")
-    monkeypatch.setattr(preflight, "loads", lambda _: False)
+    monkeypatch.setattr(preflight, "usable_platforms", lambda _: ("xcb",))
     monkeypatch.setattr(preflight, "missing_libraries", lambda _: (Missing(library="libxcb.so.1", package="libxcb1"),))
     with pytest.raises(MissingLibraries, match="libxcb1"):
         require_screen(os.environ)
+
+
+@linux_only
+def test_where_one_display_misses_a_library_another_that_has_all_is_taken(monkeypatch: pytest.MonkeyPatch) -> None:
+    monkeypatch.setattr(preflight, "usable_platforms", lambda _: ("wayland", "xcb"))
+    lacking = (Missing(library="libwayland-cursor.so.0", package="libwayland-cursor0"),)
+    monkeypatch.setattr(preflight, "missing_libraries", lambda platform: lacking if platform == "wayland" else ())
+    monkeypatch.setattr(preflight, "_load_plugin", lambda *_: None)
+    assert require_screen({}) == "xcb"
