@@ -43,7 +43,8 @@ _UNCERTAINTIES: Final = (
     "isa_deviation_uncertainty_c",
 )
 _MOST_STEPS: Final = 20
-_SOLVED_C: Final = 1e-9
+_SOLVED_C: Final = 1e-6
+"""A step so short ends the search; what it leaves missing is far less still."""
 
 
 class InstrumentFigures(Protocol):
@@ -227,8 +228,11 @@ def hold_temperature_for_density_altitude(
     if uncertainties is None:
         return c_from_k(unguarded_k)
     temperature_k = unguarded_k
-    # Newton's steps with the slope of the value alone: the uncertainty hardly changes with temperature, so each step
-    # leaves about a thousandth of what was missing before.
+    # Newton's steps with one slope, that of the value alone: slope and uncertainty hardly change with temperature, so
+    # each step leaves a few thousandths of what was missing before.
+    slope_m_k = uncertainty.density_altitude_derivatives(
+        altimeter_pa, elevation_m, unguarded_k, dewpoint_k
+    ).by_temperature
     for _ in range(_MOST_STEPS):
         missing_m = (
             limit_m
@@ -243,8 +247,7 @@ def hold_temperature_for_density_altitude(
                 uncertainties.dewpoint_c,
             )
         )
-        slopes = uncertainty.density_altitude_derivatives(altimeter_pa, elevation_m, temperature_k, dewpoint_k)
-        step_k = missing_m / slopes.by_temperature
+        step_k = missing_m / slope_m_k
         temperature_k = temperature_k + step_k
         if not np.any(np.abs(step_k) > _SOLVED_C):
             return c_from_k(temperature_k)
