@@ -168,8 +168,9 @@ def _read_array(section: Section, rules: ReadingRules) -> ReadResult:
             if text[at : at + 1] != ",":
                 raise _broken(text, at, rules)
             at = _after_white(text, at + 1)
-    if _after_white(text, at + 1) != len(text):
-        raise _broken(text, at + 1, rules)
+    behind = _after_white(text, at + 1)
+    if behind != len(text):
+        raise _broken(text, behind, rules)
     return objects.result(section, rules, unfinished=False)
 
 

@@ -62,7 +62,9 @@ KEYS: Mapping[str, Key] = {
     "elevation_m": Key("elevation", _same),
 }
 
-_RESERVED = re.compile(r"[\W_]*(?:dew|temp|alt|elev)")
+_RESERVED = re.compile(r"[\W_]*(dew|temp|alt|elev)")
+_TYPING_ERROR = 0.85
+"""Likeness (`difflib`) from which a name counts as a known one with a letter wrong; common sense, no source."""
 _MOST_NAMED = 20
 
 
@@ -78,12 +80,20 @@ def misspelt(name: str) -> str:
     from a known name by a letter or two.
     """
     folded = name.casefold().strip()
-    near = difflib.get_close_matches(folded, KEYS, n=1, cutoff=0.85)
-    typing_error = bool(near) and abs(len(near[0]) - len(folded)) <= 1
-    if not typing_error and not _RESERVED.match(folded):
+    near = [
+        known
+        for known in difflib.get_close_matches(folded, KEYS, n=1, cutoff=_TYPING_ERROR)
+        if abs(len(known) - len(folded)) <= 1
+    ]
+    begins = _RESERVED.match(folded)
+    if begins:
+        quantity = next(each for each in QUANTITIES if each.startswith(begins[1]))
+    elif near:
+        quantity = KEYS[near[0]].quantity
+    else:
         return ""
-    close = near or difflib.get_close_matches(folded, KEYS, n=1, cutoff=0.0)
-    return f"{shown(name)} is not a known name; did you mean {close[0]}?"
+    same_unit = f"{quantity}_{folded.rpartition('_')[2]}"
+    return f"{shown(name)} is not a known name; did you mean {same_unit if same_unit in KEYS else names_of(quantity)}?"
 
 
 def faults_of_names(names: Iterable[str]) -> list[str]:

@@ -88,7 +88,8 @@ def _settle_double(
 ) -> None:
     """Move the double times of the second pass, which come as those of the first, by what the clock ran back."""
     steps_us = np.diff(time_us[timed])
-    falling = np.count_nonzero(steps_us < 0) > np.count_nonzero(steps_us > 0)
+    # The clock change itself is one step back.
+    falling = np.count_nonzero(steps_us < 0) > np.count_nonzero(steps_us > 0) + 1
     if falling:
         timed, double, change_us, run_back_us = timed[::-1], double[::-1], change_us[::-1], run_back_us[::-1]
     place = np.empty(len(time_us), np.int64)

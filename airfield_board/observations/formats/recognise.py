@@ -21,6 +21,7 @@ HEAD_BYTES = 65_536
 
 _UTF_16_MARKS = (b"\xff\xfe", b"\xfe\xff")
 _UTF_8_MARK = b"\xef\xbb\xbf"
+_FIRST_SIGNS = 4
 _SEPARATORS = ",;\t"
 
 
@@ -70,7 +71,7 @@ def recognise(head: bytes, rules: ReadingRules) -> Format:
     if not text:
         raise rules.fault("it is empty")
     first_line = text.partition(b"\n")[0].rstrip()
-    if b"\0" in first_line:
+    if b"\0" in text[:_FIRST_SIGNS]:
         raise rules.fault("it begins with NUL bytes, so it is no plain text (or UTF-16); expected UTF-8 text")
     if b"\r" in first_line:
         raise rules.fault("its lines end with a carriage return alone; expected LF or CR LF line ends")
