@@ -26,7 +26,7 @@ from airfield_board.units import (
 
 FloatArray = NDArray[np.float64]
 
-_CHUNK_ROWS: Final = 65536
+_CHUNK_ROWS: Final = 32768
 """Rows computed at a time: enough that calls do not count, few enough that the steps between stay in the cache."""
 _VALUES: Final = (
     "station_pressure_hpa",
