@@ -5,7 +5,7 @@ can happen: valid ones in the range of values in which the present state stays a
 off-delay.
 """
 
-from collections.abc import Mapping
+from collections.abc import Mapping, Sequence
 from dataclasses import asdict, dataclass, fields
 
 import numpy as np
@@ -360,7 +360,8 @@ class LimitJudge:
             return
         resumed = memory.state is State.NO_DATA
         if memory.gap_from_us is not None:
-            memory.gap_us += row.time_us - memory.gap_from_us
+            # A correction of the newest valid row has a time before the staleness that was told meanwhile.
+            memory.gap_us += max(0, row.time_us - memory.gap_from_us)
             memory.gap_from_us = None
         self._keep_peak(row.value, standing.light_gain - row.over)
         if row.over >= _clear_over(standing):
@@ -374,7 +375,7 @@ class LimitJudge:
         else:
             self._settle(State.HOLD, standing, row)
 
-    def re_judge(self, when_us: int, conditions: ConditionsTable) -> None:
+    def re_judge(self, when_us: int, conditions: ConditionsTable, suspects: Sequence[ConditionsTable] = ()) -> None:
         """Take changed limits at once, with the air of the newest valid observation.
 
         What they tighten acts; a hold ends only by the rules, at an observation.
@@ -385,19 +386,13 @@ class LimitJudge:
             The moment of the change of settings.
         conditions
             One row.
+        suspects
+            The air of the suspect observations since, one row each.
         """
         standing = self.schedule.at(when_us)
         if standing is None:
             return
-        value, over, outside = compared(standing, conditions, 0, 1)
-        row = _Reading(
-            time_us=when_us,
-            valid=True,
-            restart=False,
-            value=float(value[0]),
-            over=float(over[0]),
-            outside=bool(outside[0]),
-        )
+        row = _single(standing, conditions, when_us)
         memory = self.memory
         last_us = memory.last_us
         if memory.held:
@@ -409,6 +404,8 @@ class LimitJudge:
         elif memory.state is not State.NO_DATA or memory.reason == "outside its table":
             self._valid(standing, row)
         memory.last_us = last_us
+        for doubtful in suspects:
+            self._suspect(standing, _single(standing, doubtful, when_us))
 
     def retire(self, when_us: int) -> None:
         """End the open episode: the limit is gone from the settings."""
@@ -543,6 +540,19 @@ def compared(
         over = value - standing.fixed  # type: ignore[operator] # without tables there is a fixed limit
         outside = np.zeros(len(value), dtype=np.bool_)
     return value, over, outside | np.isnan(over)
+
+
+def _single(standing: Standing, conditions: ConditionsTable, when_us: int) -> _Reading:
+    """Return the one row of some conditions as a reading of a moment."""
+    value, over, outside = compared(standing, conditions, 0, 1)
+    return _Reading(
+        time_us=when_us,
+        valid=True,
+        restart=False,
+        value=float(value[0]),
+        over=float(over[0]),
+        outside=bool(outside[0]),
+    )
 
 
 def _limit_shown(standing: Standing, state: State, row: _Reading) -> float:

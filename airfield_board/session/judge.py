@@ -1,6 +1,6 @@
 """Rows in, verdicts out: quality, conditions and rules as one step, for every use of the program alike."""
 
-from collections.abc import Mapping
+from collections.abc import Mapping, Sequence
 from dataclasses import asdict, dataclass, fields, replace
 from zoneinfo import ZoneInfo
 
@@ -86,12 +86,15 @@ class Judge:
         self._settings(profile, fleet)
         self._quality = QualityMemory()
         self.current: CurrentRow | None = None
+        self._suspects: tuple[CurrentRow, ...] = ()
+        """The suspect rows since the current one, which limits that change meanwhile are judged with too."""
         self.stale = False
         kept: dict[LimitKey, LimitMemory] = {}
         if memory is not None:
             self._quality = QualityMemory.from_json(_mapping(memory["quality"]))
             if memory["current"] is not None:
                 self.current = _current_from_json(_mapping(memory["current"]))
+            self._suspects = tuple(_current_from_json(_mapping(row)) for row in _items(memory["suspects"]))
             self.stale = bool(memory["stale"])
             for name, value in _mapping(memory["limits"]).items():
                 kept[_key_from_text(name)] = LimitMemory.from_json(_mapping(value))
@@ -159,15 +162,20 @@ class Judge:
             time_us=time_us,
             valid=valid,
             restart=checked.restart[chosen],
-            stale_at_us=self._stale_moments(time_us, last_valid_us),
+            stale_at_us=self._stale_moments(time_us, valid, last_valid_us),
             conditions=conditions if len(chosen) == len(checked) else _taken(conditions, chosen),
         )
         for limit in self.limits.values():
             limit.judge(rows)
-        newest_valid = np.flatnonzero(valid)
-        if len(newest_valid):
-            self._keep_current(checked, int(chosen[newest_valid[-1]]))
-        self.stale = bool(self.current is not None and time_us[-1] > self.current.time_us + self._stale_after_us)
+        places = np.flatnonzero(valid)
+        if len(places):
+            self.current = _current_row(checked, int(chosen[places[-1]]))
+            self._suspects = ()
+            self.stale = False
+        following = chosen[places[-1] + 1 :] if len(places) else chosen
+        self._suspects += tuple(_current_row(checked, int(row)) for row in following)
+        moment_us = self.stale_at_us
+        self.stale = self.stale or (moment_us is not None and int(time_us[-1]) > moment_us)
 
     def _last_valid(self, time_us: NDArray[np.int64], valid: NDArray[np.bool_]) -> NDArray[np.int64]:
         """Time of the newest valid row before each row, 0 where there is none."""
@@ -176,28 +184,19 @@ class Judge:
         before[1:] = np.where(valid[:-1], time_us[:-1], 0)
         return np.maximum.accumulate(before)
 
-    def _stale_moments(self, time_us: NDArray[np.int64], last_valid_us: NDArray[np.int64]) -> NDArray[np.int64]:
+    def _stale_moments(
+        self, time_us: NDArray[np.int64], valid: NDArray[np.bool_], last_valid_us: NDArray[np.int64]
+    ) -> NDArray[np.int64]:
+        """Return the moment of staleness that passes before each row, 0 where none does: once after each valid row."""
         moment_us = last_valid_us + self._stale_after_us
         passed = (last_valid_us != 0) & (time_us > moment_us)
+        # Counted, not told by the time: a correction has the time of the row that it corrects.
+        valid_before: NDArray[np.int64] = np.cumsum(valid) - valid
         first = passed.copy()
-        first[1:] &= ~(passed[:-1] & (last_valid_us[1:] == last_valid_us[:-1]))
+        first[1:] &= ~(passed[:-1] & (valid_before[1:] == valid_before[:-1]))
         if self.stale:
-            first &= last_valid_us != last_valid_us[0]
+            first &= valid_before > 0
         return np.where(first, moment_us, 0)
-
-    def _keep_current(self, checked: CheckedTable, row: int) -> None:
-        rows = checked.rows
-        self.current = CurrentRow(
-            time_us=int(rows.time_us[row]),
-            altimeter_hpa=float(rows.altimeter_hpa[row]),
-            temperature_c=float(rows.temperature_c[row]),
-            dewpoint_c=float(rows.dewpoint_c[row]),
-            dewpoint_used_c=float(checked.dewpoint_used_c[row]),
-            dewpoint_use=DewpointUse(int(checked.dewpoint_use[row])),
-            temperature_resolution_c=float(rows.temperature_resolution_c[row]),
-            dewpoint_resolution_c=float(rows.dewpoint_resolution_c[row]),
-            initials=rows.initials,
-        )
 
     def _pass_time(self, checked: CheckedTable, now_us: int, pass_to_us: int | None) -> None:
         """Let time pass with every row, used or not, but for times in the future; then up to the clock."""
@@ -261,8 +260,9 @@ class Judge:
                 limit.go_stale(when_us)
         if not self.stale:
             conditions = self.current_conditions()
+            suspects = [self._conditions_of_row(row) for row in self._suspects]
             for limit in self.limits.values():
-                limit.re_judge(when_us, conditions)
+                limit.re_judge(when_us, conditions, suspects)
 
     def current_conditions(self) -> ConditionsTable:
         """Return the air of the current observation, one row, by the profile's present elevation and instruments.
@@ -272,9 +272,11 @@ class Judge:
         ValueError
             Without a current observation.
         """
-        row = self.current
-        if row is None:
+        if self.current is None:
             raise ValueError("no current observation")
+        return self._conditions_of_row(self.current)
+
+    def _conditions_of_row(self, row: CurrentRow) -> ConditionsTable:
         return conditions_of(
             altimeter_hpa=np.array([row.altimeter_hpa]),
             temperature_c=np.array([row.temperature_c]),
@@ -295,9 +297,25 @@ class Judge:
         return {
             "quality": self._quality.to_json(),
             "current": None if self.current is None else _current_to_json(self.current),
+            "suspects": [_current_to_json(row) for row in self._suspects],
             "stale": self.stale,
             "limits": {_text_from_key(key): limit.memory.to_json() for key, limit in self.limits.items()},
         }
+
+
+def _current_row(checked: CheckedTable, row: int) -> CurrentRow:
+    rows = checked.rows
+    return CurrentRow(
+        time_us=int(rows.time_us[row]),
+        altimeter_hpa=float(rows.altimeter_hpa[row]),
+        temperature_c=float(rows.temperature_c[row]),
+        dewpoint_c=float(rows.dewpoint_c[row]),
+        dewpoint_used_c=float(checked.dewpoint_used_c[row]),
+        dewpoint_use=DewpointUse(int(checked.dewpoint_use[row])),
+        temperature_resolution_c=float(rows.temperature_resolution_c[row]),
+        dewpoint_resolution_c=float(rows.dewpoint_resolution_c[row]),
+        initials=rows.initials,
+    )
 
 
 def _taken(conditions: ConditionsTable, rows: NDArray[np.int64]) -> ConditionsTable:
@@ -308,6 +326,12 @@ def _taken(conditions: ConditionsTable, rows: NDArray[np.int64]) -> ConditionsTa
 def _mapping(value: object) -> Mapping[str, object]:
     if not isinstance(value, Mapping):
         raise ValueError("not a mapping")  # noqa: TRY004 # one kind of error for a memory that cannot be used
+    return value
+
+
+def _items(value: object) -> Sequence[object]:
+    if not isinstance(value, list):
+        raise ValueError("not a list")  # noqa: TRY004 # as above
     return value
 
 
