@@ -22,16 +22,19 @@ LIMIT_KEYS: dict[str, tuple[Quantity, Unit]] = {
 }
 """Quantity and unit of each key that is a limit."""
 
-_BAND_GROUPS = (
+BAND_GROUPS = (
     ("near_band_ft", "near_band_m"),
     ("near_band_c", "near_band_f"),
     ("deadband_ft", "deadband_m"),
     ("deadband_c", "deadband_f"),
 )
-_LIMIT_GROUPS = tuple(
+"""Keys of one band each."""
+LIMIT_GROUPS = tuple(
     tuple(key for key, (quantity, _) in LIMIT_KEYS.items() if quantity is wanted) for wanted in Quantity
 )
-_BY_WEIGHT = ("by_weight_lb", "by_weight_kg")
+"""Keys of one quantity each."""
+BY_WEIGHT_KEYS = ("by_weight_lb", "by_weight_kg")
+"""Keys of tables by weight."""
 _BY_PRESSURE_ALTITUDE = "by_pressure_altitude_ft"
 
 
@@ -41,7 +44,7 @@ def faults_between_keys(document: Document) -> Iterator[Fault]:
         return
     defaults = section_under(document.root, "defaults")
     if defaults is not None:
-        yield from given_twice(document, defaults, *_BAND_GROUPS)
+        yield from given_twice(document, defaults, *BAND_GROUPS)
     first_lines: dict[str, int] = {}
     for aircraft in _sections(document.root, "aircraft"):
         entry, identifier = aircraft.entry("id"), text_under(aircraft, "id")
@@ -109,7 +112,7 @@ def _faults_among_entries(document: Document, operation: Mapping, alike: dict[st
 
 
 def _operation_faults(document: Document, operation: Mapping) -> Iterator[Fault]:
-    yield from given_twice(document, operation, *_BAND_GROUPS, *_LIMIT_GROUPS)
+    yield from given_twice(document, operation, *BAND_GROUPS, *LIMIT_GROUPS)
     # A misspelt limit is reported as such; that it is missing as well says nothing more.
     if not any(entry.key.casefold().startswith("max") for entry in operation.entries):
         yield document.fault(
@@ -128,10 +131,10 @@ def _operation_faults(document: Document, operation: Mapping) -> Iterator[Fault]
 
 
 def _table_faults(document: Document, limit: Entry, table: Mapping) -> Iterator[Fault]:
-    kinds = [entry for entry in table.entries if entry.key in (*_BY_WEIGHT, _BY_PRESSURE_ALTITUDE)]
+    kinds = [entry for entry in table.entries if entry.key in (*BY_WEIGHT_KEYS, _BY_PRESSURE_ALTITUDE)]
     if not table.entries:
         yield document.fault(limit.line, f"{limit.key} has neither a number nor a table; expected: one of them")
-    yield from given_twice(document, table, _BY_WEIGHT)
+    yield from given_twice(document, table, BY_WEIGHT_KEYS)
     by_altitude = next((entry for entry in kinds if entry.key == _BY_PRESSURE_ALTITUDE), None)
     if by_altitude is not None and len(kinds) > 1:
         yield document.fault(by_altitude.line, f"{limit.key} has two tables; expected: one of them")
@@ -141,7 +144,7 @@ def _table_faults(document: Document, limit: Entry, table: Mapping) -> Iterator[
 
 
 def _point_faults(document: Document, table: Entry, points: Mapping) -> Iterator[Fault]:
-    by_weight = table.key in _BY_WEIGHT
+    by_weight = table.key in BY_WEIGHT_KEYS
     what = "weight" if by_weight else "pressure altitude"
     least, greatest = (0.0, HEAVIEST[table.key]) if by_weight else PRESSURE_ALTITUDES_FT
     places: dict[float, Entry] = {}
