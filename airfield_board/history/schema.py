@@ -7,6 +7,8 @@ journal's text too; `verify` compares the two. Sizes: some 250 bytes an observat
 import sqlite3
 from collections.abc import Callable, Mapping, Sequence
 from dataclasses import dataclass
+from functools import cache
+from types import MappingProxyType
 from typing import TypeAlias
 
 from airfield_board.history.errors import NotAHistory
@@ -147,12 +149,13 @@ def objects_of(connection: sqlite3.Connection) -> dict[str, str]:
     return {str(name): str(sql) for name, sql in found}
 
 
-def expected_objects(version: int) -> dict[str, str]:
+@cache
+def expected_objects(version: int) -> Mapping[str, str]:
     """Return what `objects_of` gives for an untouched history of a schema version."""
     connection = sqlite3.connect(":memory:", isolation_level=None)
     try:
         migrate(connection, MIGRATIONS[:version])
-        return objects_of(connection)
+        return MappingProxyType(objects_of(connection))
     finally:
         connection.close()
 

@@ -166,6 +166,16 @@ def test_without_the_second_place_nothing_is_recorded(tmp_path: Path, monkeypatc
     assert verify(tmp_path / "history.db").ok
 
 
+def test_a_start_that_cannot_be_recorded_leaves_the_lock_free(tmp_path: Path) -> None:
+    (tmp_path / "history.db.head.new").mkdir()
+    with pytest.raises(NotRecorded, match=r"history\.db"):
+        open_new(tmp_path)
+    (tmp_path / "history.db.head.new").rmdir()
+    history = open_new(tmp_path)
+    assert history.count == 1
+    history.close()
+
+
 @pytest.mark.parametrize("step", ["announced", "committed"])
 def test_ended_between_announcement_and_confirmation_nothing_looks_cut_off(
     tmp_path: Path, monkeypatch: pytest.MonkeyPatch, step: str
