@@ -43,6 +43,7 @@ _KEYS = (
     ("Shift+A", "acknowledge all"),
     ("P", "read the source now"),
     ("E", "type in an observation"),
+    ("M", "messages, and the rows that were not used"),
     ("F11", "full screen"),
 )
 
