@@ -4,6 +4,7 @@ from bisect import bisect_right
 from collections.abc import Sequence
 from dataclasses import dataclass
 from datetime import date, timedelta
+from typing import Literal, TypeAlias
 from zoneinfo import ZoneInfo
 
 import numpy as np
@@ -22,6 +23,8 @@ from airfield_board.configuration.model import (
 )
 from airfield_board.limits.kinds import band_in_unit, limit_in_unit
 from airfield_board.units import MINUTE_US, lb_from_kg
+
+WeightUnit: TypeAlias = Literal["lb", "kg"]
 
 EQUAL = 1e-6
 """A difference smaller than this, in the limit's unit, counts as equal."""
@@ -100,7 +103,7 @@ class Standing:
         limit[~np.isfinite(limit)] = np.nan
         return limit, outside
 
-    def greatest_weight(self, value: float) -> tuple[float, float, str] | None:
+    def greatest_weight(self, value: float) -> tuple[float, float, WeightUnit] | None:
         """Return the greatest weight at which a value is within the limit.
 
         Parameters
@@ -114,7 +117,7 @@ class Standing:
             Weight, the greatest weight of its table, and their unit; None for a limit without weights, or where no
             weight will do.
         """
-        found: tuple[float, float, str] | None = None
+        found: tuple[float, float, WeightUnit] | None = None
         for table in self.weights:
             if value - table.limits[0] >= EQUAL:
                 return None

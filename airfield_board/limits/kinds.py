@@ -2,7 +2,6 @@
 
 from collections.abc import Mapping
 from dataclasses import dataclass
-from math import isfinite
 from typing import Protocol
 
 import numpy as np
@@ -46,17 +45,13 @@ class Kind(Protocol):
     def values(self, conditions: ConditionsTable, unit: Unit) -> tuple[Array, Array]:
         """Value and expanded uncertainty in the limit's unit, each of shape (n,)."""
 
-    def hold_temperature_c(self, limit: float, unit: Unit, air: Air) -> float | None:
-        """Temperature above which the limit would be exceeded; None where temperature does not matter."""
+    def hold_temperature_c(self, limits: Array, unit: Unit, air: Air) -> Array:
+        """Temperatures above which limits would be exceeded, shape (n,); NaN where temperature does not matter."""
 
 
-def axis_ft(kind: Kind, limit: float, unit: Unit, air: Air) -> float | None:
-    """Return the density altitude at which a limit is reached in the present air; None where there is none."""
-    temperature_c = kind.hold_temperature_c(limit, unit, air)
-    if temperature_c is None:
-        return None
-    altitude_ft = density_altitude_at_temperature(temperature_c, air.altimeter_hpa, air.elevation_m, air.dewpoint_c)
-    return altitude_ft if isfinite(altitude_ft) else None
+def axis_ft(hold_temperature_c: Array, air: Air) -> Array:
+    """Return the density altitudes at which limits are reached in the present air, from their hold temperatures."""
+    return density_altitude_at_temperature(hold_temperature_c, air.altimeter_hpa, air.elevation_m, air.dewpoint_c)
 
 
 def _altitudes(value_ft: Array, uncertainty_ft: Array, unit: Unit) -> tuple[Array, Array]:
@@ -72,11 +67,11 @@ class DensityAltitudeKind:
         """Value and expanded uncertainty [ft or m], each of shape (n,)."""
         return _altitudes(conditions.density_altitude_ft, conditions.uncertainty_ft, unit)
 
-    def hold_temperature_c(self, limit: float, unit: Unit, air: Air) -> float | None:
-        """Temperature above which the limit would be exceeded [°C]."""
-        limit_ft = ft_from_m(limit) if unit == "m" else limit
+    def hold_temperature_c(self, limits: Array, unit: Unit, air: Air) -> Array:
+        """Temperatures above which limits would be exceeded [°C], shape (n,)."""
+        limits_ft = ft_from_m(limits) if unit == "m" else limits
         return hold_temperature_for_density_altitude(
-            limit_ft, air.altimeter_hpa, air.elevation_m, air.dewpoint_c, air.guard
+            limits_ft, air.altimeter_hpa, air.elevation_m, air.dewpoint_c, air.guard
         )
 
 
@@ -87,10 +82,10 @@ class PressureAltitudeKind:
         """Value and expanded uncertainty [ft or m], each of shape (n,)."""
         return _altitudes(conditions.pressure_altitude_ft, conditions.pressure_altitude_uncertainty_ft, unit)
 
-    def hold_temperature_c(self, limit: float, unit: Unit, air: Air) -> float | None:
-        """Return None."""
-        del limit, unit, air
-        return None
+    def hold_temperature_c(self, limits: Array, unit: Unit, air: Air) -> Array:
+        """Return NaN, shape (n,)."""
+        del unit, air
+        return np.full(len(limits), np.nan)
 
 
 class TemperatureKind:
@@ -102,9 +97,9 @@ class TemperatureKind:
             return f_from_c(conditions.temperature_c), conditions.temperature_uncertainty_c * 1.8
         return conditions.temperature_c, conditions.temperature_uncertainty_c
 
-    def hold_temperature_c(self, limit: float, unit: Unit, air: Air) -> float | None:
-        """Temperature above which the limit would be exceeded [°C]."""
-        return hold_temperature_for_temperature(c_from_f(limit) if unit == "f" else limit, air.guard)
+    def hold_temperature_c(self, limits: Array, unit: Unit, air: Air) -> Array:
+        """Temperatures above which limits would be exceeded [°C], shape (n,)."""
+        return hold_temperature_for_temperature(c_from_f(limits) if unit == "f" else limits, air.guard)
 
 
 class IsaDeviationKind:
@@ -115,10 +110,10 @@ class IsaDeviationKind:
         scale = 1.8 if unit == "f" else 1.0
         return conditions.isa_deviation_c * scale, conditions.isa_deviation_uncertainty_c * scale
 
-    def hold_temperature_c(self, limit: float, unit: Unit, air: Air) -> float | None:
-        """Temperature above which the limit would be exceeded [°C]."""
-        limit_c = limit / 1.8 if unit == "f" else limit
-        return hold_temperature_for_isa_deviation(limit_c, air.altimeter_hpa, air.elevation_m, air.guard)
+    def hold_temperature_c(self, limits: Array, unit: Unit, air: Air) -> Array:
+        """Temperatures above which limits would be exceeded [°C], shape (n,)."""
+        limits_c = limits / 1.8 if unit == "f" else limits
+        return hold_temperature_for_isa_deviation(limits_c, air.altimeter_hpa, air.elevation_m, air.guard)
 
 
 KINDS: Mapping[Quantity, Kind] = {

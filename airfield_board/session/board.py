@@ -1,7 +1,6 @@
 """From the judge's memory to what a page shows; nothing is decided here."""
 
-from collections.abc import Callable, Sequence
-from dataclasses import dataclass
+from collections.abc import Sequence
 from datetime import datetime, timedelta
 from zoneinfo import ZoneInfo
 
@@ -9,21 +8,14 @@ import numpy as np
 
 from airfield_board.clock import local_day, start_of_local_day, time_from_us, us_from_time
 from airfield_board.configuration.model import Aircraft, Operation, Quantity
-from airfield_board.limits.in_force import LimitKey, Standing, weight_in_lb
-from airfield_board.limits.kinds import KINDS, Air, axis_ft
-from airfield_board.limits.rules import LimitJudge, compared
+from airfield_board.limits.in_force import LimitKey
 from airfield_board.limits.states import State, worst
-from airfield_board.observations.conditions import (
-    ConditionsTable,
-    StandardUncertainties,
-    standard_uncertainties,
-)
+from airfield_board.observations.conditions import standard_uncertainties
 from airfield_board.observations.quality_judgement import FUTURE_US
 from airfield_board.session.board_state import (
     AircraftLine,
     AirfieldLine,
     BoardState,
-    Clearing,
     Conditions,
     CurrentObservation,
     Freshness,
@@ -33,33 +25,12 @@ from airfield_board.session.board_state import (
     Span,
 )
 from airfield_board.session.day_record import DayRecord
-from airfield_board.session.judge import CurrentRow, Judge
-from airfield_board.units import HOUR_US, MINUTE_US, ft_from_m
+from airfield_board.session.judge import Judge
+from airfield_board.session.limit_lines import LimitLines, TrustedAir, known
+from airfield_board.units import MINUTE_US, ft_from_m
 
 _AGEING_INTERVALS = 2.0
 _SECTIONS = {State.GO: 0, State.NEAR: 0, State.REDUCED: 1, State.HOLD: 1, State.NO_DATA: 2}
-
-
-@dataclass(frozen=True, slots=True, kw_only=True)
-class _Air:
-    """The current observation's air, and whether it can be trusted now."""
-
-    row: CurrentRow
-    conditions: ConditionsTable
-    trusted: bool
-    rate_ft_per_h: float | None
-    stale_at_us: int
-    elevation_m: float
-    uncertainties: StandardUncertainties
-
-    def of(self, standing: Standing) -> Air:
-        """Return what a hold temperature of a limit is reckoned with."""
-        return Air(
-            altimeter_hpa=self.row.altimeter_hpa,
-            elevation_m=self.elevation_m,
-            dewpoint_c=_known(self.row.dewpoint_used_c),
-            guard=self.uncertainties if standing.guarded else None,
-        )
 
 
 def board_state(judge: Judge, record: DayRecord, mode: Mode, now: datetime) -> BoardState:
@@ -90,7 +61,8 @@ def board_state(judge: Judge, record: DayRecord, mode: Mode, now: datetime) -> B
     def spans(key: LimitKey) -> tuple[Span, ...]:
         return record.spans(key, day_start_us, day_end_us)
 
-    aircraft = tuple(_aircraft_line(each, judge, air, now, spans) for each in judge.fleet.aircraft)
+    lines = LimitLines(judge, air, us_from_time(now), spans)
+    aircraft = tuple(_aircraft_line(each, lines) for each in judge.fleet.aircraft)
     rows = [operation for each in aircraft for operation in each.operations]
     return BoardState(
         mode=mode,
@@ -118,11 +90,11 @@ def board_state(judge: Judge, record: DayRecord, mode: Mode, now: datetime) -> B
     )
 
 
-def _air(judge: Judge, record: DayRecord, now: datetime) -> _Air | None:
+def _air(judge: Judge, record: DayRecord, now: datetime) -> TrustedAir | None:
     row, stale_at_us = judge.current, judge.stale_at_us
     if row is None or stale_at_us is None:
         return None
-    return _Air(
+    return TrustedAir(
         row=row,
         conditions=judge.current_conditions(),
         # A clock that stands before the newest observation knows nothing of its age.
@@ -136,7 +108,7 @@ def _air(judge: Judge, record: DayRecord, now: datetime) -> _Air | None:
     )
 
 
-def _observation(judge: Judge, air: _Air, now: datetime) -> CurrentObservation:
+def _observation(judge: Judge, air: TrustedAir, now: datetime) -> CurrentObservation:
     settings = judge.profile.observations
     row = air.row
     age_min = (us_from_time(now) - row.time_us) / MINUTE_US
@@ -152,8 +124,8 @@ def _observation(judge: Judge, air: _Air, now: datetime) -> CurrentObservation:
         freshness=freshness,
         altimeter_setting_hpa=row.altimeter_hpa,
         temperature_c=row.temperature_c,
-        dewpoint_c=_known(row.dewpoint_c),
-        dewpoint_used_c=_known(row.dewpoint_used_c),
+        dewpoint_c=known(row.dewpoint_c),
+        dewpoint_used_c=known(row.dewpoint_used_c),
         dewpoint_use=row.dewpoint_use,
         source=source,
         note=settings.note,
@@ -161,11 +133,7 @@ def _observation(judge: Judge, air: _Air, now: datetime) -> CurrentObservation:
     )
 
 
-def _known(value: float) -> float | None:
-    return None if np.isnan(value) else value
-
-
-def _conditions(air: _Air, time_us: np.ndarray, density_altitude_ft: np.ndarray) -> Conditions:
+def _conditions(air: TrustedAir, time_us: np.ndarray, density_altitude_ft: np.ndarray) -> Conditions:
     now = air.conditions
     here_ft = float(now.density_altitude_ft[0])
     peak_ft, peak_us = here_ft, air.row.time_us
@@ -186,10 +154,8 @@ def _conditions(air: _Air, time_us: np.ndarray, density_altitude_ft: np.ndarray)
     )
 
 
-def _aircraft_line(
-    aircraft: Aircraft, judge: Judge, air: _Air | None, now: datetime, spans: Callable[[LimitKey], tuple[Span, ...]]
-) -> AircraftLine:
-    operations = tuple(_operation_line(aircraft, each, judge, air, now, spans) for each in aircraft.operations)
+def _aircraft_line(aircraft: Aircraft, lines: LimitLines) -> AircraftLine:
+    operations = tuple(_operation_line(aircraft, operation, lines) for operation in aircraft.operations)
     return AircraftLine(
         id=aircraft.id,
         name=aircraft.name,
@@ -199,29 +165,16 @@ def _aircraft_line(
     )
 
 
-def _operation_line(
-    aircraft: Aircraft,
-    operation: Operation,
-    judge: Judge,
-    air: _Air | None,
-    now: datetime,
-    spans: Callable[[LimitKey], tuple[Span, ...]],
-) -> OperationLine:
-    lines: list[LimitLine] = []
-    for quantity in dict.fromkeys(limit.quantity for limit in operation.limits):
-        key = LimitKey(aircraft=aircraft.id, operation=operation.name, quantity=quantity)
-        limit = judge.limits[key]
-        standing = limit.schedule.at(us_from_time(now))
-        if standing is not None:
-            lines.append(_limit_line(limit, standing, air, spans(key)))
+def _operation_line(aircraft: Aircraft, operation: Operation, lines: LimitLines) -> OperationLine:
+    limits = lines.of(aircraft, operation)
     return OperationLine(
         aircraft_id=aircraft.id,
         aircraft_name=aircraft.name,
         group=aircraft.group,
         name=operation.name,
-        state=worst(line.state for line in lines),
-        limits=tuple(lines),
-        shown=min(lines, key=_shown_first, default=None),
+        state=worst(limit.state for limit in limits),
+        limits=limits,
+        shown=min(limits, key=_shown_first, default=None),
     )
 
 
@@ -230,109 +183,7 @@ def _shown_first(line: LimitLine) -> tuple[int, float]:
     return -line.state.severity, np.inf if temperature is None else temperature
 
 
-def _limit_line(limit: LimitJudge, standing: Standing, air: _Air | None, spans: tuple[Span, ...]) -> LimitLine:
-    memory = limit.memory
-    entry = standing.governing
-    line = LimitLine(
-        quantity=standing.quantity,
-        unit=standing.unit,
-        state=State.NO_DATA,
-        limit=standing.fixed,
-        value=None,
-        margin=None,
-        since=time_from_us(memory.since_us) if memory.state is not None else None,
-        was=memory.was if memory.state is State.NO_DATA else memory.state,
-        was_at=_was_at(limit),
-        reason=memory.reason or "no observation yet",
-        near_band=standing.near_band,
-        spans=spans,
-        guarded=standing.guarded,
-        basis=entry.basis,
-        source=entry.source,
-        notice=entry.notice,
-        valid_until="" if entry.valid_until is None else entry.valid_until.isoformat(),
-        full_weight=standing.weights[0].weights[-1] if standing.weights else None,
-        weight_unit=standing.weights[0].weight_unit if standing.weights else "",
-    )
-    if air is None:
-        return line
-    value, over = (float(column[0]) for column in compared(standing, air.conditions, 0, 1)[:2])
-    known = _fields_of(line)
-    if not np.isnan(over):
-        known["limit"] = standing.fixed if not standing.tables and standing.fixed is not None else value - over
-        known["axis_ft"] = axis_ft(KINDS[standing.quantity], value - over, standing.unit, air.of(standing))
-    if not air.trusted or memory.state is None or memory.state is State.NO_DATA:
-        if not air.trusted:
-            known["reason"] = "no current observation"
-        return LimitLine(**known)  # type: ignore[arg-type] # fields of a line, each by its name
-    return LimitLine(**{**known, **_judged_fields(limit, standing, air, value, over)})  # type: ignore[arg-type]
-
-
-def _was_at(limit: LimitJudge) -> datetime | None:
-    memory = limit.memory
-    at_us = memory.was_us if memory.state is State.NO_DATA else memory.last_us
-    return time_from_us(at_us) if at_us else None
-
-
-def _fields_of(line: LimitLine) -> dict[str, object]:
-    return {name: getattr(line, name) for name in LimitLine.__slots__}
-
-
-def _judged_fields(limit: LimitJudge, standing: Standing, air: _Air, value: float, over: float) -> dict[str, object]:
-    memory = limit.memory
-    state = memory.state
-    held = state is State.HOLD
-    full = value - over if standing.tables or standing.fixed is None else standing.fixed
-    shown = full + standing.light_gain if held else full
-    margin = shown - value
-    weight = standing.greatest_weight(value) if not held else None
-    found: dict[str, object] = {
-        "state": state,
-        "limit": shown,
-        "value": value,
-        "margin": margin,
-        "reason": "",
-        "was": None,
-        "was_at": None,
-        "axis_ft": axis_ft(KINDS[standing.quantity], shown, standing.unit, air.of(standing)),
-        "hold_temperature_c": _hold_temperature_c(standing, air, shown),
-        "hold_above_c": _hold_temperature_c(
-            standing, air, full + standing.light_gain if state is State.REDUCED else shown
-        ),
-        "gone_by": _gone_by(standing, air, full - value),
-    }
-    if weight is not None:
-        found["greatest_weight"], found["full_weight"], found["weight_unit"] = weight
-        found["greatest_weight_lb"] = weight_in_lb(weight[0], weight[2])
-    if held:
-        earliest_us = limit.earliest_end_us(standing)
-        found["clearing"] = Clearing(
-            needs=shown - standing.deadband,
-            for_min=limit.needed_delay_us(standing) / MINUTE_US,
-            since=None if memory.run_us is None else time_from_us(memory.run_us),
-            earliest=None if earliest_us is None else time_from_us(earliest_us),
-        )
-    return found
-
-
-def _hold_temperature_c(standing: Standing, air: _Air, limit: float) -> float | None:
-    """Temperature above which the compared value would exceed a limit, all else as observed."""
-    temperature_c = KINDS[standing.quantity].hold_temperature_c(limit, standing.unit, air.of(standing))
-    return None if temperature_c is None else _known(temperature_c)
-
-
-def _gone_by(standing: Standing, air: _Air, margin: float) -> datetime | None:
-    """When the present rate will have used up the margin, where that is before the reading goes stale."""
-    if standing.quantity is not Quantity.DENSITY_ALTITUDE or air.rate_ft_per_h is None or air.rate_ft_per_h <= 0:
-        return None
-    margin_ft = margin if standing.unit == "ft" else ft_from_m(margin)
-    if margin_ft < 0:
-        return None
-    at_us = air.row.time_us + margin_ft / air.rate_ft_per_h * HOUR_US
-    return time_from_us(round(at_us)) if at_us < air.stale_at_us else None
-
-
-def _in_board_order(rows: Sequence[OperationLine], air: _Air | None) -> list[OperationLine]:
+def _in_board_order(rows: Sequence[OperationLine], air: TrustedAir | None) -> list[OperationLine]:
     """Return the rows as they stand on the board.
 
     Above the level those that may go, by the density altitude at which that ends, the highest first; below it those
@@ -349,7 +200,7 @@ def _in_board_order(rows: Sequence[OperationLine], air: _Air | None) -> list[Ope
     return sorted(rows, key=place)
 
 
-def _axis_of(row: OperationLine, air: _Air | None) -> float:
+def _axis_of(row: OperationLine, air: TrustedAir | None) -> float:
     shown = row.shown
     if shown is None:
         return -np.inf
