@@ -93,8 +93,8 @@ _HEAD_KEYS = ("time", "pos", "format", "verdict")
 _VALUE_KEYS = ("altimeter_hpa", "temperature_c", "dewpoint_c")
 _TAIL_KEYS = ("da_ft", "u_ft", "use", "raw")
 _BY_POSITION = frozenset((*_HEAD_KEYS, *_TAIL_KEYS, "values"))
-_PLACES = len(_HEAD_KEYS) + len(_VALUE_KEYS) + len(_TAIL_KEYS)
-_VALUES_END = len(_HEAD_KEYS) + len(_VALUE_KEYS)
+_KEYS = (*_HEAD_KEYS, *_VALUE_KEYS, *_TAIL_KEYS)
+_PLACES = len(_KEYS)
 
 
 def text_from_body(kind: RecordKind, at_us: int, body: Mapping[str, Json]) -> str:
@@ -144,7 +144,8 @@ def body_from_text(kind: RecordKind, at_us: int, text: str | bytes) -> dict[str,
     ValueError
         Where the text is not of that form.
     """
-    found = json.loads(text)
+    # Given bytes, json would guess at the encoding first, which takes as long as half of the reading.
+    found = json.loads(text.decode() if isinstance(text, bytes) else text)
     if kind is not RecordKind.OBSERVATION:
         if not isinstance(found, dict):
             raise ValueError("the record's text is no JSON object")
@@ -154,18 +155,11 @@ def body_from_text(kind: RecordKind, at_us: int, text: str | bytes) -> dict[str,
     if not isinstance(found, list) or len(found) - _PLACES not in {0, 1} or not isinstance(more_values, dict):
         raise ValueError("the record's text is no observation")
     body: dict[str, Json] = {"read": at_us}
-    body.update(
-        (key, value) for key, value in zip(_HEAD_KEYS, found[: len(_HEAD_KEYS)], strict=True) if value is not None
-    )
-    body.update(
-        (key, value) for key, value in zip(_TAIL_KEYS, found[_VALUES_END:_PLACES], strict=True) if value is not None
-    )
+    values: dict[str, Json] = {}
+    for key, value in zip(_KEYS, found, strict=False):  # what lies behind the list comes below
+        if value is not None:
+            (values if key in _VALUE_KEYS else body)[key] = value
     body.update(more)
-    values: dict[str, Json] = {
-        key: value
-        for key, value in zip(_VALUE_KEYS, found[len(_HEAD_KEYS) : _VALUES_END], strict=True)
-        if value is not None
-    }
     values.update(more_values)
     body["values"] = values
     return body
