@@ -9,8 +9,8 @@ from zoneinfo import ZoneInfo
 import numpy as np
 
 from airfield_board.clock import local_day, start_of_local_day, time_from_us
-from airfield_board.limits.states import State
 from airfield_board.session.board_state import BoardState
+from airfield_board.units import ft_from_m
 
 STEP_FT = 500.0
 REACH_FT = 2000.0
@@ -67,7 +67,11 @@ class HourMark:
 
 
 def altitude_range(
-    limits_ft: Sequence[float], air_ft: Sequence[float], held_ft: Sequence[float], step_ft: float = STEP_FT
+    limits_ft: Sequence[float],
+    air_ft: Sequence[float],
+    held_ft: Sequence[float],
+    field_ft: float = 0.0,
+    step_ft: float = STEP_FT,
 ) -> tuple[float, float]:
     """Return the ends of the altitude axis, whole steps.
 
@@ -79,12 +83,15 @@ def altitude_range(
         What the air reached today, uncertainty included: always shown.
     held_ft
         Limits that were on hold today: shown where they are within `REACH_FT` of the rest.
+    field_ft
+        The field's elevation, from which the axis rises where there is nothing else.
     """
     wanted = [value for value in air_ft if math.isfinite(value)]
     if limits_ft:
         wanted += [float(part) for part in np.percentile(np.asarray(limits_ft), [10.0, 90.0])]
     if not wanted:
-        return 0.0, 8 * step_ft
+        bottom = math.floor(field_ft / step_ft) * step_ft
+        return bottom, bottom + 8 * step_ft
     low, high = min(wanted), max(wanted)
     low = min([low, *(held for held in held_ft if held >= low - REACH_FT)])
     high = max([high, *(held for held in held_ft if held <= high + REACH_FT)])
@@ -109,7 +116,7 @@ def board_range(state: BoardState) -> tuple[float, float]:
         air_ft.append(state.conditions.density_altitude_ft)
     held_ft = [line.axis_ft for line in shown if line.axis_ft is not None and line.spans]
     limits_ft = [line.axis_ft for line in shown if line.axis_ft is not None]
-    return altitude_range(limits_ft, air_ft, held_ft)
+    return altitude_range(limits_ft, air_ft, held_ft, ft_from_m(state.airfield.elevation_m))
 
 
 def day_bounds(state: BoardState, now: datetime, zone: ZoneInfo) -> tuple[datetime, datetime]:
@@ -158,8 +165,3 @@ def _local_hour(first: datetime, last: datetime, hour: int, zone: ZoneInfo) -> d
     while when < last and when.astimezone(zone).hour < hour:
         when += _QUARTER
     return when
-
-
-def held_now(state: State) -> bool:
-    """Whether a row of this state stands below the level of the air."""
-    return state in (State.HOLD, State.REDUCED)

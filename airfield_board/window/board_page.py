@@ -4,7 +4,7 @@ import math
 from datetime import date, timedelta
 from typing import TYPE_CHECKING
 
-from PySide6.QtCore import QRectF, Qt, QTimer, Signal
+from PySide6.QtCore import QRectF, QTimer, Signal
 from PySide6.QtGui import QColor, QPainter, QResizeEvent, QShowEvent
 from PySide6.QtWidgets import QWidget
 
@@ -14,13 +14,14 @@ from airfield_board.units import ft_from_m
 from airfield_board.window import formatting
 from airfield_board.window.axes import AltitudeAxis, TimeAxis, board_range, day_bounds, hour_marks
 from airfield_board.window.canvas import Canvas
+from airfield_board.window.day_axis import paint_hours, paint_now
 from airfield_board.window.day_scene import DayScene, Shelf
-from airfield_board.window.fonts import MEDIUM, SEMIBOLD
+from airfield_board.window.fonts import MEDIUM
 from airfield_board.window.lettering import Lettering, baseline_for_middle, width_of
 from airfield_board.window.no_data_card import NoDataCard
 from airfield_board.window.palette import Palette
 from airfield_board.window.reading import View
-from airfield_board.window.row_panel import GUTTER_PX, Headings, RowPanel, columns_for
+from airfield_board.window.row_panel import GUTTER_PX, Headings, RowPanel
 from airfield_board.window.row_words import tip_of, words_of
 
 if TYPE_CHECKING:
@@ -80,7 +81,7 @@ class BoardPage(Canvas):
         degrees = formatting.UNIT_WORDS[view.state.airfield.temperature_unit]
         headings = Headings(margin=f"Margin, {unit}", last=f"Hold above {degrees}")
         tips = [tip_of(row, view) for row in view.rows]
-        self.rows.show_rows(words, tips, headings, level=level, window_px=self.width() + _MARGINS_PX)
+        self.rows.show_rows(words, tips, headings, level=level)
         self.card.show_view(view)
         self._arrange()
 
@@ -111,7 +112,7 @@ class BoardPage(Canvas):
         view = self._view
         if view is None:
             return
-        columns = columns_for(len(view.rows), self.width() + _MARGINS_PX)
+        columns = self.rows.choose_columns(self.height(), self.width() + _MARGINS_PX)
         rows_width = int(GUTTER_PX + columns.width)
         plot_width = max(self.width() - AXIS_PX - rows_width, 120)
         self.rows.setGeometry(AXIS_PX + plot_width, 0, self.width() - AXIS_PX - plot_width, self.height())
@@ -180,10 +181,15 @@ class BoardPage(Canvas):
         if view is None or scene is None:
             return
         unit = view.state.airfield.altitude_unit
-        letters.text((14, 23), f"Density altitude, {unit}", self.colours.soft_ink, 13, MEDIUM)
+        title = f"Density altitude, {unit}"
+        letters.text((14, 23), title, self.colours.soft_ink, 13, MEDIUM)
         self._paint_altitudes(painter, letters, scene, unit)
-        self._paint_hours(painter, letters, scene, view)
-        self._paint_now(painter, letters, scene, view)
+        bottom = PLOT_TOP_PX + scene.altitude.bottom_px
+        right = self.rows.x() + 24.0
+        paint_hours(painter, letters, self.colours, scene.time, scene.hours, view, (AXIS_PX, bottom, right))
+        free_left = 14 + width_of(title, 13, MEDIUM) + 12
+        free_right = self.rows.x() + GUTTER_PX - 12.0
+        paint_now(painter, letters, self.colours, scene.time, view, (AXIS_PX, PLOT_TOP_PX, free_left, free_right))
 
     def _paint_altitudes(self, painter: QPainter, letters: Lettering, scene: DayScene, unit: str) -> None:
         axis, colours = scene.altitude, self.colours
@@ -193,39 +199,6 @@ class BoardPage(Canvas):
             painter.fillRect(QRectF(AXIS_PX - 6, round(y), 6, 1), QColor(colours.line))
             at = (AXIS_PX - 10, baseline_for_middle(y, 13))
             letters.text(at, text, colours.soft_ink, 13, side="right")
-
-    def _paint_hours(self, painter: QPainter, letters: Lettering, scene: DayScene, view: View) -> None:
-        colours, bottom = self.colours, PLOT_TOP_PX + scene.altitude.bottom_px
-        free_from = 0.0
-        for mark in scene.hours:
-            x = AXIS_PX + scene.time.px(mark.when)
-            painter.fillRect(QRectF(round(x), bottom, 1, 6 if mark.named else 4), QColor(colours.line))
-            if not mark.named:
-                continue
-            text = formatting.clock(mark.when, view.zone)
-            half = width_of(text, 13) / 2
-            if x - half >= free_from and x + half <= self.rows.x() + 24:
-                letters.text((x, bottom + 22), text, colours.soft_ink, 13, side="centre")
-                free_from = x + half + 8
-
-    def _paint_now(self, painter: QPainter, letters: Lettering, scene: DayScene, view: View) -> None:
-        colours = self.colours
-        text = f"now {formatting.clock(view.now, view.zone)}"
-        width = width_of(text, 14, SEMIBOLD) + 16
-        x = AXIS_PX + scene.time.px(scene.now)
-        title_end = 14 + width_of("Density altitude, ft", 13, MEDIUM) + 12
-        left = min(max(x - width / 2, title_end), self.rows.x() + GUTTER_PX - 12 - width)
-        painter.save()
-        painter.setRenderHint(QPainter.RenderHint.Antialiasing)
-        painter.setPen(Qt.PenStyle.NoPen)
-        painter.setBrush(QColor(colours.ink))
-        painter.drawRoundedRect(QRectF(left, 8, width, 20), 3, 3)
-        painter.restore()
-        painter.fillRect(QRectF(round(x) - 0.75, 28, 1.5, PLOT_TOP_PX - 28), QColor(colours.ink))
-        letters.text((left + 8, 23), text, colours.card, 14, SEMIBOLD)
-        observed = width_of("observed", 13)
-        if left - 10 - observed > title_end:
-            letters.text((left - 10, 23), "observed", colours.soft_ink, 13, side="right")
 
 
 def altitude_marks(axis: AltitudeAxis, unit: str) -> list[tuple[float, str]]:
@@ -248,14 +221,10 @@ def shelf_of(row: OperationLine, view: View) -> Shelf | None:
     line = row.shown
     if line is None or line.axis_ft is None:
         return None
-    loud, quiet = formatting.next_change(line, view.now, view.zone)
     return Shelf(
         key=row.key,
         axis_ft=line.axis_ft,
         state=row.state,
         spans=line.spans,
-        callout=(
-            f"{formatting.full_name(row)}, {formatting.limit_phrase(line)}",
-            ", ".join(part for part in (formatting.STATE_WORDS[row.state], loud, quiet) if part),
-        ),
+        callout=formatting.callout(row, view.now, view.zone),
     )

@@ -9,7 +9,7 @@ from PySide6.QtGui import QColor, QPainter, QResizeEvent
 from PySide6.QtWidgets import QStackedWidget, QWidget
 
 from airfield_board.session.board_state import BoardState
-from airfield_board.window import changes_strip, formatting, header, strip
+from airfield_board.window import changes_strip, formatting, header, message_line, strip
 from airfield_board.window.board_page import BoardPage
 from airfield_board.window.canvas import Canvas
 from airfield_board.window.changes_strip import ChangesStrip
@@ -18,6 +18,7 @@ from airfield_board.window.frame_overlay import BAND_PX, FrameOverlay, band_of
 from airfield_board.window.header import Header
 from airfield_board.window.lettering import Lettering
 from airfield_board.window.margin_page import MarginPage
+from airfield_board.window.message_line import MessageLine, loud_messages
 from airfield_board.window.palette import Palette, Scheme, palette_for
 from airfield_board.window.reading import Frame, View, view_of
 from airfield_board.window.strip import ObservationStrip
@@ -55,6 +56,8 @@ class BoardView(Canvas):
         Numbers of the changes to acknowledge, a tuple.
     poll_asked(), type_in_asked()
         From the card that stands where there is no current observation.
+    messages_asked()
+        The line of the loudest message was pressed.
     """
 
     page_asked = Signal(int)
@@ -62,6 +65,7 @@ class BoardView(Canvas):
     acknowledge_asked = Signal(object)
     poll_asked = Signal()
     type_in_asked = Signal()
+    messages_asked = Signal()
 
     def __init__(self, parent: QWidget | None = None, *, watchdog: timedelta | None = None) -> None:
         """Make an empty view.
@@ -80,6 +84,7 @@ class BoardView(Canvas):
         self._as_of = False
         self.header = Header(PAGE_TITLES, self)
         self.strip = ObservationStrip(self)
+        self.message = MessageLine(self)
         self.pages = QStackedWidget(self)
         self.board = BoardPage()
         self.margin = MarginPage()
@@ -91,6 +96,7 @@ class BoardView(Canvas):
         self.board.selected.connect(self.selected)
         self.margin.selected.connect(self.selected)
         self.changes.acknowledge_asked.connect(self.acknowledge_asked)
+        self.message.messages_asked.connect(self.messages_asked)
         for page in (self.board, self.margin):
             page.poll_asked.connect(self.poll_asked)
             page.type_in_asked.connect(self.type_in_asked)
@@ -107,9 +113,11 @@ class BoardView(Canvas):
         self._view = view = view_of(state, now, self._watchdog)
         if before is None or before.frames != view.frames or before.trusted != view.trusted:
             self._recolour()
+        if before is None or _outline(before) != _outline(view):
             self._arrange()
         self.header.show_view(view)
         self.strip.show_view(view)
+        self.message.show_view(view)
         self.changes.show_view(view)
         self.overlay.show_view(view)
         for page in (self.board, self.margin):
@@ -141,6 +149,7 @@ class BoardView(Canvas):
         self.changes.set_interactive(False)
         for page in (self.board, self.margin):
             page.card.set_interactive(False)
+        self.margin.search.hide()
         self.update()
 
     def ensure_plots(self) -> None:
@@ -154,7 +163,7 @@ class BoardView(Canvas):
         if view is not None and view.frames and view.frames[0] not in _QUIET_FRAMES:
             colours = _inverse_header(colours, view.frames[0])
         self.set_colours(colours)
-        for part in (self.header, self.strip, self.board, self.margin, self.changes, self.overlay):
+        for part in (self.header, self.strip, self.message, self.board, self.margin, self.changes, self.overlay):
             part.set_colours(colours)
 
     def _arrange(self) -> None:
@@ -169,6 +178,9 @@ class BoardView(Canvas):
         changes_px = changes_strip.COMPACT_HEIGHT_PX if compact else changes_strip.HEIGHT_PX
         self.strip.setGeometry(left, top, inner, strip_px)
         top += strip_px + _GAP_PX
+        if self._view is not None and loud_messages(self._view.state.messages):
+            self.message.setGeometry(left, top - 2, inner, message_line.HEIGHT_PX)
+            top += message_line.HEIGHT_PX + _GAP_PX - 4
         bottom = inset + height - _CAUTION_PX - changes_px
         self.changes.setGeometry(left, bottom, inner, changes_px)
         self.pages.setGeometry(left, top, inner, bottom - _GAP_PX - top)
@@ -203,6 +215,11 @@ class BoardView(Canvas):
             void = f"void after {formatting.short_stamp(until, view.zone)}" if until is not None else "void: NO DATA"
             right = self.width() - inset - _MARGIN_PX
             letters.text((right, baseline), void, colours.ink, 13, SEMIBOLD, side="right")
+
+
+def _outline(view: View) -> tuple[object, ...]:
+    """All that the places of the parts depend on."""
+    return bool(view.frames), len(view.state.operations), bool(loud_messages(view.state.messages))
 
 
 def _inverse_header(colours: Palette, frame: Frame) -> Palette:

@@ -201,6 +201,15 @@ def freshness_word(freshness: Freshness) -> str:
     }[freshness]
 
 
+def trust_word(freshness: Freshness, cause: Cause) -> str:
+    """Say how far the reading can be trusted; one that is young but of no use is not called fresh."""
+    return {
+        Cause.NO_ANSWER: "Stopped",
+        Cause.CLOCK: "Clock wrong",
+        Cause.NOT_CALCULATED: "Not usable",
+    }.get(cause, freshness_word(freshness))
+
+
 def source_line(observation: CurrentObservation | None, airfield: AirfieldLine) -> str:
     """Say where the reading comes from: the file or station and its note, or that it was typed in and by whom."""
     if observation is None:
@@ -223,14 +232,14 @@ def limit_phrase(line: LimitLine | None) -> str:
     return f"limit {value}{', guarded' if line.guarded else ''}"
 
 
-def limit_cell(line: LimitLine | None, column_unit: str) -> str:
+def limit_cell(line: LimitLine | None, column_unit: str = "ft") -> str:
     """Limit as it stands in its own column, with any unit but the column's: ``6,350``, ``42 °C``."""
     if line is None or line.limit is None:
         return DASH
     return value_of_limit(line.limit, line.unit).removesuffix(f" {column_unit}")
 
 
-def margin_cell(line: LimitLine | None, column_unit: str) -> str:
+def margin_cell(line: LimitLine | None, column_unit: str = "ft") -> str:
     """Margin as it stands in its column, with any unit but the column's: ``+120``, ``+11.6 °C``."""
     if line is None or line.margin is None or not math.isfinite(line.margin):
         return DASH
@@ -276,7 +285,8 @@ def next_change(line: LimitLine | None, now: datetime, zone: ZoneInfo) -> tuple[
         full = f"greatest weight {weight(line.full_weight, line.weight_unit)}" if line.full_weight is not None else ""
         return lighter, full
     if line.gone_by is not None:
-        return f"margin may be gone by {clock(line.gone_by, zone)}", ""
+        word = "by" if line.gone_by > now else "since"
+        return f"margin may be gone {word} {clock(line.gone_by, zone)}", ""
     return "", f"since {time_near(line.since, now, zone)}" if line.since is not None else ""
 
 
@@ -297,6 +307,13 @@ def _clearing(line: LimitLine, now: datetime, zone: ZoneInfo) -> tuple[str, str]
 def count_open(count: int) -> str:
     """How many status changes wait."""
     return f"{count} not acknowledged" if count else "all acknowledged"
+
+
+def callout(row: OperationLine, now: datetime, zone: ZoneInfo) -> tuple[str, str]:
+    """Name a row's limit on the plot, and say what is known of its next change."""
+    loud, quiet = next_change(row.shown, now, zone)
+    known = " ".join(part for part in (loud, quiet) if part) or STATE_WORDS[row.state]
+    return f"{full_name(row)}, {limit_phrase(row.shown)}", known
 
 
 def no_data_lines(cause: Cause, state: BoardState, now: datetime, zone: ZoneInfo) -> tuple[str, ...]:

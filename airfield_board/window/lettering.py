@@ -10,6 +10,8 @@ from PySide6.QtGui import QColor, QFont, QFontMetricsF, QPainter
 from airfield_board.window.fonts import REGULAR, font
 
 Side = Literal["left", "right", "centre"]
+_TAIL_SHARE = 0.7
+"""Most of the room that a kept tail may take."""
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -51,17 +53,21 @@ def width_of(text: str, size_px: int, weight: int = REGULAR) -> float:
 def cut_to(text: str, room_px: float, size_px: int, weight: int = REGULAR) -> str:
     """Shorten a text to a width, keeping the part that tells variants apart: the cut comes before the last comma.
 
-    ``Turbine helicopter, hook load`` becomes ``Turbine helicop…, hook load``. Where the tail alone is too long, or
-    there is none, the end is cut. In a room too narrow for anything, nothing remains.
+    ``Turbine helicopter, hook load`` becomes ``Turbine helicop…, hook load``; what follows a raised point stays as
+    well, so ``Light twin, 4 up · Departure`` becomes ``Light t…, 4 up · Departure``. Where such a tail would take most
+    of the room, or there is none, the end is cut. In a room too narrow for anything, nothing remains.
     """
     if width_of(text, size_px, weight) <= room_px:
         return text
-    head, comma, tail = text.rpartition(",")
-    tail = comma + tail
-    if not comma or width_of("…" + tail, size_px, weight) > room_px * 0.75:
-        head, tail = text, ""
-    for length in range(len(head), 0, -1):
-        shorter = head[:length].rstrip(" ,·") + "…" + tail
+    for mark in (" · ", ", "):
+        head, found, tail = text.rpartition(mark)
+        kept_px = width_of(found + tail, size_px, weight)
+        if found and kept_px <= room_px * _TAIL_SHARE:
+            start = cut_to(head, room_px - kept_px, size_px, weight)
+            if start:
+                return start + found + tail
+    for length in range(len(text) - 1, 0, -1):
+        shorter = text[:length].rstrip(" ,·") + "…"
         if width_of(shorter, size_px, weight) <= room_px:
             return shorter
     return ""

@@ -152,6 +152,7 @@ class View:
             was=line.was if kept or observation is None else line.state,
             was_at=line.was_at if kept or observation is None else observation.time,
             hold_temperature_c=None,
+            hold_above_c=None,
             greatest_weight=None,
             greatest_weight_lb=None,
             gone_by=None,

@@ -23,7 +23,8 @@ class Density(Enum):
 COMFORTABLE_FROM_PX = 34
 STANDARD_FROM_PX = 22
 PITCH_LARGEST_PX = 42
-PITCH_SMALLEST_PX = 11
+PITCH_SMALLEST_PX = 10
+FOLDED_PITCH_PX = 12
 EASED_PX = 36
 EXTRA_LINE_PX = 15.0
 LEVEL_PX = {Density.COMFORTABLE: 30.0, Density.STANDARD: 24.0, Density.DENSE: 15.0}
@@ -77,10 +78,10 @@ def choose_pitch(space_px: float, rows: int, *, with_level: bool, extra_lines: i
     return Pitch(px=max(min(dense_px, STANDARD_FROM_PX), PITCH_SMALLEST_PX), density=Density.DENSE)
 
 
-def rows_that_fit(space_px: float, *, with_level: bool, with_foot: bool) -> int:
-    """Return how many rows fit at the smallest height."""
+def rows_that_fit(space_px: float, pitch_px: float, *, with_level: bool, with_foot: bool) -> int:
+    """Return how many dense rows of a height fit."""
     taken_px = (LEVEL_PX[Density.DENSE] if with_level else 0.0) + (FOOT_GAP_PX[Density.DENSE] if with_foot else 0.0)
-    return max(int((space_px - taken_px) // PITCH_SMALLEST_PX), 1)
+    return max(int((space_px - taken_px) // pitch_px), 1)
 
 
 def settle(

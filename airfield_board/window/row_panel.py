@@ -4,7 +4,17 @@ from collections.abc import Sequence
 from dataclasses import dataclass
 
 from PySide6.QtCore import QEvent, QPointF, QRectF, Qt, Signal
-from PySide6.QtGui import QColor, QEnterEvent, QFocusEvent, QKeyEvent, QMouseEvent, QPainter, QPen, QPolygonF
+from PySide6.QtGui import (
+    QColor,
+    QEnterEvent,
+    QFocusEvent,
+    QKeyEvent,
+    QMouseEvent,
+    QPainter,
+    QPen,
+    QPolygonF,
+    QResizeEvent,
+)
 from PySide6.QtWidgets import QToolTip, QWidget
 
 from airfield_board.limits.states import State
@@ -14,18 +24,25 @@ from airfield_board.window.canvas import Canvas
 from airfield_board.window.fonts import BOLD, MEDIUM, REGULAR, SEMIBOLD
 from airfield_board.window.lettering import Lettering, baseline_for_middle, width_of
 from airfield_board.window.marks import mark_colour, paint_mark
-from airfield_board.window.row_layout import Density, RowBox, RowPlan, plan_rows
-from airfield_board.window.row_words import RowWords, wish_of
+from airfield_board.window.row_layout import (
+    FOLDED_PITCH_PX,
+    PITCH_SMALLEST_PX,
+    Density,
+    RowBox,
+    RowPlan,
+    choose_pitch,
+    plan_rows,
+    rows_that_fit,
+)
+from airfield_board.window.row_words import FOLDED, RowWords, folded, wish_of
 
 GUTTER_PX = 58
-ROWS_PX = 710
-ROWS_DENSE_PX = 768
 RIGHT_PX = 12
-HOLD_COLUMN_PX = 96
 HOLD_COLUMN_FROM_PX = 1320
 """Window width below which the column of hold temperatures goes."""
-DENSE_FROM_ROWS = 18
-"""From so many rows on each has one line, and the limit a column of its own."""
+PLOT_MIDDLE_PX = 90
+UNFOLDED_ROWS = 40
+"""So many rows are always listed one by one; of more, some are counted in one line where they get too low to read."""
 ROWS_TOP_PX = 32
 ROWS_BOTTOM_PX = 7
 
@@ -42,7 +59,6 @@ class Columns:
 
     block_px: float
     name: float
-    name_right: float
     limit_right: float | None
     margin_right: float
     change: float
@@ -55,29 +71,28 @@ class Columns:
         return self.hold_right + RIGHT_PX if self.hold_right is not None else self.change_right + RIGHT_PX
 
 
-def columns_for(rows: int, window_px: int) -> Columns:
-    """Choose the columns for a number of rows and a width of the window."""
+def columns_for(density: Density, window_px: int) -> Columns:
+    """Choose the columns for a height of the rows and a width of the window."""
     with_hold = window_px >= HOLD_COLUMN_FROM_PX
-    if rows >= DENSE_FROM_ROWS:
+    if density is Density.COMFORTABLE:
         return Columns(
-            block_px=100,
-            name=112,
-            name_right=340,
-            limit_right=398,
-            margin_right=464,
-            change=480,
-            change_right=704 if with_hold else 700,
-            hold_right=756 if with_hold else None,
+            block_px=144,
+            name=158,
+            limit_right=None,
+            margin_right=406,
+            change=424,
+            change_right=640,
+            hold_right=698 if with_hold else None,
         )
+    block_px = 116 if density is Density.STANDARD else 100
     return Columns(
-        block_px=144,
-        name=158,
-        name_right=330,
-        limit_right=None,
-        margin_right=406,
-        change=424,
-        change_right=640,
-        hold_right=698 if with_hold else None,
+        block_px=block_px,
+        name=block_px + 12,
+        limit_right=420,
+        margin_right=486,
+        change=501,
+        change_right=716,
+        hold_right=756 if with_hold else None,
     )
 
 
@@ -103,12 +118,15 @@ class RowPanel(Canvas):
     def __init__(self, parent: QWidget | None = None) -> None:
         super().__init__(parent)
         self._words: tuple[RowWords, ...] = ()
-        self._tips: tuple[str, ...] = ()
+        self._tips: dict[str, str] = {}
         self._axis: AltitudeAxis | None = None
         self._level: tuple[float, str] | None = None
         self._headings = Headings(margin="", last="")
-        self._columns = columns_for(0, HOLD_COLUMN_FROM_PX)
+        self._columns = columns_for(Density.COMFORTABLE, HOLD_COLUMN_FROM_PX)
         self._plan: RowPlan | None = None
+        self._all: tuple[RowWords, ...] = ()
+        self._room_bottom_px: float | None = None
+        self._empty_words = "No operations yet: the fleet file names none"
         self._chosen = ""
         self._pinned = False
         self.setMouseTracking(True)
@@ -132,7 +150,6 @@ class RowPanel(Canvas):
         headings: Headings,
         *,
         level: tuple[float, str] | None,
-        window_px: int,
     ) -> None:
         """Show other rows.
 
@@ -142,24 +159,62 @@ class RowPanel(Canvas):
             A text for each row that says all of it; plain text.
         level
             The air's density altitude and its label; None where it is not known.
-        window_px
-            Width of the window, by which columns are left out.
         """
-        columns = columns_for(len(words), window_px)
-        self._tips = tuple(tips)
-        fresh = (tuple(words), level, columns, headings)
-        if fresh == (self._words, self._level, self._columns, self._headings) and self._plan is not None:
+        self._tips = {row.key: tip for row, tip in zip(words, tips, strict=True)}
+        fresh = (tuple(words), level, headings)
+        if fresh == (self._all, self._level, self._headings):
             return
-        self._words, self._level, self._columns, self._headings = fresh
-        self.setAccessibleDescription("; ".join(row.spoken for row in self._words))
-        if self._chosen and self._chosen not in {row.key for row in self._words}:
+        self._all, self._level, self._headings = fresh
+        self.setAccessibleDescription("; ".join(row.spoken for row in self._all))
+        if self._chosen and self._chosen not in {row.key for row in self._all}:
             self._choose("", pin=False)
         self.arrange()
 
-    def set_axis(self, axis: AltitudeAxis) -> None:
-        """Take the plot's altitude axis, in this widget's pixels."""
-        if axis != self._axis:
-            self._axis = axis
+    def choose_columns(self, height_px: float, window_px: int) -> Columns:
+        """Choose the columns for the rows shown.
+
+        Parameters
+        ----------
+        height_px
+            Height that the rows will have from this widget's top.
+        window_px
+            Width of the window, by which columns are left out.
+        """
+        words = self._fitting(height_px - ROWS_BOTTOM_PX)
+        pitch = choose_pitch(
+            height_px - ROWS_BOTTOM_PX - ROWS_TOP_PX,
+            len(words),
+            with_level=self._level is not None,
+            extra_lines=sum(row.extra_lines for row in words),
+            with_foot=any(row.axis_ft is None for row in words),
+        )
+        columns = columns_for(pitch.density, window_px)
+        if columns != self._columns:
+            self._columns = columns
+            self.update()
+        return columns
+
+    def _fitting(self, bottom_px: float) -> tuple[RowWords, ...]:
+        with_foot = any(row.axis_ft is None for row in self._all)
+        room_px = bottom_px - ROWS_TOP_PX
+        smallest_px = PITCH_SMALLEST_PX if len(self._all) <= UNFOLDED_ROWS else FOLDED_PITCH_PX
+        most = rows_that_fit(room_px, smallest_px, with_level=self._level is not None, with_foot=with_foot)
+        return folded(self._all, most)
+
+    def set_empty_words(self, words: str) -> None:
+        """Say what stands there when there are no rows."""
+        self._empty_words = words
+
+    def set_axis(self, axis: AltitudeAxis, room_bottom_px: float | None = None) -> None:
+        """Take the plot's altitude axis, in this widget's pixels.
+
+        Parameters
+        ----------
+        room_bottom_px
+            Where the room for rows ends; None: at the widget's foot.
+        """
+        if (axis, room_bottom_px) != (self._axis, self._room_bottom_px):
+            self._axis, self._room_bottom_px = axis, room_bottom_px
             self.arrange()
 
     def arrange(self) -> None:
@@ -167,10 +222,17 @@ class RowPanel(Canvas):
         axis = self._axis
         if axis is None:
             return
+        bottom_px = self.height() - ROWS_BOTTOM_PX if self._room_bottom_px is None else self._room_bottom_px
+        self._words = self._fitting(bottom_px)
         wishes = [wish_of(row, axis.px(row.axis_ft) if row.axis_ft is not None else None) for row in self._words]
         level_px = axis.px(self._level[0]) if self._level is not None else None
-        self._plan = plan_rows(wishes, level_px, ROWS_TOP_PX, self.height() - ROWS_BOTTOM_PX)
+        self._plan = plan_rows(wishes, level_px, ROWS_TOP_PX, bottom_px)
         self.update()
+
+    def resizeEvent(self, event: QResizeEvent) -> None:
+        """Place the rows anew."""
+        super().resizeEvent(event)
+        self.arrange()
 
     def paint(self, painter: QPainter, letters: Lettering) -> None:
         """Paint all of it."""
@@ -180,6 +242,9 @@ class RowPanel(Canvas):
             return
         self._paint_water(painter, plan)
         self._paint_leaders(painter, plan, axis)
+        if not self._words:
+            at = (GUTTER_PX + self._columns.name, PLOT_MIDDLE_PX)
+            letters.text(at, self._empty_words, self.colours.soft_ink, 15, MEDIUM)
         for box in plan.boxes:
             self._paint_row(painter, letters, box, plan)
         if plan.level_px is not None:
@@ -212,7 +277,7 @@ class RowPanel(Canvas):
         quiet_first = sorted(plan.boxes, key=lambda box: self._words[box.index].state.severity)
         for box in quiet_first:
             row = self._words[box.index]
-            if row.axis_ft is None:
+            if row.axis_ft is None or row.key.startswith(FOLDED):
                 continue
             loud = row.state in (State.HOLD, State.NEAR, State.REDUCED)
             colour = mark_colour(row.state, self.colours) if loud else self.colours.line
@@ -275,7 +340,7 @@ class RowPanel(Canvas):
         painter.save()
         painter.setRenderHint(QPainter.RenderHint.Antialiasing)
         painter.setPen(QPen(QColor(self.colours.accent), 2))
-        ring = QRectF(GUTTER_PX - 5, box.top_px + 0.5, self.width() - GUTTER_PX - 3, box.height_px - 1)
+        ring = QRectF(GUTTER_PX - 5, box.top_px + 0.5, self.width() - GUTTER_PX + 1, box.height_px - 1)
         painter.drawRoundedRect(ring, 5, 5)
         painter.restore()
 
@@ -354,7 +419,7 @@ class RowPanel(Canvas):
     def _paint_one_line(self, letters: Lettering, box: RowBox, row: RowWords, size_px: int) -> None:
         colours, columns, left = self.colours, self._columns, float(GUTTER_PX)
         baseline = baseline_for_middle(box.middle_px, size_px)
-        name, limit_right = left + columns.name, left + (columns.limit_right or columns.name_right)
+        name, limit_right = left + columns.name, left + (columns.limit_right or columns.margin_right)
         limit_left = limit_right - width_of(row.limit, size_px) - 10
         letters.text((name, baseline), row.one_line, colours.ink, size_px, MEDIUM, room_px=limit_left - name)
         letters.text((limit_right, baseline), row.limit, colours.soft_ink, size_px, side="right")
@@ -397,8 +462,8 @@ class RowPanel(Canvas):
     def mouseMoveEvent(self, event: QMouseEvent) -> None:
         """Point at the row under the pointer, unless one is pinned."""
         index = self._row_at(event.position().y())
-        if index is not None and self._tips:
-            QToolTip.showText(event.globalPosition().toPoint(), self._tips[index], self)
+        tip = self._tips.get(self._words[index].key, "") if index is not None else ""
+        QToolTip.showText(event.globalPosition().toPoint(), tip, self)
         if not self._pinned:
             self._choose(self._words[index].key if index is not None else "", pin=False)
 

@@ -1,5 +1,6 @@
 """What a row says, and how many lines that takes."""
 
+from collections.abc import Sequence
 from dataclasses import dataclass
 from html import escape
 
@@ -8,6 +9,9 @@ from airfield_board.session.board_state import OperationLine
 from airfield_board.window import formatting
 from airfield_board.window.reading import View
 from airfield_board.window.row_layout import Wish
+
+FOLDED = "folded:"
+"""Begins the key of a line that stands for several rows."""
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -60,7 +64,7 @@ def words_of(row: OperationLine, view: View) -> RowWords:
     loud, quiet = formatting.next_change(line, view.now, view.zone)
     temporary = formatting.temporary_phrase(line)
     unit = view.state.airfield.temperature_unit
-    above = line.hold_temperature_c if line is not None else None
+    above = line.hold_above_c if line is not None else None
     short = formatting.temporary_short(line)
     column_unit = view.state.airfield.altitude_unit
     return RowWords(
@@ -76,6 +80,56 @@ def words_of(row: OperationLine, view: View) -> RowWords:
         quiet=quiet,
         last=formatting.hold_temperature(above, unit) if above is not None else formatting.DASH,
         axis_ft=line.axis_ft if line is not None else None,
+    )
+
+
+_FOLD_FIRST = (State.GO, State.HOLD, State.NO_DATA, State.NEAR, State.REDUCED)
+
+
+def folded(words: Sequence[RowWords], most: int) -> tuple[RowWords, ...]:
+    """Fold rows that do not fit into one line a state: ``22 more GO``.
+
+    First the GO rows farthest from their limit, then the HOLD rows farthest beyond it, then others; a row that is
+    not shown is always counted, by its state.
+
+    Parameters
+    ----------
+    most
+        How many lines there is room for.
+    """
+    rows = list(words)
+    for state in _FOLD_FIRST:
+        surplus = len(rows) - most
+        if surplus <= 0:
+            break
+        places = [place for place, row in enumerate(rows) if row.state is state]
+        if len(places) < 2:
+            continue
+        taken = min(surplus + 1, len(places))
+        gone = places[:taken] if state in (State.GO, State.NEAR) else places[-taken:]
+        stand_in = _fold_line(state, [rows[place] for place in gone])
+        at = gone[0]
+        rows = [row for place, row in enumerate(rows) if place not in set(gone)]
+        rows.insert(at, stand_in)
+    return tuple(rows)
+
+
+def _fold_line(state: State, rows: Sequence[RowWords]) -> RowWords:
+    text = f"{len(rows)} more {formatting.STATE_WORDS[state]}"
+    places = [row.axis_ft for row in rows if row.axis_ft is not None]
+    return RowWords(
+        key=f"{FOLDED}{state.value}",
+        state=state,
+        name=text,
+        details="",
+        temporary="",
+        one_line=text,
+        limit="",
+        margin="",
+        loud="",
+        quiet="no room to list them",
+        last="",
+        axis_ft=places[0] if len(places) == len(rows) else None,
     )
 
 

@@ -23,7 +23,7 @@ COMPACT_HEIGHT_PX = 76
 _PADDING_PX = 20.0
 _AGE_PX = 126.0
 _GAP_SMALLEST_PX = 13.0
-_GAP_LARGEST_PX = 44.0
+_GAP_LARGEST_PX = 52.0
 _DEWPOINT_LABEL = {
     DewpointUse.OBSERVED: "Dew point",
     DewpointUse.CARRIED: "Dew point, carried",
@@ -48,7 +48,6 @@ class Cell:
     value: str
     unit: str
     pattern: str
-    after: str = ""
     below: str = ""
     arrow: int | None = None
 
@@ -70,6 +69,7 @@ class StripContent:
     age_share: float
     ageing_share: float
     freshness: Freshness
+    trust: str
     stale_at: str
 
 
@@ -114,7 +114,7 @@ def content_of(view: View) -> StripContent:
         spread = formatting.uncertainty(conditions.uncertainty_ft, unit)
         if state.guarded:
             value_ft = conditions.density_altitude_ft + conditions.uncertainty_ft
-            compared = f"guarded: {formatting.altitude(value_ft, unit)} counts"
+            compared = f"guarded: {formatting.altitude(value_ft, unit)} {unit} is compared"
         air = (_rate_cell(conditions.rate_ft_per_h, unit), _peak_cell(view))
         derived = (
             Cell(
@@ -170,7 +170,8 @@ def content_of(view: View) -> StripContent:
         age_share=min(age / stale_after, 1.0) if age is not None else 0.0,
         ageing_share=state.ageing_after_min / state.stale_after_min,
         freshness=reading.freshness,
-        stale_at=f"tale at {formatting.minutes(state.stale_after_min)}",
+        trust=formatting.trust_word(reading.freshness, reading.cause),
+        stale_at=f"stale at {formatting.minutes(state.stale_after_min)}",
     )
 
 
@@ -197,8 +198,7 @@ def _peak_cell(view: View) -> Cell:
         value=formatting.altitude(conditions.peak_ft, unit),
         unit=unit,
         pattern="8,888",
-        after=f"at {formatting.clock(conditions.peak_time, view.zone)}",
-        below="observed",
+        below=f"at {formatting.clock(conditions.peak_time, view.zone)}, observed",
     )
 
 
@@ -323,9 +323,7 @@ class ObservationStrip(Canvas):
         letters.text((left, label), cell.label, colours.soft_ink, sizes.label_px, MEDIUM)
         right = letters.text((left, value), cell.value, colours.ink, sizes.value_px, SEMIBOLD)
         if cell.unit:
-            right = letters.text((right + 6, value), cell.unit, colours.soft_ink, sizes.label_px, MEDIUM)
-        if cell.after:
-            letters.text((right + 4, value), cell.after, colours.soft_ink, sizes.label_px, MEDIUM)
+            letters.text((right + 6, value), cell.unit, colours.soft_ink, sizes.label_px, MEDIUM)
         if cell.below:
             start = left
             if cell.arrow is not None:
@@ -370,18 +368,16 @@ class ObservationStrip(Canvas):
         notch = left + 2 + (_AGE_PX - 4) * content.ageing_share
         painter.fillRect(QRectF(round(notch), bar - 4, 1, 14), QColor(soft if inverse else colours.line))
         if content.freshness is Freshness.STALE:
-            letters.text((left, below), f"S{content.stale_at}", ink, 13, BOLD, room_px=_AGE_PX)
+            letters.text((left, below), content.stale_at.capitalize(), ink, 13, BOLD, room_px=_AGE_PX)
         else:
-            letters.text((left, below), formatting.freshness_word(content.freshness), ink, 13, SEMIBOLD)
-            letters.text((left + _AGE_PX, below), f"s{content.stale_at}", soft, 13, side="right")
+            letters.text((left, below), content.trust, ink, 13, SEMIBOLD)
+            letters.text((left + _AGE_PX, below), content.stale_at, soft, 13, side="right")
 
 
 def _cell_width(cell: Cell, sizes: _Sizes) -> float:
     value = max(width_of(cell.value, sizes.value_px, SEMIBOLD), width_of(cell.pattern, sizes.value_px, SEMIBOLD))
     if cell.unit:
         value += 6 + width_of(cell.unit, sizes.label_px, MEDIUM)
-    if cell.after:
-        value += 4 + width_of(cell.after, sizes.label_px, MEDIUM)
     below = width_of(cell.below, sizes.label_px) + (28 if cell.arrow is not None else 0)
     return max(value, below, width_of(cell.label, sizes.label_px, MEDIUM))
 
