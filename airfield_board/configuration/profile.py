@@ -184,7 +184,7 @@ def _profile(keys: ProfileFile, content: str | bytes, path: Path) -> Profile:
             poll_s=observations.poll_s,
             expected_every_min=observations.expected_every_min,
             stale_after_min=observations.stale_after_min,
-            instruments=_instruments(observations),
+            instruments=instruments_of(observations),
         ),
         density_altitude=keys.density_altitude,
         acceptance=keys.acceptance,
@@ -193,7 +193,8 @@ def _profile(keys: ProfileFile, content: str | bytes, path: Path) -> Profile:
     )
 
 
-def _instruments(observations: ObservationsSection) -> Instruments:
+def instruments_of(observations: ObservationsSection) -> Instruments:
+    """Return the instruments as a profile states them, with the defaults where it does not."""
     return Instruments(
         altimeter_resolution_hpa=_in_hpa(
             observations.altimeter_resolution_hpa, observations.altimeter_resolution_inhg, _ALTIMETER_RESOLUTION_INHG
