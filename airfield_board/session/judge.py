@@ -248,7 +248,9 @@ class Judge:
                 limit.retire(when_us)
         ended = tuple(episode for limit in before.values() for episode in limit.take_ended())
         self._act_at_once(when_us)
-        return tuple(change for limit in self.limits.values() for change in limit.take_changes()), ended
+        # Time that passed up to now is told by the limits as they were.
+        told = (*before.values(), *self.limits.values())
+        return tuple(change for limit in told for change in limit.take_changes()), ended
 
     def _act_at_once(self, when_us: int) -> None:
         moment_us = self.stale_at_us
