@@ -128,9 +128,10 @@ def judge(memory: QualityMemory, row: Row, rules: QualityRules, now_us: int) -> 
         suspected = QualityMemory(newest_us=row.time_us, before=before, past=_with_suspect(memory.past, reading))
         return Judgement(Verdict.SUSPECT, f"step: {step}", humidity=humidity), suspected
     after = past.with_valid(reading)
-    if corrects and memory.past.has_values_of(row.altimeter_hpa, row.temperature_c):
-        # Newer rows of the same values may have been rejected as stuck already; they still count.
-        after = after.with_same_at(reading._replace(time_us=max(row.time_us, memory.past.same_last_us)))
+    newer = memory.past
+    if newer.same_last_us > row.time_us and newer.has_values_of(row.altimeter_hpa, row.temperature_c):
+        # Newer rows of the same values were rejected as stuck already; they still count.
+        after = replace(after, same_last_us=newer.same_last_us)
     warnings = []
     if confirmed:
         warnings.append(f"step confirmed: {step}")

@@ -110,12 +110,13 @@ class Past:
         known = replace(self, first_dewpoint_us=first_us) if first_us != self.first_dewpoint_us else self
         if self.last_valid is not None and self.last_valid.time_us - late.time_us > DAY_US:
             return known
-        after = tuple(entry for entry in self.highest_dewpoints if entry.time_us >= late.time_us)
-        if after and after[0].dewpoint_c >= late.dewpoint_c:
+        if any(
+            entry.time_us >= late.time_us and entry.dewpoint_c >= late.dewpoint_c for entry in self.highest_dewpoints
+        ):
             return known
-        before = self.highest_dewpoints[: len(self.highest_dewpoints) - len(after)]
-        higher = tuple(entry for entry in before if entry.dewpoint_c > late.dewpoint_c)
-        return replace(self, first_dewpoint_us=first_us, highest_dewpoints=(*higher, late, *after))
+        before = (entry for entry in self.highest_dewpoints if entry.dewpoint_c > late.dewpoint_c)
+        after = (entry for entry in self.highest_dewpoints if entry.time_us > late.time_us)
+        return replace(known, highest_dewpoints=(*before, late, *after))
 
     def with_dewpoints_of(self, other: "Past") -> "Past":
         """Return this past with another's record of dew points."""

@@ -1,8 +1,12 @@
 """Order of time, corrections of one time, and rows that come late."""
 
+from dataclasses import replace
+
+import numpy as np
+
 from airfield_board.observations.observation import DewpointUse
-from airfield_board.observations.quality import QualityMemory
-from tests.observations.quality_rows import NAN, R, every, hours, run, us, uses, verdicts
+from airfield_board.observations.quality import QualityMemory, QualityRules, check
+from tests.observations.quality_rows import NAN, R, every, hours, run, table, us, uses, verdicts
 
 CORRECTED = "corrected by a later row of the same time"
 OBSERVED, CARRIED, ASSUMED, DRY = DewpointUse.OBSERVED, DewpointUse.CARRIED, DewpointUse.ASSUMED, DewpointUse.DRY
@@ -28,6 +32,12 @@ class TestOrder:
     def test_rows_of_one_time_keep_the_order_of_the_file(self) -> None:
         checked, _ = run([R(10, temp=20.1), R(5), R(10, temp=20.2), R(10, temp=20.3)])
         assert checked.rows.temperature_c.tolist() == [20.0, 20.1, 20.2, 20.3]
+
+    def test_that_order_is_the_place_in_the_source(self) -> None:
+        rows = replace(table([R(0), R(0, temp=20.1), R(0, temp=20.2)]), position=np.array([20, 30, 10]))
+        checked, _ = check(rows, QualityMemory(), QualityRules(elevation_m=NAN, humidity="auto"), us(0))
+        assert checked.rows.temperature_c.tolist() == [20.2, 20.0, 20.1]
+        assert verdicts(checked) == "ccv"
 
     def test_an_empty_table(self) -> None:
         _, memory = run([R(0)])

@@ -30,9 +30,9 @@ def records(draw: st.DrawFn, steps_min: list[float]) -> list[R]:
     minute = 0.0
     for _ in range(draw(st.integers(1, 6))):
         step_min = draw(st.sampled_from(steps_min))
-        silent, frozen = draw(st.booleans()), draw(st.booleans())
+        every_nth_with_dewpoint, frozen = draw(st.sampled_from([1, 4, 99])), draw(st.booleans())
         for k in range(draw(st.integers(0, 30))):
-            dew = NAN if silent and k % 4 else 10.0 + 0.1 * (k % 3)
+            dew = NAN if (k + 1) % every_nth_with_dewpoint else 10.0 + 0.1 * (k % 3)
             minute += step_min
             rows.append(R(minute, 1013.0, 20.0 if frozen else 20.0 + 0.1 * (k % 4), dew))
         for _ in range(draw(st.integers(0, 4))):
@@ -164,6 +164,26 @@ def test_one_rejected_row_breaks_it_in_two(taken: list[int]) -> None:
     checked, _ = run(rows)
     assert taken == [498, 497]
     assert np.flatnonzero(checked.verdict).tolist() == [500]
+
+
+def test_a_fault_before_the_first_dew_point_is_found(taken: list[int]) -> None:
+    rows = every(1, 200, like=R(0, dew=NAN))
+    rows[60] = rows[60]._replace(temp=99.0)
+    rows[120] = rows[120]._replace(dew=10.0)
+    checked, _ = run(rows)
+    assert np.flatnonzero(checked.verdict).tolist() == [60]
+    assert [use.name for use, _ in uses(checked)] == ["DRY"] * 120 + ["OBSERVED"] + ["CARRIED"] * 79
+    assert len(taken) == 3
+
+
+def test_faults_are_found_after_rows_without_a_time_and_late_ones(taken: list[int]) -> None:
+    _, memory = run([R(0)])
+    rows = [R(None), R(None, fault="no time"), R(-5), *every(1, 100, 5)]
+    rows[60] = rows[60]._replace(fault="too few fields")
+    checked, _ = run(rows, memory=memory)
+    assert np.flatnonzero(checked.verdict).tolist() == [0, 1, 60]
+    assert checked.reason[60] == "incomplete: too few fields"
+    assert len(taken) == 2
 
 
 def test_a_short_table_is_judged_row_by_row(taken: list[int]) -> None:
