@@ -176,16 +176,16 @@ def _add_compute(commands: "argparse._SubParsersAction[argparse.ArgumentParser]"
 
 def _compute(options: argparse.Namespace) -> int:
     from airfield_board.clock import us_from_time
-    from airfield_board.configuration.profile import elevation_in_range
+    from airfield_board.configuration.defaults import is_elevation_ft
     from airfield_board.session.computing import compute, write_csv
     from airfield_board.session.whole_files import read_file
     from airfield_board.units import m_from_ft
 
     elevation_m = None
     if options.elevation_ft is not None:
-        elevation_m = m_from_ft(options.elevation_ft)
-        if not elevation_in_range(elevation_m):
+        if not is_elevation_ft(options.elevation_ft):
             raise UserError(f"--elevation-ft {options.elevation_ft:g}: no elevation of an airfield")
+        elevation_m = m_from_ft(options.elevation_ft)
     read = read_file(options.file, time_zone="UTC", station=options.station, finished=True)
     _say(f"{options.file}: {note}" for note in read.notes)
     computed = compute(read, elevation_m, us_from_time(datetime.now(UTC)))

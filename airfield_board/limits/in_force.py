@@ -11,6 +11,7 @@ import numpy as np
 from numpy.typing import NDArray
 
 from airfield_board.clock import start_of_local_day, us_from_time
+from airfield_board.configuration.differences import difference_in_unit, limit_in_unit
 from airfield_board.configuration.model import (
     Aircraft,
     Fleet,
@@ -21,7 +22,6 @@ from airfield_board.configuration.model import (
     Unit,
     WeightTable,
 )
-from airfield_board.limits.kinds import band_in_unit, limit_in_unit
 from airfield_board.units import MINUTE_US, lb_from_kg
 
 WeightUnit: TypeAlias = Literal["lb", "kg"]
@@ -153,8 +153,8 @@ def _converted(entry: Limit, unit: Unit) -> Limit:
         quantity=entry.quantity,
         unit=unit,
         value=value,
-        near_band=band_in_unit(entry.near_band, entry.unit, unit),
-        deadband=band_in_unit(entry.deadband, entry.unit, unit),
+        near_band=difference_in_unit(entry.near_band, entry.unit, unit),
+        deadband=difference_in_unit(entry.deadband, entry.unit, unit),
         off_delay_min=entry.off_delay_min,
         guarded=entry.guarded,
         basis=entry.basis,

@@ -16,7 +16,7 @@ from airfield_board.observations.conditions import (
     hold_temperature_for_isa_deviation,
     hold_temperature_for_temperature,
 )
-from airfield_board.units import FOOT_M, c_from_f, f_from_c, ft_from_m, m_from_ft
+from airfield_board.units import c_from_f, f_from_c, ft_from_m, m_from_ft
 
 Array = NDArray[np.float64]
 
@@ -122,25 +122,3 @@ KINDS: Mapping[Quantity, Kind] = {
     Quantity.TEMPERATURE: TemperatureKind(),
     Quantity.ISA_DEVIATION: IsaDeviationKind(),
 }
-
-
-def limit_in_unit(limit: float, quantity: Quantity, unit: Unit, wanted: Unit) -> float:
-    """Return a limit in another unit of its quantity."""
-    if unit == wanted:
-        return limit
-    if quantity is Quantity.TEMPERATURE:
-        return f_from_c(limit) if wanted == "f" else c_from_f(limit)
-    return band_in_unit(limit, unit, wanted)
-
-
-def band_in_unit(band: float, unit: Unit, wanted: Unit) -> float:
-    """Return a band, a difference, in another unit of its quantity."""
-    if unit == wanted:
-        return band
-    factors: dict[tuple[Unit, Unit], float] = {
-        ("ft", "m"): FOOT_M,
-        ("m", "ft"): 1.0 / FOOT_M,
-        ("c", "f"): 1.8,
-        ("f", "c"): 1.0 / 1.8,
-    }
-    return band * factors[unit, wanted]

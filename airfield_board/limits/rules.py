@@ -11,9 +11,10 @@ from dataclasses import asdict, dataclass, fields
 import numpy as np
 from numpy.typing import NDArray
 
+from airfield_board.configuration.differences import difference_in_unit, limit_in_unit
 from airfield_board.configuration.model import Unit
 from airfield_board.limits.in_force import EQUAL, LimitKey, Schedule, Standing
-from airfield_board.limits.kinds import KINDS, band_in_unit, limit_in_unit
+from airfield_board.limits.kinds import KINDS
 from airfield_board.limits.states import State
 from airfield_board.observations.conditions import ConditionsTable
 from airfield_board.units import HOUR_US, MINUTE_US
@@ -437,7 +438,7 @@ class LimitJudge:
         if memory.unit != standing.unit:
             memory.peak = limit_in_unit(memory.peak, standing.quantity, memory.unit, standing.unit)
             memory.onset_limit = limit_in_unit(memory.onset_limit, standing.quantity, memory.unit, standing.unit)
-            memory.worst_margin = band_in_unit(memory.worst_margin, memory.unit, standing.unit)
+            memory.worst_margin = difference_in_unit(memory.worst_margin, memory.unit, standing.unit)
             memory.unit = standing.unit
 
     def _keep_peak(self, value: float, margin: float) -> None:

@@ -9,6 +9,7 @@ from typing import TextIO
 import numpy as np
 from numpy.typing import NDArray
 
+from airfield_board.configuration.defaults import default_instruments
 from airfield_board.errors import UserError
 from airfield_board.observations.conditions import ConditionsTable, conditions_of
 from airfield_board.observations.formats.reading import ReadResult
@@ -16,7 +17,6 @@ from airfield_board.observations.observation import NO_TIME_US, ObservationTable
 from airfield_board.observations.quality import check
 from airfield_board.observations.quality_judgement import QualityRules
 from airfield_board.observations.quality_memory import QualityMemory
-from airfield_board.session.instruments import STATED_BY_DEFAULT
 
 READ = ("time", "altimeter_hpa", "temperature_c", "dewpoint_c", "elevation_m")
 RESULTS = (
@@ -92,7 +92,7 @@ def compute(read: ReadResult, elevation_m: float | None, now_us: int) -> Compute
         temperature_resolution_c=table.temperature_resolution_c,
         dewpoint_resolution_c=table.dewpoint_resolution_c,
         elevation_m=elevations_m,
-        instruments=STATED_BY_DEFAULT,
+        instruments=default_instruments(),
     )
     quality = ["valid"] * len(table)
     for row in np.flatnonzero(verdict != Verdict.VALID).tolist():

@@ -3,8 +3,9 @@
 import numpy as np
 import pytest
 
+from airfield_board.configuration.differences import difference_in_unit, limit_in_unit
 from airfield_board.configuration.model import Quantity, Unit
-from airfield_board.limits.kinds import KINDS, Air, axis_ft, band_in_unit, limit_in_unit
+from airfield_board.limits.kinds import KINDS, Air, axis_ft
 from airfield_board.observations.conditions import ConditionsTable, conditions_of
 from airfield_board.observations.conditions import density_altitude_at_temperature as density_altitude_at
 from tests.limits.record import changes_of, limit_of, valid
@@ -74,7 +75,7 @@ def test_a_limit_in_another_unit(limit: float, quantity: Quantity, unit: Unit, w
     ],
 )
 def test_a_band_in_another_unit_is_a_difference(band: float, unit: Unit, wanted: Unit, expected: float) -> None:
-    assert band_in_unit(band, unit, wanted) == pytest.approx(expected)
+    assert difference_in_unit(band, unit, wanted) == pytest.approx(expected)
 
 
 def test_a_limit_in_metres() -> None:
@@ -120,11 +121,10 @@ AIR = Air(altimeter_hpa=1016.3, elevation_m=1255.8, dewpoint_c=4.0)
     ],
 )
 def test_at_the_hold_temperature_the_value_is_the_limit(quantity: Quantity, unit: Unit, limit: float) -> None:
-    temperature_c = KINDS[quantity].hold_temperature_c(limit, unit, AIR)
-    assert temperature_c is not None
+    temperature_c = KINDS[quantity].hold_temperature_c(np.array([limit]), unit, AIR)
     there = conditions_of(
         altimeter_hpa=np.array([AIR.altimeter_hpa]),
-        temperature_c=np.array([temperature_c]),
+        temperature_c=temperature_c,
         dewpoint_used_c=np.array([4.0]),
         temperature_resolution_c=np.array([np.nan]),
         dewpoint_resolution_c=np.array([np.nan]),
@@ -133,15 +133,16 @@ def test_at_the_hold_temperature_the_value_is_the_limit(quantity: Quantity, unit
     )
     values, _ = KINDS[quantity].values(there, unit)
     assert values == pytest.approx([limit], abs=0.01)
-    assert axis_ft(KINDS[quantity], limit, unit, AIR) == pytest.approx(float(there.density_altitude_ft[0]), abs=0.01)
+    assert axis_ft(temperature_c, AIR) == pytest.approx(there.density_altitude_ft, abs=0.01)
 
 
 def test_temperature_does_not_matter_to_a_pressure_altitude_limit() -> None:
     kind = KINDS[Quantity.PRESSURE_ALTITUDE]
-    assert kind.hold_temperature_c(4500.0, "ft", AIR) is None
-    assert axis_ft(kind, 4500.0, "ft", AIR) is None
+    temperatures_c = kind.hold_temperature_c(np.array([4500.0, 5000.0]), "ft", AIR)
+    assert np.isnan(temperatures_c).tolist() == [True, True]
+    assert np.isnan(axis_ft(temperatures_c, AIR)).tolist() == [True, True]
 
 
 def test_a_limit_that_no_air_reaches_has_no_place_on_the_axis() -> None:
     assert np.isnan(density_altitude_at(-300.0, 1013.25, 0.0, None))
-    assert axis_ft(KINDS[Quantity.TEMPERATURE], -300.0, "c", AIR) is None
+    assert np.isnan(axis_ft(KINDS[Quantity.TEMPERATURE].hold_temperature_c(np.array([-300.0]), "c", AIR), AIR)).all()
