@@ -4,12 +4,11 @@ import logging
 from collections.abc import Callable, Sequence
 from dataclasses import dataclass
 from datetime import datetime, timedelta
-from functools import partial
 from zoneinfo import ZoneInfo
 
 from PySide6.QtCore import Qt, QTimer, Signal
-from PySide6.QtGui import QAction, QActionGroup, QCloseEvent, QKeySequence
-from PySide6.QtWidgets import QMainWindow, QMenu, QMessageBox, QStackedWidget, QVBoxLayout, QWidget
+from PySide6.QtGui import QCloseEvent
+from PySide6.QtWidgets import QMainWindow, QMessageBox, QStackedWidget, QVBoxLayout, QWidget
 
 from airfield_board.clock import Clock
 from airfield_board.session.board_state import BoardState, Mode, StatusChange
@@ -24,6 +23,7 @@ from airfield_board.window.dialogs import (
     plain_label,
 )
 from airfield_board.window.entry import TypedObservation
+from airfield_board.window.menus import KEYS, Menus
 from airfield_board.window.notice_bar import NoticeBar
 from airfield_board.window.theme import SchemeChoice, apply_scheme, scheme_of
 from airfield_board.window.worker import Answer, Request, Worker
@@ -36,16 +36,6 @@ _RESUME_AFTER_S = 30.0
 _UNDO_FOR_S = 10.0
 _CLOSE_WAIT_S = 5.0
 _TRUST_NOTHING = timedelta(seconds=-1)
-_KEYS = (
-    ("1, 2", "Board page, Margin page"),
-    ("Up, Down", "move among the rows"),
-    ("A", "acknowledge the focused status change, or the newest"),
-    ("Shift+A", "acknowledge all"),
-    ("P", "read the source now"),
-    ("E", "type in an observation"),
-    ("M", "messages, and the rows that were not used"),
-    ("F11", "full screen"),
-)
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -114,7 +104,7 @@ class MainWindow(QMainWindow):
         column.addWidget(self._stack, 1)
         column.addWidget(self.notice)
         self.setCentralWidget(middle)
-        self._make_menus(choice, replayable=replayable)
+        self._menus = Menus(self, choice, replayable=replayable)
         self.choose_scheme(choice)
 
         self.view.acknowledge_asked.connect(self._acknowledge_asked)
@@ -234,7 +224,7 @@ class MainWindow(QMainWindow):
 
     def show_keys(self) -> None:
         """Say which key does what."""
-        self._tell("Keys", "\n".join(f"{key}:  {does}" for key, does in _KEYS))
+        self._tell("Keys", "\n".join(f"{key}:  {does}" for key, does in KEYS))
 
     def show_about(self) -> None:
         """Say what the program is, and what it is not."""
@@ -245,8 +235,9 @@ class MainWindow(QMainWindow):
             f"{ADVISES}\n\n{formatting.CAUTION}{invented}",
         )
 
-    def set_full_screen(self, full: bool) -> None:
+    def toggle_full_screen(self) -> None:
         """Show the board alone on the whole screen, or as before."""
+        full = not self.isFullScreen()
         self.menuBar().setVisible(not full)
         if full:
             self.showFullScreen()
@@ -273,7 +264,7 @@ class MainWindow(QMainWindow):
         self.tick()
         if self._messages is not None:
             self._messages.show_state(state)
-        self._refresh_actions(state)
+        self._menus.refresh(state)
         if state.waiting != self._waiting_shown:
             self._waiting_shown = state.waiting
             if state.waiting:
@@ -367,57 +358,6 @@ class MainWindow(QMainWindow):
         self._messages = None
 
     # The window itself.
-
-    def _make_menus(self, choice: SchemeChoice, *, replayable: bool) -> None:
-        bar = self.menuBar()
-        observation = bar.addMenu("&Observation")
-        self._add(observation, "&Read the source now", self.poll, "P")
-        self._add(observation, "&Type one in …", self.type_in, "E")
-        self._add(observation, "&Messages and unused rows …", self.show_messages, "M")
-        changes = bar.addMenu("&Changes")
-        self._acknowledge_action = self._add(changes, "&Acknowledge …", self.acknowledge, "A")
-        self._acknowledge_all_action = self._add(changes, "Acknowledge a&ll …", self.acknowledge_all, "Shift+A")
-        settings = bar.addMenu("&Settings")
-        self._waiting_action = self._add(settings, "&Waiting …", self.show_waiting_settings)
-        view = bar.addMenu("&View")
-        self._add(view, "&Board", lambda: self.show_page(0), "1")
-        self._add(view, "&Margin", lambda: self.show_page(1), "2")
-        view.addSeparator()
-        group = QActionGroup(self)
-        for each, words in (
-            (SchemeChoice.LIGHT, "&Light"),
-            (SchemeChoice.DARK, "&Dark"),
-            (SchemeChoice.SYSTEM, "&As the system"),
-        ):
-            action = self._add(view, words, partial(self.choose_scheme, each))
-            action.setCheckable(True)
-            action.setChecked(each is choice)
-            group.addAction(action)
-        view.addSeparator()
-        full = self._add(view, "&Full screen", lambda: self.set_full_screen(not self.isFullScreen()), "F11")
-        full.setObjectName("full screen")
-        if replayable:
-            demo = bar.addMenu("&Demo")
-            self._add(demo, "&Play the day again", self.play_again)
-        about = bar.addMenu("&Help")
-        self._add(about, "&Keys", self.show_keys)
-        self._add(about, "&About", self.show_about)
-
-    def _add(self, menu: QMenu, words: str, act: Callable[[], object], key: str = "") -> QAction:
-        action = QAction(words, self)
-        if key:
-            action.setShortcut(QKeySequence(key))
-        action.triggered.connect(lambda: act())
-        menu.addAction(action)
-        self.addAction(action)  # so that the key works where the menu is hidden
-        return action
-
-    def _refresh_actions(self, state: BoardState) -> None:
-        count = sum(change.open for change in state.changes)
-        self._acknowledge_action.setEnabled(count > 0)
-        self._acknowledge_all_action.setEnabled(count > 0)
-        self._waiting_action.setEnabled(bool(state.waiting))
-        self._waiting_action.setText(f"&Waiting ({len(state.waiting)}) …" if state.waiting else "&Waiting …")
 
     def _in_demo(self) -> bool:
         return self._state is not None and self._state.mode is Mode.DEMO

@@ -335,7 +335,7 @@ def test_f11_shows_the_board_alone_and_back(desk: Desk) -> None:
     press(desk, Qt.Key.Key_F11)
     desk.qtbot.waitUntil(desk.window.isFullScreen)
     assert not desk.window.menuBar().isVisible()
-    desk.window.set_full_screen(False)
+    desk.window.toggle_full_screen()
     desk.qtbot.waitUntil(lambda: not desk.window.isFullScreen())
     assert desk.window.menuBar().isVisible()
 

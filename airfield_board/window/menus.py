@@ -1,0 +1,94 @@
+"""The window's menus and keys."""
+
+from collections.abc import Callable
+from functools import partial
+from typing import TYPE_CHECKING
+
+from PySide6.QtGui import QAction, QActionGroup, QKeySequence
+from PySide6.QtWidgets import QMenu
+
+from airfield_board.session.board_state import BoardState
+from airfield_board.window.theme import SchemeChoice
+
+if TYPE_CHECKING:
+    from airfield_board.window.main_window import MainWindow
+
+KEYS = (
+    ("1, 2", "Board page, Margin page"),
+    ("Up, Down", "move among the rows"),
+    ("A", "acknowledge the focused status change, or the newest"),
+    ("Shift+A", "acknowledge all"),
+    ("P", "read the source now"),
+    ("E", "type in an observation"),
+    ("M", "messages, and the rows that were not used"),
+    ("F11", "full screen"),
+)
+"""Which key does what, in words."""
+
+
+class Menus:
+    """What the menus of a window hold; every entry works by its key too, where the menu is hidden.
+
+    Parameters
+    ----------
+    window
+        Whose menu bar it fills.
+    choice
+        The look that is ticked first.
+    replayable
+        Whether there is a demo to play again.
+    """
+
+    def __init__(self, window: "MainWindow", choice: SchemeChoice, *, replayable: bool) -> None:
+        self._window = window
+        bar = window.menuBar()
+        observation = bar.addMenu("&Observation")
+        self._add(observation, "&Read the source now", window.poll, "P")
+        self._add(observation, "&Type one in …", window.type_in, "E")
+        self._add(observation, "&Messages and unused rows …", window.show_messages, "M")
+        changes = bar.addMenu("&Changes")
+        self._acknowledge = self._add(changes, "&Acknowledge …", window.acknowledge, "A")
+        self._acknowledge_all = self._add(changes, "Acknowledge a&ll …", window.acknowledge_all, "Shift+A")
+        settings = bar.addMenu("&Settings")
+        self._waiting = self._add(settings, "&Waiting …", window.show_waiting_settings)
+        self._fill_view(bar.addMenu("&View"), choice)
+        if replayable:
+            self._add(bar.addMenu("&Demo"), "&Play the day again", window.play_again)
+        about = bar.addMenu("&Help")
+        self._add(about, "&Keys", window.show_keys)
+        self._add(about, "&About", window.show_about)
+
+    def refresh(self, state: BoardState) -> None:
+        """Offer what there is to do on a newer board."""
+        waiting = any(change.open for change in state.changes)
+        self._acknowledge.setEnabled(waiting)
+        self._acknowledge_all.setEnabled(waiting)
+        self._waiting.setEnabled(bool(state.waiting))
+        self._waiting.setText(f"&Waiting ({len(state.waiting)}) …" if state.waiting else "&Waiting …")
+
+    def _fill_view(self, menu: QMenu, choice: SchemeChoice) -> None:
+        window = self._window
+        self._add(menu, "&Board", partial(window.show_page, 0), "1")
+        self._add(menu, "&Margin", partial(window.show_page, 1), "2")
+        menu.addSeparator()
+        group = QActionGroup(window)
+        for each, words in (
+            (SchemeChoice.LIGHT, "&Light"),
+            (SchemeChoice.DARK, "&Dark"),
+            (SchemeChoice.SYSTEM, "&As the system"),
+        ):
+            action = self._add(menu, words, partial(window.choose_scheme, each))
+            action.setCheckable(True)
+            action.setChecked(each is choice)
+            group.addAction(action)
+        menu.addSeparator()
+        self._add(menu, "&Full screen", window.toggle_full_screen, "F11")
+
+    def _add(self, menu: QMenu, words: str, act: Callable[[], object], key: str = "") -> QAction:
+        action = QAction(words, self._window)
+        if key:
+            action.setShortcut(QKeySequence(key))
+        action.triggered.connect(lambda: act())
+        menu.addAction(action)
+        self._window.addAction(action)
+        return action
