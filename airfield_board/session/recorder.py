@@ -74,7 +74,7 @@ class Recorder:
         self._settings_since = now
         kept = settings_from_history(recording.history)
         start = restored(recording.history, airfield if kept is None else kept.in_force, now)
-        self._settings, new_version = settings_at_start(kept, airfield)
+        self._settings, new_version = settings_at_start(kept, airfield, now)
         self._judge: Judge = start.judge
         self._day: DayRecord = start.day
         self._status: StatusLog = start.status
@@ -244,7 +244,7 @@ class Recorder:
                 body: dict[str, Json] = {"topic": "settings", "text": reading.refused}
                 self._write([Record(kind=RecordKind.MESSAGE, at=now, body=body)], (), (), now)
         if reading.airfield is not None:
-            self._settings.take(reading.airfield)
+            self._settings.take(reading.airfield, now)
             self._put_in_force(configuration_records(*reading.airfield, now), now)
 
     def _put_in_force(self, records: list[Record], now: datetime) -> None:

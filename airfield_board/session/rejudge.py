@@ -86,7 +86,7 @@ class SettingsReader:
         if self.settings is None:
             self.settings = Settings(airfield)
         else:
-            self.settings.take(airfield)
+            self.settings.take(airfield, record.at)
         return True
 
 

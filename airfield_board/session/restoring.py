@@ -63,7 +63,7 @@ def settings_from_history(history: History | None) -> Settings | None:
     return reader.settings
 
 
-def settings_at_start(kept: Settings | None, airfield: Airfield) -> tuple[Settings, bool]:
+def settings_at_start(kept: Settings | None, airfield: Airfield, now: datetime) -> tuple[Settings, bool]:
     """Go on with what was in force: what a file has loosened since waits, as if the program had run.
 
     Returns
@@ -74,7 +74,7 @@ def settings_at_start(kept: Settings | None, airfield: Airfield) -> tuple[Settin
     if kept is None:
         return Settings(airfield), True
     if _hashes(kept.read) != _hashes(airfield):
-        kept.take(airfield)
+        kept.take(airfield, now)
         return kept, True
     # The same texts; their paths may have moved with them.
     return (kept if kept.waiting else Settings(airfield)), False

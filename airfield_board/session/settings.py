@@ -1,9 +1,12 @@
 """Profile and fleet while the program runs: what is in force, what waits, what was refused."""
 
 from dataclasses import dataclass
+from datetime import datetime
 from pathlib import Path
 from typing import TypeAlias
+from zoneinfo import ZoneInfo
 
+from airfield_board.clock import local_day
 from airfield_board.configuration.model import Fleet, Profile
 from airfield_board.configuration.profile import load_airfield
 from airfield_board.configuration.reload import compare_and_merge
@@ -30,9 +33,15 @@ class Settings:
         self.read = first
         self.waiting: tuple[SettingChange, ...] = ()
 
-    def take(self, read: Airfield) -> None:
-        """Take a new valid version: what it tightens acts at once, what it loosens waits."""
-        merge = compare_and_merge(self.in_force, read)
+    def take(self, read: Airfield, at: datetime) -> None:
+        """Take a new valid version: what it tightens acts at once, what it loosens waits.
+
+        Parameters
+        ----------
+        at
+            When it was read: a temporary limit that has run out by then loosens nothing when it goes.
+        """
+        merge = compare_and_merge(self.in_force, read, today=local_day(at, ZoneInfo(self.in_force[0].time_zone)))
         self.in_force = merge.effective
         self.read = read
         self.waiting = tuple(

@@ -83,7 +83,7 @@ def _history(profile: Profile, notes: list[str]) -> History | None:
 def _present(airfield: Airfield, table: ObservationTable, history: History | None, now: datetime) -> BoardState:
     kept = settings_from_history(history)
     start = restored(history, airfield if kept is None else kept.in_force, now)
-    in_force = settings_at_start(kept, airfield)[0].in_force
+    in_force = settings_at_start(kept, airfield, now)[0].in_force
     now_us = us_from_time(now)
     changes, _ = start.judge.change_settings(*in_force, now_us)
     start.day.add_changes(changes)

@@ -143,7 +143,7 @@ def test_what_was_recorded_judged_anew_is_the_same(field: Field) -> None:
     recorder.poll()
     field.move_to(80)
     recorder.poll()
-    recorder.type_in(time=field.at(79), altimeter_hpa=1013.0, temperature_c=23.0, dewpoint_c=None, initials="RK")
+    recorder.type_in(time=field.at(79), altimeter_hpa=1013.0, temperature_c=38.0, dewpoint_c=None, initials="RK")
     recorder.close()
     history = History.open_read_only(field.history)
     anew = judge_anew(history.records())
