@@ -12,7 +12,7 @@ from zoneinfo import ZoneInfo
 from airfield_board.clock import SystemClock
 from airfield_board.configuration.profile import load_airfield
 from airfield_board.errors import UserError
-from airfield_board.session.board_state import BoardState, Mode
+from airfield_board.session.board_state import BoardState, Mode, StatusChange
 from airfield_board.session.recorder import Recorder
 from airfield_board.training.demo import DEMO_POLL_S, DEMO_SPEED, DemoDay, running_clock, stepped_day
 from airfield_board.window import formatting
@@ -145,17 +145,22 @@ def write_changes(boards: Iterable[BoardState], out: TextIO) -> BoardState:
     last: BoardState | None = None
     for last in boards:
         zone = ZoneInfo(last.airfield.time_zone)
-        air = last.conditions
-        height = f"density altitude {formatting.altitude(air.density_altitude_ft)} ft" if air is not None else ""
         for change in reversed(last.changes):
             if change.number not in seen:
                 seen.add(change.number)
                 when, word = formatting.clock(change.time, zone), formatting.STATE_WORDS[change.state]
-                out.write(f"{when}  {word:<10}  {change.label:<42}  {height}".rstrip() + "\n")
+                out.write(f"{when}  {word:<10}  {change.label:<42}  {_height(last, change)}".rstrip() + "\n")
                 out.flush()
     if last is None:
         raise ValueError("no board was played")
     return last
+
+
+def _height(state: BoardState, change: StatusChange) -> str:
+    """Say at what density altitude it changed, where the board is that of the change."""
+    if state.conditions is None or state.observation is None or state.observation.time != change.time:
+        return ""
+    return f"density altitude {formatting.altitude(state.conditions.density_altitude_ft)} ft"
 
 
 def _paint(state: BoardState, folder: Path, scheme: str) -> Path:
