@@ -33,7 +33,7 @@ _MEBIBYTE = 1024 * 1024
 DEFAULT_REACH_US = 36 * HOUR_US
 _PATIENCE_S = 1.5
 _ATTEMPTS = 4
-_BETWEEN_ATTEMPTS_S = 0.015
+_SETTLING_S = 0.02
 _OLDEST_ROWS_ASKED = 5
 _LATEST_FILE_TIME_US = us_from_time(datetime(2200, 1, 1, tzinfo=UTC))
 
@@ -156,8 +156,9 @@ class FileSource:
         Opens the file.
     patience_s
         How long `read` waits for the file's disk at most.
-    between_attempts_s
-        Pause before a file that was being written is looked at again, within one look.
+    settling_s
+        For how long what was read must stand before it counts, and the pause before a file that did not is looked at
+        again, within one look.
     most_bytes
         How much of the file's end is read at most.
     """
@@ -170,7 +171,7 @@ class FileSource:
         *,
         opener: Opener = open_file,
         patience_s: float = _PATIENCE_S,
-        between_attempts_s: float = _BETWEEN_ATTEMPTS_S,
+        settling_s: float = _SETTLING_S,
         most_bytes: int = MOST_BYTES,
     ) -> None:
         self._path = path
@@ -178,7 +179,7 @@ class FileSource:
         self._reach_us = reach_us
         self._opener = opener
         self._patience_s = patience_s
-        self._between_attempts_s = between_attempts_s
+        self._settling_s = settling_s
         self._most_bytes = most_bytes
         self._call: _Call | None = None
         self._last: _Look | None = None
@@ -248,7 +249,7 @@ class FileSource:
         for _ in range(_ATTEMPTS - 1):
             if look.settled:
                 break
-            time.sleep(self._between_attempts_s)
+            time.sleep(self._settling_s)
             look = self._attempt(since_us, last)
         return look
 
@@ -281,15 +282,20 @@ class FileSource:
             device=before.st_dev,
             end_digest=hashlib.blake2b(end).digest(),
         )
-        if last is not None and imprint == last.imprint and since_us >= last.since_us and _same(before, file):
+        if (
+            last is not None
+            and imprint == last.imprint
+            and since_us >= last.since_us
+            and _same(before, fstat(file.fileno()))
+        ):
             return replace(last, reading=replace(last.reading, fresh=False), settled=True)
         facts = SourceReading(file_time=_file_time(before), size=size)
         try:
-            result, start = self._read_back(file, before, end, since_us)
+            result, start, content = self._read_back(file, before, end, since_us)
         except UserError as error:
             reading = replace(facts, messages=tuple(str(error).splitlines()))
             return _Look(reading=reading, imprint=imprint, since_us=NO_TIME_US, settled=False)
-        if result is None:
+        if not self._holds_still(file, before, start, content):
             return self._trouble("is being written; it is read at the next poll", settled=False)
         messages = []
         if result.unfinished:
@@ -314,14 +320,8 @@ class FileSource:
 
     def _read_back(
         self, file: BinaryIO, before: stat_result, end: bytes, since_us: int
-    ) -> tuple[ReadResult | None, int]:
-        """Read from the end of the file back as far as is needed.
-
-        Returns
-        -------
-        tuple of ReadResult or None, and int
-            What was read, None where the file changed meanwhile; and the place in the file where it begins.
-        """
+    ) -> tuple[ReadResult, int, bytes]:
+        """Read from the end of the file back as far as is needed: what was read, where it begins, and its bytes."""
         size = before.st_size
         head = end if size <= len(end) else _read_at(file, 0, HEAD_BYTES)
         rules = self._reading_rules(before)
@@ -336,16 +336,26 @@ class FileSource:
         while True:
             start = max(size - min(wanted, self._most_bytes), 0)
             content = end if size - start == len(end) else _read_at(file, start, size)
-            if len(content) != size - start or not _same(before, file):
-                return None, start
             if start:
                 cut = content.find(b"\n") + 1 or len(content)
                 content = content[cut:]
                 start += cut
             result = read_section(Section(content=content, start=start, head=head), rules)
             if not start or wanted >= self._most_bytes or _reaches(result, since_us):
-                return result, start
+                return result, start, content
             wanted *= _GROWTH
+
+    def _holds_still(self, file: BinaryIO, before: stat_result, start: int, content: bytes) -> bool:
+        """Whether what was read still stands there a moment later; a file that only grew meanwhile holds still.
+
+        A writer at work in the middle of a row cannot be told from one that has finished but by giving it that moment.
+        """
+        time.sleep(self._settling_s)
+        size = before.st_size
+        again = _read_at(file, start, size)
+        after = fstat(file.fileno())
+        grew = after.st_size > size
+        return len(content) == size - start and again == content and (grew or _same(before, after))
 
     def _reading_rules(self, found: stat_result) -> ReadingRules:
         return ReadingRules(
@@ -378,8 +388,7 @@ def _read_at(file: BinaryIO, start: int, end: int) -> bytes:
     return b"".join(parts)
 
 
-def _same(before: stat_result, file: BinaryIO) -> bool:
-    after = fstat(file.fileno())
+def _same(before: stat_result, after: stat_result) -> bool:
     return (before.st_size, before.st_mtime_ns) == (after.st_size, after.st_mtime_ns)
 
 

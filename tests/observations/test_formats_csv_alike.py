@@ -93,13 +93,13 @@ def assert_alike(text: str) -> None:
         assert repr(fast) == repr(slow)
 
 
-@settings(max_examples=300)
+@settings(max_examples=150)
 @given(st.lists(ordinary_lines, max_size=6))
 def test_ordinary_rows_are_read_alike(lines: list[str]) -> None:
     assert_alike(HEAD + "\n".join(lines))
 
 
-@settings(max_examples=400)
+@settings(max_examples=200)
 @given(st.lists(st.one_of(ordinary_lines, odd_lines), max_size=6), st.sampled_from(["\n", "\r\n"]))
 def test_odd_rows_are_read_alike(lines: list[str], line_end: str) -> None:
     assert_alike(HEAD + line_end.join(line.replace("\n", " ") for line in lines) + line_end)

@@ -41,7 +41,7 @@ _BYTE_ORDER_MARK = b"\xef\xbb\xbf"
 _HEAD = re.compile(r"\s*(?:(?:METAR|SPECI)\s+)?(?:COR\s+)?([A-Z][A-Z0-9]{3})\s+([0-9]{6}Z)(?![^\s])")
 _NAMED_HEAD = re.compile(r"\s*(?:METAR|SPECI)\s+(?:COR\s+)?([A-Z][A-Z0-9]{3})(?![^\s])")
 _BULLETIN_LINE = re.compile(r"\s*(?:METAR|SPECI|[A-Z]{4}[0-9]{2}\s+[A-Z]{4}\s+[0-9]{6}(?:\s+[A-Z]{3})?)\s*")
-_PIECE = re.compile(rb"([^=\n]*)(=|\n|\Z)")
+_END_OF_PIECE = re.compile(rb"[=\n]")
 
 _TEMPERATURE = re.compile(r"(M?[0-9]{2}|//)/(M?[0-9]{2}|//)?")
 _INCHES = re.compile(r"A([0-9]{4})")
@@ -120,19 +120,20 @@ def read_metar(section: Section, rules: ReadingRules) -> ReadResult:
 
 
 def _pieces(section: Section) -> Iterator[_Piece]:
+    """Cut a text at line ends and equals signs; the last piece, which may be empty, has neither."""
     content = section.content
     at = len(_BYTE_ORDER_MARK) if not section.start and content.startswith(_BYTE_ORDER_MARK) else 0
-    for match in _PIECE.finditer(content, at):
-        found = match[1]
-        end = match.start() + len(found.rstrip())
-        yield _Piece(
-            text=found.decode("utf-8", "replace").strip().upper(),
-            start=min(match.start() + len(found) - len(found.lstrip()), end),
-            end=end,
-            ended=match[2] == b"=",
-        )
-        if not match[2]:
-            return
+    for mark in _END_OF_PIECE.finditer(content, at):
+        yield _piece(content, at, mark.start(), ended=mark[0] == b"=")
+        at = mark.end()
+    yield _piece(content, at, len(content), ended=False)
+
+
+def _piece(content: bytes, start: int, end: int, *, ended: bool) -> _Piece:
+    found = content[start:end]
+    bare = found.strip()
+    start += found.find(bare)
+    return _Piece(text=bare.decode("utf-8", "replace").upper(), start=start, end=start + len(bare), ended=ended)
 
 
 def _reports(section: Section, rules: ReadingRules) -> tuple[list[list[_Piece]], bool]:
