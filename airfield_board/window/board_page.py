@@ -1,15 +1,15 @@
 """The Board page: the day plot, its axes, and the rows that hang on it."""
 
 import math
-from datetime import date, timedelta
+from datetime import date, datetime, timedelta
 from typing import TYPE_CHECKING
 
-from PySide6.QtCore import QRectF, QTimer, Signal
+from PySide6.QtCore import QRectF, QSize, QTimer, Signal
 from PySide6.QtGui import QColor, QPainter, QResizeEvent, QShowEvent
 from PySide6.QtWidgets import QWidget
 
 from airfield_board.clock import local_day
-from airfield_board.session.board_state import OperationLine
+from airfield_board.session.board_state import BoardState, OperationLine
 from airfield_board.units import ft_from_m
 from airfield_board.window import formatting
 from airfield_board.window.axes import AltitudeAxis, TimeAxis, board_range, day_bounds, hour_marks
@@ -20,7 +20,7 @@ from airfield_board.window.fonts import MEDIUM
 from airfield_board.window.lettering import Lettering, baseline_for_middle, width_of
 from airfield_board.window.no_data_card import NoDataCard
 from airfield_board.window.palette import Palette
-from airfield_board.window.reading import View
+from airfield_board.window.reading import Cause, View
 from airfield_board.window.row_panel import GUTTER_PX, Headings, RowPanel
 from airfield_board.window.row_words import tip_of, words_of
 
@@ -56,6 +56,7 @@ class BoardPage(Canvas):
         self.rows = RowPanel(self)
         self.card = NoDataCard(self)
         self._view: View | None = None
+        self._shown: tuple[BoardState, datetime, Cause, QSize] | None = None
         self._scene: DayScene | None = None
         self._plot: DayPlot | None = None
         self._range: tuple[date, str, tuple[float, float]] | None = None
@@ -71,8 +72,12 @@ class BoardPage(Canvas):
         self._show_plot()
 
     def show_view(self, view: View) -> None:
-        """Show another state or time."""
+        """Show another state or time; nothing here changes within a minute but by the state or its reading."""
+        shown = (view.state, view.now.replace(second=0, microsecond=0), view.reading.cause, self.size())
         self._view = view
+        if self._shown is not None and self._shown[0] is view.state and self._shown[1:] == shown[1:]:
+            return
+        self._shown = shown
         words = [words_of(row, view) for row in view.rows]
         conditions = view.state.conditions if view.trusted else None
         level_ft = conditions.density_altitude_ft if conditions is not None else None

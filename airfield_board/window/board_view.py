@@ -120,8 +120,7 @@ class BoardView(Canvas):
         self.message.show_view(view)
         self.changes.show_view(view)
         self.overlay.show_view(view)
-        for page in (self.board, self.margin):
-            page.show_view(view)
+        self._show_page()
 
     def set_watchdog(self, watchdog: timedelta | None) -> None:
         """Set the longest time between a state and now."""
@@ -136,6 +135,7 @@ class BoardView(Canvas):
         """Show another page, by its place."""
         self.pages.setCurrentIndex(page)
         self.header.set_page(page)
+        self._show_page()
 
     def set_picture(self, void_after: datetime | None) -> None:
         """Make this a picture: no buttons, and the times from which and until which it holds.
@@ -152,10 +152,14 @@ class BoardView(Canvas):
         self.margin.search.hide()
         self.update()
 
-    def ensure_plots(self) -> None:
-        """Make the plots now, rather than after the first painting."""
-        self.board.ensure_plot()
-        self.margin.ensure_plot()
+    def ensure_plot(self) -> None:
+        """Make the plot of the page that is seen now, rather than after the first painting."""
+        (self.board, self.margin)[self.pages.currentIndex()].ensure_plot()
+
+    def _show_page(self) -> None:
+        """Give the view to the page that is seen; the other one gets it when it is."""
+        if self._view is not None:
+            (self.board, self.margin)[self.pages.currentIndex()].show_view(self._view)
 
     def _recolour(self) -> None:
         view = self._view

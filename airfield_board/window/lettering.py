@@ -127,7 +127,7 @@ class Lettering:
         room = advance if room_px is None else room_px
         room_left = left if side == "left" else x - room if side == "right" else x - room / 2
         self._draw(left, baseline, shown, colour, font(size_px, weight))
-        if shown:
+        if full:
             self.painted.append(
                 PaintedText(
                     text=shown,

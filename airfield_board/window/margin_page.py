@@ -1,14 +1,14 @@
 """The Margin page: how far up to eight operations are from their own limits, over the day."""
 
 from dataclasses import replace
-from datetime import timedelta
+from datetime import datetime, timedelta
 from typing import TYPE_CHECKING
 
-from PySide6.QtCore import QRectF, QTimer, Signal
+from PySide6.QtCore import QRectF, QSize, QTimer, Signal
 from PySide6.QtGui import QColor, QPainter, QResizeEvent, QShowEvent
 from PySide6.QtWidgets import QLineEdit, QWidget
 
-from airfield_board.session.board_state import OperationLine
+from airfield_board.session.board_state import BoardState, OperationLine
 from airfield_board.window import formatting
 from airfield_board.window.axes import AltitudeAxis, TimeAxis, day_bounds, hour_marks
 from airfield_board.window.canvas import Canvas
@@ -29,7 +29,7 @@ from airfield_board.window.margin_scene import (
 from airfield_board.window.no_data_card import NoDataCard
 from airfield_board.window.operation_picker import Choice, OperationPicker
 from airfield_board.window.palette import Palette
-from airfield_board.window.reading import View
+from airfield_board.window.reading import Cause, View
 from airfield_board.window.row_layout import Density
 from airfield_board.window.row_panel import GUTTER_PX, Headings, RowPanel, columns_for
 from airfield_board.window.row_words import RowWords, tip_of, words_of
@@ -68,6 +68,7 @@ class MarginPage(Canvas):
         self.picker = OperationPicker(self)
         self.search = QLineEdit(self)
         self._view: View | None = None
+        self._shown: tuple[BoardState, datetime, Cause, QSize] | None = None
         self._keys: tuple[str, ...] | None = None
         self._rows_height = 0
         self._scene: MarginScene | None = None
@@ -107,11 +108,18 @@ class MarginPage(Canvas):
         elif len(keys) < CHOSEN_AT_MOST:
             self._keys = (*keys, key)
         if self._view is not None:
-            self.show_view(self._view)
+            self._show(self._view)
 
     def show_view(self, view: View) -> None:
-        """Show another state or time."""
+        """Show another state or time; nothing here changes within a minute but by the state or its reading."""
+        shown = (view.state, view.now.replace(second=0, microsecond=0), view.reading.cause, self.size())
         self._view = view
+        if self._shown is not None and self._shown[0] is view.state and self._shown[1:] == shown[1:]:
+            return
+        self._shown = shown
+        self._show(view)
+
+    def _show(self, view: View) -> None:
         if self._keys is None and view.trusted:
             # Fixed at the first trustworthy state, so that the page does not change under the eyes.
             self._keys = first_choice(view.state.operations, view.state.curve) or None
@@ -227,7 +235,7 @@ class MarginPage(Canvas):
             self._plot = MarginPlot(self)
             self._plot.lower()
             if self._view is not None:
-                self.show_view(self._view)
+                self._show(self._view)
             self._plot.show()
 
     def showEvent(self, event: QShowEvent) -> None:

@@ -3,8 +3,8 @@
 from datetime import datetime, timedelta
 from pathlib import Path
 
-from PySide6.QtCore import QPoint, QSize
-from PySide6.QtGui import QImage, QRegion
+from PySide6.QtCore import QByteArray, QPoint, QSize
+from PySide6.QtGui import QImage, QImageWriter, QRegion
 from PySide6.QtWidgets import QApplication, QWidget
 
 from airfield_board.session.board_state import BoardState
@@ -24,7 +24,7 @@ def paint_page(
     view.set_page(page)
     view.show_state(state, now)
     view.set_picture(void_after(state, now, trusted=view.view is not None and view.view.trusted))
-    view.ensure_plots()
+    view.ensure_plot()
     image = image_of(view)
     view.deleteLater()
     return image
@@ -58,8 +58,9 @@ def save_page(
         Where the file cannot be written.
     """
     image = paint_page(state, now, page=page, size_px=size_px, scheme=scheme)
-    if not image.save(str(path), b"PNG"):
-        raise OSError(f"cannot write the picture {path}")
+    writer = QImageWriter(str(path), QByteArray(b"PNG"))
+    if not writer.write(image):
+        raise OSError(f"cannot write the picture {path}: {writer.errorString()}")
 
 
 def paint_to_file(state: BoardState, path: Path, *, size_px: tuple[int, int], scheme: str) -> None:

@@ -12,7 +12,7 @@ from PySide6.QtWidgets import QFrame, QGraphicsItem, QGraphicsPathItem, QStyleOp
 from airfield_board.limits.states import State
 from airfield_board.window.day_scene import DayScene, Shelf, Stretch, stretches_of
 from airfield_board.window.fonts import REGULAR, SEMIBOLD
-from airfield_board.window.lettering import Lettering, PaintedText, cut_to, width_of
+from airfield_board.window.lettering import Lettering, PaintedText, width_of
 from airfield_board.window.marks import mark_colour
 from airfield_board.window.palette import LIGHT, Palette
 
@@ -198,9 +198,8 @@ class DayPlot(PixelPlot):
     def _paint_callout(self, painter: QPainter, scene: DayScene, shelf: Shelf) -> None:
         colours = self._colours
         first, second = shelf.callout
-        room = self.width() - 40.0
-        first, second = cut_to(first, room, 14, SEMIBOLD), cut_to(second, room, 13)
-        width = max(width_of(first, 14, SEMIBOLD), width_of(second, 13)) + 24
+        room = self.width() - 32.0
+        width = min(max(width_of(first, 14, SEMIBOLD), width_of(second, 13)), room) + 24
         height = 48.0 if second else 28.0
         y = scene.altitude.px(shelf.axis_ft)
         top = y - height - 14 if y - height - 14 > 2 else y + 14
@@ -210,8 +209,8 @@ class DayPlot(PixelPlot):
         painter.setBrush(QColor(colours.card))
         painter.drawRoundedRect(box, 5, 5)
         letters = Lettering(painter, self.painted)
-        letters.text((left + 12, top + 19), first, colours.ink, 14, SEMIBOLD)
-        letters.text((left + 12, top + 38), second, colours.soft_ink, 13, REGULAR)
+        letters.text((left + 12, top + 19), first, colours.ink, 14, SEMIBOLD, room_px=room)
+        letters.text((left + 12, top + 38), second, colours.soft_ink, 13, REGULAR, room_px=room)
 
 
 class _Layer(pg.GraphicsObject):  # type: ignore[misc]  # pyqtgraph has no types

@@ -201,6 +201,10 @@ class RowPanel(Canvas):
         most = rows_that_fit(room_px, smallest_px, with_level=self._level is not None, with_foot=with_foot)
         return folded(self._all, most)
 
+    def choose(self, key: str) -> None:
+        """Pin a row, as Enter does."""
+        self._choose(key, pin=True)
+
     def set_empty_words(self, words: str) -> None:
         """Say what stands there when there are no rows."""
         self._empty_words = words

@@ -310,7 +310,7 @@ class ObservationStrip(Canvas):
         loud_px = min(sizes.loud_px, int((self.height() - label - 12) / 0.727 * 0.92))
         baseline = self.height() - (18.0 if self.height() >= HEIGHT_PX else 12.0)
         if content.compared:
-            loud_px, baseline = min(loud_px, 44), below - 14
+            loud_px, baseline = min(loud_px, 42), below - 17
             letters.text((left, below + 4), content.compared, colours.ink, sizes.label_px, SEMIBOLD)
         right = letters.text((left - 3, baseline), content.density_altitude, colours.ink, loud_px, SEMIBOLD)
         size = sizes.value_px - 2
