@@ -2,7 +2,7 @@
 
 import json
 import re
-from collections.abc import Mapping, Sequence
+from collections.abc import Mapping
 
 from airfield_board.errors import FileFaults
 from airfield_board.observations.formats.keys import KEYS, TIME, faults_of_names, note_on_ignored, row_of, time_of
@@ -46,6 +46,7 @@ class _Objects:
         self.ignored: dict[str, None] = {}
         self.objects = 0
         self.faults_of_names: list[str] = []
+        self._known_names: dict[tuple[str, ...], str] = {}
 
     def add(self, value: object, start: int, end: int) -> None:
         """Take one value of the file."""
@@ -53,13 +54,14 @@ class _Objects:
             self.add_fault("the value is no JSON object", start, end)
             return
         self.objects += 1
-        names = [name for name, _ in value]
-        faults = faults_of_names(names)
+        names = tuple(name for name, _ in value)
+        faults = self._known_names.get(names)
+        if faults is None:
+            # Most files have one set of keys.
+            faults = self._known_names[names] = joined(*faults_of_names(names))
+            self.ignored.update(dict.fromkeys(name for name in names if name not in KEYS and name != TIME))
         if faults:
-            self.faults_of_names.append("; ".join(faults))
-        for name in names:
-            if name not in KEYS and name != TIME:
-                self.ignored[name] = None
+            self.faults_of_names.append(faults)
         self.collector.add(_row(value, faults), start, end)
 
     def add_fault(self, fault: str, start: int, end: int) -> None:
@@ -188,11 +190,11 @@ def _byte_length(text: str) -> int:
     return len(text) if text.isascii() else len(text.encode())
 
 
-def _row(pairs: _Pairs, faults: Sequence[str]) -> ReadRow:
+def _row(pairs: _Pairs, fault_of_names: str) -> ReadRow:
     """Take one object's values; with keys that cannot be used, only its time."""
     values = dict(pairs)
     time = values.get(TIME)
-    faults = list(faults)
+    faults = [fault_of_names] if fault_of_names else []
     if not isinstance(time, str) or isinstance(time, _Number):
         if time is not None:
             faults.append("the time is no text")
