@@ -109,11 +109,11 @@ def _history_place(text: str) -> str:
 SchemaNumber = Annotated[int, AfterValidator(_schema_number), Field(json_schema_extra={"const": 1})]
 Name = Annotated[
     str,
-    AfterValidator(_name),
     Field(max_length=120, json_schema_extra={"pattern": r"^[^\s\u0000-\u001f](.*[^\s\u0000-\u001f])?$"}),
+    AfterValidator(_name),
 ]
-Remark = Annotated[str, AfterValidator(_remark), Field(max_length=1000)]
-FilePath = Annotated[str, AfterValidator(_local_path), Field(max_length=1000, json_schema_extra={"minLength": 1})]
+Remark = Annotated[str, Field(max_length=1000), AfterValidator(_remark)]
+FilePath = Annotated[str, Field(max_length=1000, json_schema_extra={"minLength": 1}), AfterValidator(_local_path)]
 HistoryPlace = Annotated[
     str, AfterValidator(_history_place), Field(max_length=1000, json_schema_extra={"minLength": 1})
 ]

@@ -11,7 +11,9 @@ from airfield_board.configuration.setting_changes import ChangeNotes
 from airfield_board.configuration.setting_texts import NONE, TAKEN_OUT, aspect_text
 
 
-def merge_fleets(old: Fleet, new: Fleet, notes: ChangeNotes, *, guarded_waits: bool, today: date | None) -> Fleet:
+def merge_fleets(
+    old: Fleet, new: Fleet, notes: ChangeNotes, *, acceptance_told: bool, guarded_waits: bool, today: date | None
+) -> Fleet:
     """Return the fleet that holds.
 
     Parameters
@@ -20,8 +22,10 @@ def merge_fleets(old: Fleet, new: Fleet, notes: ChangeNotes, *, guarded_waits: b
         In force, and as read.
     notes
         Takes down what waits and what acts.
+    acceptance_told
+        The profile's acceptance has changed and is noted already: nothing is noted of that of single limits.
     guarded_waits
-        The profile no longer asks for guarded acceptance, and that waits: limits stay guarded without a word for each.
+        The profile no longer asks for guarded acceptance, and that waits: new limits are guarded meanwhile.
     today
         The airfield's local day; None: all days count alike.
 
@@ -31,19 +35,30 @@ def merge_fleets(old: Fleet, new: Fleet, notes: ChangeNotes, *, guarded_waits: b
         The new one; what it loosens or leaves out is as in the old one. Names, groups, phases, sources and notices act
         as they are read.
     """
-    return _FleetMerge(old, new, notes, guarded_waits=guarded_waits, today=today).fleet()
+    return _FleetMerge(
+        old, new, notes, acceptance_told=acceptance_told, guarded_waits=guarded_waits, today=today
+    ).fleet()
 
 
 class _FleetMerge:
-    def __init__(self, old: Fleet, new: Fleet, notes: ChangeNotes, *, guarded_waits: bool, today: date | None) -> None:
+    def __init__(
+        self,
+        old: Fleet,
+        new: Fleet,
+        notes: ChangeNotes,
+        *,
+        acceptance_told: bool,
+        guarded_waits: bool,
+        today: date | None,
+    ) -> None:
         self._old = old
         self._new = new
         self._notes = notes
+        self._acceptance_told = acceptance_told
         self._guarded_waits = guarded_waits
         self._today = today
-        ids = {each.name: each.id for each in old.aircraft} | {each.name: each.id for each in new.aircraft}
         used = Counter(name for name, _ in {(each.name, each.id) for each in (*old.aircraft, *new.aircraft)})
-        self._ambiguous = {name for name in ids if used[name] > 1}
+        self._ambiguous = {name for name, times in used.items() if times > 1}
 
     def fleet(self) -> Fleet:
         """Merge all of it."""
@@ -112,8 +127,10 @@ class _FleetMerge:
             return old
         merge = merge_limits(old, new, today=self._today)
         for aspect in Aspect:
+            if aspect is Aspect.ACCEPTANCE and self._acceptance_told:
+                continue
             was, now = aspect_text(old, aspect), aspect_text(new, aspect)
-            if aspect in merge.loosened and not (aspect is Aspect.ACCEPTANCE and self._guarded_waits):
+            if aspect in merge.loosened:
                 self._notes.waits(f"{label}, {aspect}", was, now)
             elif aspect in merge.tightened:
                 self._notes.acts(f"{label}, {aspect}", was, now)

@@ -53,7 +53,12 @@ def compare_and_merge(
     notes = ChangeNotes()
     profile = merge_profiles(in_force[0], read[0], notes)
     fleet = merge_fleets(
-        in_force[1], read[1], notes, guarded_waits=profile.acceptance != read[0].acceptance, today=today
+        in_force[1],
+        read[1],
+        notes,
+        acceptance_told=in_force[0].acceptance != read[0].acceptance,
+        guarded_waits=profile.acceptance != read[0].acceptance,
+        today=today,
     )
     return Merge(
         effective=(profile, fleet) if notes.waiting else read,
