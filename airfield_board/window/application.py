@@ -16,7 +16,7 @@ from airfield_board.session.board_state import BoardState, Mode, StatusChange
 from airfield_board.session.recorder import Recorder
 from airfield_board.training.demo import DEMO_POLL_S, DEMO_SPEED, DemoDay, running_clock, stepped_day
 from airfield_board.window import formatting
-from airfield_board.window.preflight import no_display_message, require_libraries, require_screen, usable_platforms
+from airfield_board.window.preflight import Screen, choose_screen, find_screens, no_display_message, require_libraries
 
 if TYPE_CHECKING:
     from airfield_board.window.main_window import Feed
@@ -50,7 +50,7 @@ def run_window(profile_path: Path, *, scheme: str = "system") -> int:
         Where the files are wrong, a system library is missing, or there is no display.
     """
     load_airfield(profile_path)
-    platform = require_screen(os.environ)
+    screen = choose_screen(find_screens(os.environ), os.environ)
 
     def start_feed() -> "Feed":
         from airfield_board.window.main_window import Feed
@@ -62,7 +62,7 @@ def run_window(profile_path: Path, *, scheme: str = "system") -> int:
             worker=Worker(lambda: Recorder.open(profile_path, clock=clock, mode=Mode.LIVE)),
         )
 
-    return _run(platform, start_feed, scheme=scheme, replayable=False)
+    return _run(screen, start_feed, scheme=scheme, replayable=False)
 
 
 def run_demo(*, scheme: str = "system", out: TextIO | None = None) -> int:
@@ -85,9 +85,10 @@ def run_demo(*, scheme: str = "system", out: TextIO | None = None) -> int:
     UserError
         Where a system library is missing.
     """
-    if not usable_platforms(os.environ):
+    screens = find_screens(os.environ)
+    if not screens:
         return play_demo_in_terminal(out or sys.stdout, Path.cwd(), scheme=scheme)
-    platform = require_screen(os.environ)
+    screen = choose_screen(screens, os.environ)
     with tempfile.TemporaryDirectory(prefix=_FOLDER_PREFIX, ignore_cleanup_errors=True) as folder:
 
         def start_feed() -> "Feed":
@@ -98,7 +99,7 @@ def run_demo(*, scheme: str = "system", out: TextIO | None = None) -> int:
             worker = Worker(day.open_recorder, before_poll=day.feed, poll_s=DEMO_POLL_S)
             return Feed(clock=day.clock, worker=worker, speed=DEMO_SPEED)
 
-        return _run(platform, start_feed, scheme=scheme, replayable=True)
+        return _run(screen, start_feed, scheme=scheme, replayable=True)
 
 
 def play_demo_in_terminal(out: TextIO, folder: Path, *, scheme: str = "light") -> int:
@@ -183,14 +184,15 @@ def _paint(state: BoardState, folder: Path, scheme: str) -> Path:
     raise UserError(refusal)
 
 
-def _run(platform: str, start_feed: "Callable[[], Feed]", *, scheme: str, replayable: bool) -> int:
-    os.environ["QT_QPA_PLATFORM"] = platform  # what was found to work, and not what Qt might try instead
+def _run(screen: Screen, start_feed: "Callable[[], Feed]", *, scheme: str, replayable: bool) -> int:
+    os.environ["QT_QPA_PLATFORM"] = screen.platform  # what was found to work, and not what Qt might try instead
     from PySide6.QtWidgets import QApplication
 
     from airfield_board.window.main_window import MainWindow
     from airfield_board.window.theme import SchemeChoice
 
     application = QApplication(sys.argv[:1])
+    screen.release()
     application.setApplicationName("Airfield Board")
     application.setStyle("Fusion")
     window = MainWindow(start_feed, choice=SchemeChoice(scheme), replayable=replayable)

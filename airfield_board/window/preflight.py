@@ -8,8 +8,9 @@ import ctypes
 import os
 import socket
 import sys
-from collections.abc import Callable, Iterable, Mapping
+from collections.abc import Callable, Iterable, Mapping, Sequence
 from dataclasses import dataclass
+from functools import partial
 from pathlib import Path
 
 from airfield_board.errors import UserError
@@ -129,8 +130,25 @@ def missing_message(missing: Iterable[Missing]) -> str:
     return "\n".join(lines)
 
 
-def usable_platforms(environment: Mapping[str, str]) -> tuple[str, ...]:
-    """Return the Qt platforms that have a screen to open a window on.
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Screen:
+    """A display that lets us in.
+
+    Attributes
+    ----------
+    platform
+        Qt's name of what opens a window on it.
+    release
+        Ends our own connection to it. It must stay until Qt has one: a server that has lost its last client starts
+        anew, and Qt would find it closed.
+    """
+
+    platform: str
+    release: Callable[[], object] = lambda: None
+
+
+def find_screens(environment: Mapping[str, str]) -> tuple[Screen, ...]:
+    """Return the displays on which a window can be opened.
 
     Parameters
     ----------
@@ -139,40 +157,42 @@ def usable_platforms(environment: Mapping[str, str]) -> tuple[str, ...]:
 
     Returns
     -------
-    tuple of str
-        Qt's names, the best first; empty where there is no display, or none that lets us in.
+    tuple of Screen
+        The best first; empty where there is no display, or none that lets us in.
     """
     wanted = environment.get("QT_QPA_PLATFORM", "").split(";")[0].split(":")[0]
     if wanted in _PLATFORMS_WITHOUT_SCREEN:
         return ()
     if not sys.platform.startswith("linux"):
-        return (wanted or {"darwin": "cocoa", "win32": "windows"}.get(sys.platform, "xcb"),)
+        return (Screen(platform=wanted or {"darwin": "cocoa", "win32": "windows"}.get(sys.platform, "xcb")),)
     if wanted not in {"", "xcb", "wayland"}:
-        return (wanted,)  # asked for by name (a frame buffer, VNC): the user knows this screen better than we do
+        # Asked for by name (a frame buffer, VNC): the user knows this screen better than we do.
+        return (Screen(platform=wanted),)
     found = []
     if wanted != "xcb" and _wayland_answers(environment):
-        found.append("wayland")
-    if wanted != "wayland" and _x11_answers(environment.get("DISPLAY", "")):
-        found.append("xcb")
+        found.append(Screen(platform="wayland"))
+    if wanted != "wayland":
+        release = _x11_connection(environment.get("DISPLAY", ""))
+        if release is not None:
+            found.append(Screen(platform="xcb", release=release))
     return tuple(found)
 
 
-def require_screen(environment: Mapping[str, str]) -> str:
-    """Return the platform to open the window on, or say what stands in the way.
+def choose_screen(screens: Sequence[Screen], environment: Mapping[str, str]) -> Screen:
+    """Return the display to open the window on, or say what stands in the way.
 
     Raises
     ------
     NoDisplay
-        Where there is no display; names the commands that need none.
+        Where there is none; names the commands that need none.
     MissingLibraries
         Where Qt would miss a system library on every display there is; names those of the best one.
     """
-    platforms = usable_platforms(environment)
-    if not platforms:
+    if not screens:
         raise NoDisplay(no_display_message(environment))
-    platform = next((each for each in platforms if not missing_libraries(each)), platforms[0])
-    require_libraries(platform)
-    return platform
+    chosen = next((each for each in screens if not missing_libraries(each.platform)), screens[0])
+    require_libraries(chosen.platform)
+    return chosen
 
 
 def require_libraries(platform: str) -> None:
@@ -232,18 +252,18 @@ def _wayland_answers(environment: Mapping[str, str]) -> bool:
     return _connects(socket.AF_UNIX, str(path))
 
 
-def _x11_answers(display: str) -> bool:
-    """Whether an X server is there and lets us in: a socket that connects is not enough, it may refuse us."""
+def _x11_connection(display: str) -> Callable[[], object] | None:
+    """Connect to an X server; return what ends the connection, None where it is not there or does not let us in."""
     host, colon, number = display.rpartition(":")
     screen = number.split(".")[0]
     if not colon or not screen.isdecimal():
-        return False
+        return None
     if host in {"", "unix"}:
         path = f"/tmp/.X11-unix/X{screen}"  # noqa: S108  the place where X servers put their sockets
         reached = _connects(socket.AF_UNIX, path) or _connects(socket.AF_UNIX, f"\0{path}")
     else:
         reached = _connects(socket.AF_INET, (host, _X11_TCP_PORT + int(screen)))
-    return reached and _x11_lets_us_in(display)
+    return _x11_entry(display) if reached else None
 
 
 def _connects(family: socket.AddressFamily, address: str | tuple[str, int]) -> bool:
@@ -256,16 +276,19 @@ def _connects(family: socket.AddressFamily, address: str | tuple[str, int]) -> b
     return True
 
 
-def _x11_lets_us_in(display: str) -> bool:
+def _x11_entry(display: str) -> Callable[[], object] | None:
+    """Ask an X server to let us in: a socket that connects is not enough."""
     try:
         xcb = ctypes.CDLL("libxcb.so.1")
     except OSError:
-        return True  # said by name when the libraries are looked for
+        return lambda: None  # said by name when the libraries are looked for
     xcb.xcb_connect.restype = ctypes.c_void_p
     xcb.xcb_connect.argtypes = [ctypes.c_char_p, ctypes.c_void_p]
     xcb.xcb_connection_has_error.argtypes = [ctypes.c_void_p]
     xcb.xcb_disconnect.argtypes = [ctypes.c_void_p]
     connection = xcb.xcb_connect(os.fsencode(display), None)
-    refused = xcb.xcb_connection_has_error(connection) != 0
-    xcb.xcb_disconnect(connection)
-    return not refused
+    release = partial(xcb.xcb_disconnect, connection)
+    if xcb.xcb_connection_has_error(connection) != 0:
+        release()
+        return None
+    return release

@@ -26,10 +26,9 @@ linux_only = pytest.mark.skipif(not sys.platform.startswith("linux"), reason="el
 WINDOW_THAT_CLOSES = """
 import sys
 from airfield_board.cli import main
-from airfield_board.window import application, main_window
+from airfield_board.window import application, main_window, preflight
 
-application.require_screen = lambda _: "offscreen"
-application.usable_platforms = lambda _: ("offscreen",)
+application.find_screens = lambda _: (preflight.Screen(platform="offscreen"),)
 begin = main_window.MainWindow.start
 
 def start(self):
@@ -68,7 +67,7 @@ def test_without_a_display_the_demo_plays_in_the_terminal_and_ends_well(
     assert done.returncode == 0
     lines = done.stdout.splitlines()
     assert any("invented" in line for line in lines)
-    holds = [line for line in lines if line[6:].startswith("HOLD")]
+    holds = [line for line in lines if line[7:].startswith("HOLD")]
     assert any("Two-seat trainer · Solo circuits" in line for line in holds)
     times = [line[:5] for line in lines if line[2:3] == ":"]
     assert times == sorted(times)
@@ -101,7 +100,7 @@ def test_without_a_display_the_plain_window_names_the_commands_that_need_none(fi
 def test_a_missing_library_is_named_with_its_package_and_the_demo_does_not_start(
     monkeypatch: pytest.MonkeyPatch,
 ) -> None:
-    monkeypatch.setattr(application, "usable_platforms", lambda _: ())
+    monkeypatch.setattr(application, "find_screens", lambda _: ())
     monkeypatch.setattr(preflight, "missing_libraries", lambda _: (Missing(library="libGL.so.1", package="libgl1"),))
     out = io.StringIO()
     with pytest.raises(MissingLibraries, match="libgl1"):

@@ -1,5 +1,7 @@
 import os
+import shutil
 import socket
+import subprocess
 import sys
 from pathlib import Path
 
@@ -10,15 +12,21 @@ from airfield_board.window.preflight import (
     Missing,
     MissingLibraries,
     NoDisplay,
+    Screen,
+    choose_screen,
+    find_screens,
     missing_from_loader,
     missing_libraries,
     missing_message,
     no_display_message,
     require_libraries,
-    require_screen,
-    usable_platforms,
 )
 from tests.interpreter import run_python
+
+
+def platforms(environment: dict[str, str]) -> tuple[str, ...]:
+    return tuple(screen.platform for screen in find_screens(environment))
+
 
 linux_only = pytest.mark.skipif(not sys.platform.startswith("linux"), reason="Linux finds its display by sockets")
 
@@ -135,26 +143,26 @@ def test_preflight_itself_imports_no_qt() -> None:
 
 @pytest.mark.parametrize("platform", ["offscreen", "minimal", "minimalegl", "offscreen:size=10x10"])
 def test_a_platform_without_a_screen_is_no_display(platform: str) -> None:
-    assert usable_platforms({"QT_QPA_PLATFORM": platform, "DISPLAY": ":0", "WAYLAND_DISPLAY": "wayland-0"}) == ()
+    assert platforms({"QT_QPA_PLATFORM": platform, "DISPLAY": ":0", "WAYLAND_DISPLAY": "wayland-0"}) == ()
 
 
 @linux_only
 def test_without_display_variables_there_is_no_display() -> None:
-    assert usable_platforms({}) == ()
+    assert platforms({}) == ()
     with pytest.raises(NoDisplay, match="no display"):
-        require_screen({})
+        choose_screen((), {})
 
 
 @linux_only
 @pytest.mark.parametrize("display", [":7931", "localhost:7931", "nonsense", ":", ":x", "host:99999", "unix:7931.0"])
 def test_a_display_that_cannot_be_reached_is_no_display(display: str) -> None:
-    assert usable_platforms({"DISPLAY": display}) == ()
+    assert platforms({"DISPLAY": display}) == ()
 
 
 @linux_only
 def test_a_server_that_does_not_let_us_in_is_no_display(monkeypatch: pytest.MonkeyPatch) -> None:
     monkeypatch.setattr(preflight, "_connects", lambda *_: True)
-    assert usable_platforms({"DISPLAY": ":7931"}) == ()
+    assert platforms({"DISPLAY": ":7931"}) == ()
 
 
 @linux_only
@@ -162,28 +170,28 @@ def test_a_wayland_socket_that_answers_is_a_display(tmp_path: Path) -> None:
     with socket.socket(socket.AF_UNIX) as server:
         server.bind(str(tmp_path / "wayland-9"))
         server.listen()
-        assert usable_platforms({"XDG_RUNTIME_DIR": str(tmp_path), "WAYLAND_DISPLAY": "wayland-9"}) == ("wayland",)
-    assert usable_platforms({"XDG_RUNTIME_DIR": str(tmp_path), "WAYLAND_DISPLAY": "wayland-9"}) == ()
+        assert platforms({"XDG_RUNTIME_DIR": str(tmp_path), "WAYLAND_DISPLAY": "wayland-9"}) == ("wayland",)
+    assert platforms({"XDG_RUNTIME_DIR": str(tmp_path), "WAYLAND_DISPLAY": "wayland-9"}) == ()
 
 
 @linux_only
 def test_an_x_server_that_lets_us_in_is_a_display(monkeypatch: pytest.MonkeyPatch) -> None:
     monkeypatch.setattr(preflight, "_connects", lambda *_: True)
-    monkeypatch.setattr(preflight, "_x11_lets_us_in", lambda _: True)
-    assert usable_platforms({"DISPLAY": ":5"}) == ("xcb",)
-    assert usable_platforms({"DISPLAY": "far:5.0", "QT_QPA_PLATFORM": "xcb"}) == ("xcb",)
-    assert usable_platforms({"DISPLAY": ":5", "QT_QPA_PLATFORM": "wayland"}) == ()
+    monkeypatch.setattr(preflight, "_x11_entry", lambda _: lambda: None)
+    assert platforms({"DISPLAY": ":5"}) == ("xcb",)
+    assert platforms({"DISPLAY": "far:5.0", "QT_QPA_PLATFORM": "xcb"}) == ("xcb",)
+    assert platforms({"DISPLAY": ":5", "QT_QPA_PLATFORM": "wayland"}) == ()
 
 
 @linux_only
 def test_a_platform_asked_for_by_name_is_trusted() -> None:
-    assert usable_platforms({"QT_QPA_PLATFORM": "vnc:size=800x600"}) == ("vnc",)
+    assert platforms({"QT_QPA_PLATFORM": "vnc:size=800x600"}) == ("vnc",)
 
 
 @pytest.mark.parametrize(("system", "platform"), [("darwin", "cocoa"), ("win32", "windows")])
 def test_other_systems_have_their_own_platform(monkeypatch: pytest.MonkeyPatch, system: str, platform: str) -> None:
     monkeypatch.setattr(sys, "platform", system)
-    assert usable_platforms({}) == (platform,)
+    assert platforms({}) == (platform,)
 
 
 def test_the_message_names_the_display_and_the_commands_that_need_none() -> None:
@@ -195,16 +203,43 @@ def test_the_message_names_the_display_and_the_commands_that_need_none() -> None
 
 @linux_only
 def test_a_screen_that_is_there_still_needs_its_libraries(monkeypatch: pytest.MonkeyPatch) -> None:
-    monkeypatch.setattr(preflight, "usable_platforms", lambda _: ("xcb",))
     monkeypatch.setattr(preflight, "missing_libraries", lambda _: (Missing(library="libxcb.so.1", package="libxcb1"),))
     with pytest.raises(MissingLibraries, match="libxcb1"):
-        require_screen(os.environ)
+        choose_screen((Screen(platform="xcb"),), {})
 
 
 @linux_only
 def test_where_one_display_misses_a_library_another_that_has_all_is_taken(monkeypatch: pytest.MonkeyPatch) -> None:
-    monkeypatch.setattr(preflight, "usable_platforms", lambda _: ("wayland", "xcb"))
     lacking = (Missing(library="libwayland-cursor.so.0", package="libwayland-cursor0"),)
     monkeypatch.setattr(preflight, "missing_libraries", lambda platform: lacking if platform == "wayland" else ())
     monkeypatch.setattr(preflight, "_load_plugin", lambda *_: None)
-    assert require_screen({}) == "xcb"
+    x11 = Screen(platform="xcb")
+    assert choose_screen((Screen(platform="wayland"), x11), {}) is x11
+
+
+@pytest.mark.skipif(shutil.which("Xvfb") is None, reason="needs the X server that paints into memory")
+def test_a_server_that_starts_anew_with_its_last_client_is_still_there_for_qt() -> None:
+    reader, writer = os.pipe()
+    with subprocess.Popen(  # noqa: S603  a program of the system with arguments of our own
+        [str(shutil.which("Xvfb")), "-displayfd", str(writer), "-nolisten", "tcp"],
+        pass_fds=(writer,),
+        stderr=subprocess.DEVNULL,
+    ) as server:
+        os.close(writer)
+        with os.fdopen(reader) as said:
+            display = f":{said.readline().strip()}"
+        code = (
+            "import os\n"
+            "from airfield_board.window.preflight import choose_screen, find_screens\n"
+            "screen = choose_screen(find_screens(os.environ), os.environ)\n"
+            "from PySide6.QtWidgets import QApplication\n"
+            "application = QApplication([])\n"
+            "screen.release()\n"
+            "print(application.platformName())\n"
+        )
+        done = run_python(
+            ["-c", code], environment={"DISPLAY": display, "WAYLAND_DISPLAY": None, "QT_QPA_PLATFORM": None}
+        )
+        server.terminate()
+    assert done.stdout == "xcb\n"
+    assert done.returncode == 0
