@@ -56,6 +56,9 @@ class BoardPage(Canvas):
         self.rows = RowPanel(self)
         self.card = NoDataCard(self)
         self._view: View | None = None
+        self._starter = QTimer(self)
+        self._starter.setSingleShot(True)
+        self._starter.timeout.connect(self.ensure_plot)
         self._shown: tuple[BoardState, datetime, Cause, QSize] | None = None
         self._scene: DayScene | None = None
         self._plot: DayPlot | None = None
@@ -63,6 +66,11 @@ class BoardPage(Canvas):
         self.rows.selected.connect(self._on_selected)
         self.card.poll_asked.connect(self.poll_asked)
         self.card.type_in_asked.connect(self.type_in_asked)
+
+    @property
+    def plot(self) -> "DayPlot | None":
+        """The plot; None before the first picture stands."""
+        return self._plot
 
     def set_colours(self, colours: Palette) -> None:
         """Take other colours, in all parts."""
@@ -104,7 +112,7 @@ class BoardPage(Canvas):
     def showEvent(self, event: QShowEvent) -> None:
         """Ask for the plot once the first picture stands."""
         super().showEvent(event)
-        QTimer.singleShot(0, self.ensure_plot)
+        self._starter.start(0)
 
     def resizeEvent(self, event: QResizeEvent) -> None:
         """Place all parts anew."""

@@ -68,6 +68,9 @@ class MarginPage(Canvas):
         self.picker = OperationPicker(self)
         self.search = QLineEdit(self)
         self._view: View | None = None
+        self._starter = QTimer(self)
+        self._starter.setSingleShot(True)
+        self._starter.timeout.connect(self.ensure_plot)
         self._shown: tuple[BoardState, datetime, Cause, QSize] | None = None
         self._keys: tuple[str, ...] | None = None
         self._rows_height = 0
@@ -241,7 +244,7 @@ class MarginPage(Canvas):
     def showEvent(self, event: QShowEvent) -> None:
         """Ask for the plot once the first picture stands."""
         super().showEvent(event)
-        QTimer.singleShot(0, self.ensure_plot)
+        self._starter.start(0)
 
     def resizeEvent(self, event: QResizeEvent) -> None:
         """Place all parts anew."""

@@ -51,7 +51,7 @@ class MarginPlot(PixelPlot):
         for line in scene.lines:
             width = 3.0 if line.key == self._chosen else 2.0
             for group in _GROUPS:
-                x, y = _points(line, group)
+                x, y = state_points(line, group)
                 item = self._item(used)
                 pen = pg.mkPen(QColor(self._line_colour(group[0])), width=width)
                 item.setData(x=x, y=y, pen=pen, connect="finite")
@@ -147,7 +147,7 @@ class MarginPlot(PixelPlot):
         painter.setBrush(Qt.BrushStyle.NoBrush)
 
 
-def _points(line: MarginLine, group: tuple[State, ...]) -> tuple[NDArray[np.float64], NDArray[np.float64]]:
+def state_points(line: MarginLine, group: tuple[State, ...]) -> tuple[NDArray[np.float64], NDArray[np.float64]]:
     """Return the points of a line at which its state is of a group, with NaN between the runs."""
     wanted = [state.severity for state in group]
     xs: list[NDArray[np.float64]] = []

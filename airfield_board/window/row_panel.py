@@ -139,6 +139,11 @@ class RowPanel(Canvas):
         return self._chosen
 
     @property
+    def axis(self) -> AltitudeAxis | None:
+        """The plot's altitude axis, in this widget's pixels; None before it was given."""
+        return self._axis
+
+    @property
     def plan(self) -> RowPlan | None:
         """The rows as placed; None before anything was shown."""
         return self._plan

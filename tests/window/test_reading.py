@@ -1,0 +1,113 @@
+"""The window's own clock decides what may be shown."""
+
+from dataclasses import replace
+from datetime import timedelta
+
+import pytest
+
+from airfield_board.limits.states import State
+from airfield_board.session.board_state import Freshness, Mode, SettingChange
+from airfield_board.window.reading import Cause, Frame, reckon, view_of
+from tests.window import states
+
+WAITING = (SettingChange(where="Two-seat trainer · Departure", in_force="6,350 ft", waiting="6,500 ft"),)
+
+
+@pytest.mark.parametrize(
+    ("age_min", "freshness", "cause"),
+    [
+        (0.0, Freshness.FRESH, Cause.NONE),
+        (20.0, Freshness.FRESH, Cause.NONE),
+        (20.001, Freshness.AGEING, Cause.NONE),
+        (60.0, Freshness.AGEING, Cause.NONE),
+        (60.001, Freshness.STALE, Cause.STALE),
+        (6000.0, Freshness.STALE, Cause.STALE),
+    ],
+)
+def test_age_follows_the_clock_and_not_the_state(age_min: float, freshness: Freshness, cause: Cause) -> None:
+    state = states.board(15, age_min=0.0)
+    assert state.observation is not None
+    reading = reckon(state, state.observation.time + timedelta(minutes=age_min), None)
+    assert (reading.freshness, reading.cause) == (freshness, cause)
+
+
+def test_a_stale_state_is_never_taken_for_fresh() -> None:
+    state = states.stale_board()
+    assert state.observation is not None
+    assert reckon(state, state.observation.time, None).cause is Cause.STALE
+
+
+def test_no_observation_is_missing() -> None:
+    state = states.empty_board()
+    reading = reckon(state, state.assessed_at, None)
+    assert (reading.freshness, reading.cause, reading.age) == (Freshness.MISSING, Cause.MISSING, None)
+
+
+def test_an_observation_without_conditions_is_not_trusted() -> None:
+    state = replace(states.board(), conditions=None)
+    assert reckon(state, state.assessed_at, None).cause is Cause.NOT_CALCULATED
+
+
+@pytest.mark.parametrize(("late_s", "trusted"), [(0, True), (10, True), (10.1, False), (-10, True), (-11, False)])
+def test_a_recorder_that_does_not_answer_is_not_trusted(late_s: float, trusted: bool) -> None:
+    state = states.board()
+    reading = reckon(state, state.assessed_at + timedelta(seconds=late_s), timedelta(seconds=10))
+    assert reading.trusted is trusted
+
+
+@pytest.mark.parametrize(("ahead_min", "trusted"), [(5.0, True), (5.01, False)])
+def test_an_observation_of_the_future_is_not_trusted(ahead_min: float, trusted: bool) -> None:
+    state = states.board(15, age_min=0.0)
+    assert state.observation is not None
+    reading = reckon(state, state.observation.time - timedelta(minutes=ahead_min), None)
+    assert reading.trusted is trusted
+    assert reading.age == timedelta(0)
+
+
+def test_untrusted_rows_are_all_without_data_and_say_what_they_were() -> None:
+    state = states.board()
+    assert state.observation is not None
+    view = view_of(state, state.assessed_at + timedelta(hours=2), None)
+    for row, before in zip(view.rows, state.operations, strict=True):
+        assert row.state is State.NO_DATA
+        assert row.shown is not None
+        assert (row.shown.margin, row.shown.hold_above_c, row.shown.gone_by) == (None, None, None)
+        if before.state is not State.NO_DATA:
+            assert (row.shown.was, row.shown.was_at) == (before.state, state.observation.time)
+
+
+def test_trusted_rows_are_those_of_the_state() -> None:
+    state = states.board()
+    assert view_of(state, state.assessed_at, None).rows == state.operations
+
+
+def test_frames_come_in_their_order() -> None:
+    state = replace(states.board(), mode=Mode.DEMO, recording=False, waiting=WAITING)
+    late = state.assessed_at + timedelta(hours=2)
+    assert view_of(state, late, None).frames == (
+        Frame.NO_DATA,
+        Frame.NOT_RECORDING,
+        Frame.DEMO,
+        Frame.SETTINGS_WAITING,
+    )
+    assert view_of(replace(state, recording=True), state.assessed_at, None).frames[0] is Frame.DEMO
+
+
+def test_live_stands_only_where_all_is_live_and_from_the_file() -> None:
+    state = states.board()
+    assert state.observation is not None
+    now = state.assessed_at
+    assert view_of(state, now, None).live
+    typed = replace(state, observation=replace(state.observation, initials="MS"))
+    not_live = [
+        typed,
+        replace(state, mode=Mode.DEMO),
+        replace(state, mode=Mode.PAST),
+        replace(state, mode=Mode.TRAINING),
+        replace(state, recording=False),
+        replace(state, waiting=WAITING),
+        states.stale_board(),
+        states.empty_board(),
+    ]
+    assert not any(view_of(other, other.assessed_at, None).live for other in not_live)
+    assert not view_of(state, now + timedelta(hours=2), None).live
