@@ -168,7 +168,7 @@ def compare_with_reference(entries: list[Limit], rows: list[Row], stale_after_mi
 
 
 @each_scenario
-@settings(max_examples=40, deadline=None)
+@settings(max_examples=25, deadline=None)
 @given(choices=st.lists(CHOICES, max_size=60), stale=st.sampled_from(STALE_AFTER_MIN))
 def test_the_engine_says_what_the_reference_says(entries: list[Limit], choices: list[Choice], stale: float) -> None:
     compare_with_reference(entries, record_of(entries, choices), stale)
@@ -198,7 +198,7 @@ def in_blocks(rows: list[Row], cuts: list[int]) -> Iterator[list[Row]]:
 
 
 @each_scenario
-@settings(max_examples=40, deadline=None)
+@settings(max_examples=25, deadline=None)
 @given(
     choices=st.lists(CHOICES, max_size=60),
     cuts=st.lists(st.integers(0, 60), max_size=6),
@@ -224,7 +224,7 @@ def test_whole_row_by_row_and_in_blocks_are_the_same(
 
 
 @each_scenario
-@settings(max_examples=40, deadline=None)
+@settings(max_examples=25, deadline=None)
 @given(choices=st.lists(CHOICES, max_size=60), stale=st.sampled_from(STALE_AFTER_MIN))
 def test_what_can_never_be(entries: list[Limit], choices: list[Choice], stale: float) -> None:
     desk = Desk(*entries, stale_after_min=stale)
@@ -250,7 +250,7 @@ def test_what_can_never_be(entries: list[Limit], choices: list[Choice], stale: f
 
 
 @each_scenario
-@settings(max_examples=40, deadline=None)
+@settings(max_examples=25, deadline=None)
 @given(choices=st.lists(CHOICES, min_size=20, max_size=60), stale=st.sampled_from(STALE_AFTER_MIN))
 def test_a_hold_never_ends_before_its_time(entries: list[Limit], choices: list[Choice], stale: float) -> None:
     rows = [row for row in record_of(entries, choices) if row.kind != "future"]

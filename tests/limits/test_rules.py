@@ -192,17 +192,6 @@ class TestNoDataInAHold:
         rows = [valid(0, 6400), rejected(5), rejected(10), rejected(16)]
         assert changes_of(LIMIT, rows) == [(0, "hold"), (15, "no_data")]
 
-    def test_doubt_from_elsewhere_does_the_same(self) -> None:
-        desk = Desk(LIMIT).take([valid(0, 6400), valid(2, 6000)])
-        desk.judge.doubt(us_at(5), "the profile was changed")
-        desk.take([valid(6, 6000), valid(12, 6000), valid(16, 6000)])
-        assert desk.changes() == [(0, "hold"), (5, "no_data"), (6, "hold"), (16, "near")]
-
-    def test_doubt_before_the_first_observation_changes_nothing(self) -> None:
-        desk = Desk(LIMIT)
-        desk.judge.doubt(us_at(5), "the profile was changed")
-        assert desk.changes() == []
-
 
 class TestRestart:
     """Confirmed steps and gaps of over 3 h: runs start anew, holds in force before need at least 60 min."""
