@@ -3,13 +3,14 @@
 The window reckons age by itself, so that a recorder that hangs looks stale and not fresh.
 """
 
+import math
 from dataclasses import dataclass, replace
 from datetime import datetime, timedelta
 from enum import Enum
 from zoneinfo import ZoneInfo
 
 from airfield_board.limits.states import State
-from airfield_board.session.board_state import BoardState, Freshness, Mode, OperationLine
+from airfield_board.session.board_state import BoardState, Conditions, Freshness, Mode, OperationLine
 
 FUTURE_TOLERANCE = timedelta(minutes=5)
 """An observation may be so far ahead of the clock (contract, section 4)."""
@@ -73,9 +74,21 @@ def reckon(state: BoardState, now: datetime, watchdog: timedelta | None) -> Read
     freshness = Freshness.AGEING if age > timedelta(minutes=state.ageing_after_min) else Freshness.FRESH
     if watchdog is not None and abs(now - state.assessed_at) > watchdog:
         return Reading(freshness=freshness, age=age, cause=Cause.NO_ANSWER)
-    if state.conditions is None:
+    if state.conditions is None or not _finite(state.conditions):
         return Reading(freshness=freshness, age=age, cause=Cause.NOT_CALCULATED)
     return Reading(freshness=freshness, age=age, cause=Cause.NONE)
+
+
+def _finite(conditions: Conditions) -> bool:
+    """Whether all that is shown of the air is a number; what is not was not calculated."""
+    values = (
+        conditions.density_altitude_ft,
+        conditions.uncertainty_ft,
+        conditions.pressure_altitude_ft,
+        conditions.isa_deviation_c,
+        conditions.peak_ft,
+    )
+    return all(math.isfinite(value) for value in values)
 
 
 class Frame(Enum):
@@ -135,7 +148,7 @@ class View:
     def rows(self) -> tuple[OperationLine, ...]:
         """The rows as they may be shown: where the reading is not trusted, all in NO DATA with what they were."""
         if self.trusted:
-            return self.state.operations
+            return tuple(_with_margin(row) for row in self.state.operations)
         return tuple(self._without_data(row) for row in self.state.operations)
 
     def _without_data(self, row: OperationLine) -> OperationLine:
@@ -159,6 +172,17 @@ class View:
             clearing=None,
         )
         return replace(row, state=State.NO_DATA, shown=blank)
+
+
+def _with_margin(row: OperationLine) -> OperationLine:
+    """Return the row, or its NO DATA where it says more than it has a margin for."""
+    line = row.shown
+    if row.state in (State.HOLD, State.NO_DATA):
+        return row
+    if line is not None and line.margin is not None and math.isfinite(line.margin):
+        return row
+    blank = replace(line, state=State.NO_DATA, margin=None, reason="nothing to compare") if line is not None else None
+    return replace(row, state=State.NO_DATA, shown=blank)
 
 
 def view_of(state: BoardState, now: datetime, watchdog: timedelta | None) -> View:

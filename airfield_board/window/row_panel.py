@@ -387,7 +387,7 @@ class RowPanel(Canvas):
     def _paint_comfortable(self, letters: Lettering, box: RowBox, row: RowWords) -> None:
         colours, columns, left = self.colours, self._columns, float(GUTTER_PX)
         lines = 3 if row.temporary else 2
-        step = min(16.0, box.height_px / lines - 0.5)
+        step = min(16.0, box.height_px / lines)
         first = box.middle_px - step * (lines - 1) / 2
         name, margin_px = left + columns.name, 20 if row.margin[-1:].isdigit() else 17
         margin_left = left + columns.margin_right - width_of(row.margin, margin_px, SEMIBOLD)

@@ -1,5 +1,6 @@
 """What a row says, and how many lines that takes."""
 
+import math
 from collections.abc import Sequence
 from dataclasses import dataclass
 from html import escape
@@ -78,7 +79,9 @@ def words_of(row: OperationLine, view: View) -> RowWords:
         margin=formatting.margin_cell(line, column_unit),
         loud=loud,
         quiet=quiet,
-        last=formatting.hold_temperature(above, unit) if above is not None else formatting.DASH,
+        last=(
+            formatting.hold_temperature(above, unit) if above is not None and math.isfinite(above) else formatting.DASH
+        ),
         axis_ft=line.axis_ft if line is not None else None,
     )
 
@@ -142,11 +145,18 @@ def wish_of(words: RowWords, target_px: float | None) -> Wish:
 def tip_of(row: OperationLine, view: View) -> str:
     """Say all of a row, for a tooltip: a line a limit; escaped, for a tooltip may be taken for rich text."""
     lines = [formatting.full_name(row) + (f" ({row.group})" if row.group else "")]
+    known = " ".join(part for part in formatting.next_change(row.shown, view.now, view.zone) if part)
+    lines.append(f"{formatting.STATE_WORDS[row.state]}{f', {known}' if known else ''}")
+    if not view.trusted:
+        return _rich(lines)
     for line in row.limits:
         parts = [f"{line.quantity.value}: {formatting.STATE_WORDS[line.state]}", formatting.limit_phrase(line)]
         if line.full_weight is not None:
             parts.append(f"greatest weight {formatting.weight(line.full_weight, line.weight_unit)}")
         parts += [formatting.temporary_phrase(line), line.reason, line.basis, line.source]
         lines.append(", ".join(part for part in parts if part))
-    escaped = "<br>".join(escape(text) for text in lines)
-    return f"<qt>{escaped}</qt>" if view.trusted else f"<qt>NO DATA<br>{escape(lines[0])}</qt>"
+    return _rich(lines)
+
+
+def _rich(lines: Sequence[str]) -> str:
+    return f"<qt>{'<br>'.join(escape(text) for text in lines)}</qt>"

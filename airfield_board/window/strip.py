@@ -1,5 +1,6 @@
 """The strip under the header: the air now, what it was measured from, and how old that is."""
 
+import math
 from dataclasses import dataclass
 from datetime import timedelta
 
@@ -176,7 +177,7 @@ def content_of(view: View) -> StripContent:
 
 
 def _rate_cell(rate_ft_per_h: float | None, unit: str) -> Cell:
-    if rate_ft_per_h is None:
+    if rate_ft_per_h is None or not math.isfinite(rate_ft_per_h):
         return Cell(label="Rate now", value=formatting.DASH, unit="", pattern="+888", below="too few readings")
     word = formatting.rate_word(rate_ft_per_h)
     return Cell(

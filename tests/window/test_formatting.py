@@ -12,7 +12,8 @@ from airfield_board.configuration.model import Quantity, Unit
 from airfield_board.limits.states import State
 from airfield_board.session.board_state import Clearing, LimitLine
 from airfield_board.window import formatting
-from airfield_board.window.reading import Cause
+from airfield_board.window.reading import Cause, view_of
+from airfield_board.window.row_words import tip_of
 from tests.window import states
 
 LOS_ANGELES = ZoneInfo("America/Los_Angeles")
@@ -233,3 +234,14 @@ def test_every_cause_of_no_data_is_explained(cause: Cause) -> None:
     lines = formatting.no_data_lines(cause, state, state.assessed_at, LOS_ANGELES)
     assert bool(lines) == (cause is not Cause.NONE)
     assert all(line.strip() for line in lines)
+
+
+def test_tips_escape_what_files_say() -> None:
+    state = states.board()
+    row = replace(state.operations[0], aircraft_name="<b>Bold & brave</b>")
+    tip = tip_of(row, view_of(state, state.assessed_at, None))
+    assert "&lt;b&gt;Bold &amp; brave&lt;/b&gt; · Departure" in tip
+    assert "GO, since 06:00" in tip
+    late = tip_of(row, view_of(state, state.assessed_at + timedelta(hours=2), None))
+    assert "NO DATA" not in tip
+    assert "limit" not in late

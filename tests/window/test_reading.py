@@ -111,3 +111,32 @@ def test_live_stands_only_where_all_is_live_and_from_the_file() -> None:
     ]
     assert not any(view_of(other, other.assessed_at, None).live for other in not_live)
     assert not view_of(state, now + timedelta(hours=2), None).live
+
+
+@pytest.mark.parametrize("name", ["density_altitude_ft", "uncertainty_ft", "pressure_altitude_ft", "isa_deviation_c"])
+@pytest.mark.parametrize("value", [float("nan"), float("inf")])
+def test_conditions_that_are_no_numbers_are_not_trusted(name: str, value: float) -> None:
+    state = states.board()
+    assert state.conditions is not None
+    broken = replace(state, conditions=replace(state.conditions, **{name: value}))  # type: ignore[arg-type]  # all floats
+    assert reckon(broken, broken.assessed_at, None).cause is Cause.NOT_CALCULATED
+
+
+@pytest.mark.parametrize("margin", [None, float("nan")])
+def test_a_go_without_a_margin_is_shown_as_no_data(margin: float | None) -> None:
+    state = states.board()
+    first = state.operations[0]
+    assert first.state is State.GO
+    assert first.shown is not None
+    broken = replace(first, shown=replace(first.shown, margin=margin))
+    view = view_of(replace(state, operations=(broken, replace(first, shown=None))), state.assessed_at, None)
+    assert [row.state for row in view.rows] == [State.NO_DATA, State.NO_DATA]
+
+
+def test_a_hold_without_a_margin_stays_on_hold() -> None:
+    state = states.board()
+    held = next(row for row in state.operations if row.state is State.HOLD)
+    assert held.shown is not None
+    broken = replace(held, shown=replace(held.shown, margin=None))
+    view = view_of(replace(state, operations=(broken,)), state.assessed_at, None)
+    assert [row.state for row in view.rows] == [State.HOLD]
