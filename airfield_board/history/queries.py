@@ -202,22 +202,13 @@ class HistoryQueries:
         )
         return tuple(self._record(row[:5]) for row in found if verdicts is None or row[5] in verdicts)
 
-    def raw_lines(self, from_us: int, until_us: int, *, include_untimed: bool = True) -> frozenset[str]:
-        """Return the raw lines recorded with times in [from, until).
-
-        Parameters
-        ----------
-        include_untimed
-            Also the last thousand lines whose time could not be read.
-        """
-        records = list(self.observation_records(from_us, until_us))
-        if include_untimed:
-            records += self._stored(
-                "SELECT seq, at_us, kind, body, hash FROM journal WHERE seq IN "
-                "(SELECT seq FROM observation WHERE time_us IS NULL ORDER BY seq DESC LIMIT ?)",
-                _RECENT_UNTIMED,
-            )
-        return frozenset(str(record.body["raw"]) for record in records)
+    def untimed_observation_records(self) -> tuple[StoredRecord, ...]:
+        """Return the records of the last thousand observations whose time could not be read, the newest first."""
+        return self._stored(
+            "SELECT seq, at_us, kind, body, hash FROM journal WHERE seq IN "
+            "(SELECT seq FROM observation WHERE time_us IS NULL ORDER BY seq DESC LIMIT ?) ORDER BY seq DESC",
+            _RECENT_UNTIMED,
+        )
 
     def changes_between(self, from_us: int, until_us: int, *, scope: str | None = None) -> tuple[StoredRecord, ...]:
         """Return the changes with times in [from, until), in order of time and then of arrival.

@@ -1,52 +1,65 @@
 """Which rows of a file that is read again and again are new."""
 
-from collections.abc import Callable, Collection
+from collections.abc import Callable, Iterable
 
 import numpy as np
 
 from airfield_board.observations.observation import NO_TIME_US, ObservationTable
 
 _MOST_KNOWN = 200_000
+_END_US = int(np.iinfo(np.int64).max)
 
 
 class Intake:
-    """Knows the rows that have been taken, by their text as it stood in the file.
+    """Knows the rows that have been taken, by their time and their text as it stood in the file.
+
+    Of several rows with one time the last one in the file counts. Where that is not the one taken last, it is taken
+    again, as the correction that it is.
 
     Parameters
     ----------
     recall
-        From a stretch of time, [from, until) in microseconds: the texts of the rows recorded of it before.
+        From a stretch of time, [from, until) in microseconds: time and text of the rows of the file recorded of it
+        before, in the order in which they were recorded, and of those without a readable time.
     """
 
-    def __init__(self, recall: Callable[[int, int], Collection[str]]) -> None:
+    def __init__(self, recall: Callable[[int, int], Iterable[tuple[int, str]]]) -> None:
         self._recall = recall
         self._recalled_from_us: int | None = None
-        self._known: set[str] = set()
+        self._known: set[tuple[int, str]] = set()
+        self._last: dict[int, str] = {}
 
     def new_rows(self, table: ObservationTable) -> ObservationTable:
-        """Return the rows not seen before, in the order of the file, and know them from now on."""
+        """Return the rows not taken before, in the order of the file, and know them from now on."""
         self._recall_for(table)
-        texts = [table.raw[row] for row in range(len(table))]
+        rows = list(zip(table.time_us.tolist(), (table.raw[row] for row in range(len(table))), strict=True))
+        last_place = {time_us: row for row, (time_us, _) in enumerate(rows)}
         fresh: list[int] = []
-        for row, text in enumerate(texts):
-            if text not in self._known:
-                self._known.add(text)
-                fresh.append(row)
+        for row, (time_us, text) in enumerate(rows):
+            known = (time_us, text) in self._known
+            counts_again = time_us != NO_TIME_US and last_place[time_us] == row and self._last.get(time_us) != text
+            if known and not counts_again:
+                continue
+            self._know(time_us, text)
+            fresh.append(row)
         if len(self._known) > _MOST_KNOWN:
             # What no longer stands in the part of the file that is read cannot come again.
-            self._known = set(texts)
+            self._known = set(rows)
+            self._last = dict(rows)
         return table.take(np.array(fresh, dtype=np.int64))
+
+    def _know(self, time_us: int, text: str) -> None:
+        self._known.add((time_us, text))
+        self._last[time_us] = text
 
     def _recall_for(self, table: ObservationTable) -> None:
         timed = table.time_us[table.time_us != NO_TIME_US]
         first_us = int(timed.min()) if len(timed) else 0
-        if self._recalled_from_us is None:
-            self._known.update(self._recall(first_us, _END_US))
-        elif first_us < self._recalled_from_us:
-            self._known.update(self._recall(first_us, self._recalled_from_us))
-        else:
+        until_us = _END_US if self._recalled_from_us is None else self._recalled_from_us
+        if first_us >= until_us:
             return
+        recalled = list(self._recall(first_us, until_us))
+        self._known.update(recalled)
+        # What has been taken since stands behind what was recorded before.
+        self._last = dict(recalled) | self._last
         self._recalled_from_us = first_us
-
-
-_END_US = int(np.iinfo(np.int64).max)

@@ -1,9 +1,9 @@
 """All the limits of a fleet as the board shows them, from the judge's memory; nothing is decided here."""
 
 from collections.abc import Callable, Iterable
-from dataclasses import dataclass, replace
+from dataclasses import dataclass
 from datetime import datetime
-from typing import NamedTuple
+from typing import Any, NamedTuple, TypeAlias
 
 import numpy as np
 
@@ -56,6 +56,8 @@ class _Now(NamedTuple):
 
 
 _NOWHERE = _Place(None, None)
+_Line: TypeAlias = dict[str, Any]
+"""The fields of a `LimitLine` while it is put together: one object made at the end costs a tenth of several."""
 
 
 def known(value: float) -> float | None:
@@ -115,51 +117,41 @@ class LimitLines:
         limit, standing = self._judge.limits[key], self._standings[key]
         line = _unjudged(limit, standing, self._spans(key))
         air, now = self._air, self._now.get(key)
-        if air is None or now is None:
-            return line
-        line = replace(line, limit=now.full, axis_ft=self._place(standing, now.full).axis_ft)
-        if not air.trusted:
-            return replace(line, reason="no current observation")
-        if limit.memory.state is None or limit.memory.state is State.NO_DATA:
-            return line
-        return self._judged(line, limit, standing, air, now)
+        if air is not None and now is not None:
+            line |= {"limit": now.full, "axis_ft": self._place(standing, now.full).axis_ft}
+            if not air.trusted:
+                line["reason"] = "no current observation"
+            elif limit.memory.state not in (None, State.NO_DATA):
+                line |= self._judged(limit, standing, air, now)
+        return LimitLine(**line)
 
     def _place(self, standing: Standing, limit: float) -> _Place:
         return self._places.get((_group(standing), limit), _NOWHERE)
 
-    def _judged(self, line: LimitLine, limit: LimitJudge, standing: Standing, air: TrustedAir, now: _Now) -> LimitLine:
-        state = limit.memory.state or State.NO_DATA
-        held = state is State.HOLD
+    def _judged(self, limit: LimitJudge, standing: Standing, air: TrustedAir, now: _Now) -> _Line:
+        held = limit.memory.state is State.HOLD
         shown = now.light if held else now.full
         place = self._place(standing, shown)
-        above = self._place(standing, now.light) if state is State.REDUCED else place
-        line = replace(
-            line,
-            state=state,
-            limit=shown,
-            value=now.value,
-            margin=shown - now.value,
-            reason="",
-            was=None,
-            was_at=None,
-            axis_ft=place.axis_ft,
-            hold_temperature_c=place.hold_temperature_c,
-            hold_above_c=above.hold_temperature_c,
-            gone_by=_gone_by(standing, air, now.full - now.value),
-        )
+        above = self._place(standing, now.light) if limit.memory.state is State.REDUCED else place
+        line: _Line = {
+            "state": limit.memory.state,
+            "limit": shown,
+            "value": now.value,
+            "margin": shown - now.value,
+            "reason": "",
+            "was": None,
+            "was_at": None,
+            "axis_ft": place.axis_ft,
+            "hold_temperature_c": place.hold_temperature_c,
+            "hold_above_c": above.hold_temperature_c,
+            "gone_by": _gone_by(standing, air, now.full - now.value),
+        }
         if held:
-            return replace(line, clearing=_clearing(limit, standing, shown))
-        weight = standing.greatest_weight(now.value)
-        if weight is None:
-            return line
-        greatest, full_weight, unit = weight
-        return replace(
-            line,
-            greatest_weight=greatest,
-            full_weight=full_weight,
-            weight_unit=unit,
-            greatest_weight_lb=weight_in_lb(greatest, unit),
-        )
+            line["clearing"] = _clearing(limit, standing, shown)
+        elif (weight := standing.greatest_weight(now.value)) is not None:
+            line["greatest_weight"], line["full_weight"], line["weight_unit"] = weight
+            line["greatest_weight_lb"] = weight_in_lb(weight[0], weight[2])
+        return line
 
 
 def _group(standing: Standing) -> _Group:
@@ -194,31 +186,31 @@ def _places(wanted: Iterable[tuple[_Group, float]], air: TrustedAir) -> dict[tup
     return found
 
 
-def _unjudged(limit: LimitJudge, standing: Standing, spans: tuple[Span, ...]) -> LimitLine:
+def _unjudged(limit: LimitJudge, standing: Standing, spans: tuple[Span, ...]) -> _Line:
     """Return the line of a limit without data: what is known of it all the same."""
     memory, entry = limit.memory, standing.governing
     lost = memory.state is State.NO_DATA
-    return LimitLine(
-        quantity=standing.quantity,
-        unit=standing.unit,
-        state=State.NO_DATA,
-        limit=standing.fixed,
-        value=None,
-        margin=None,
-        since=None if memory.state is None else time_from_us(memory.since_us),
-        was=memory.was if lost else memory.state,
-        was_at=_time_or_none(memory.was_us if lost else memory.last_us),
-        reason=memory.reason or "no observation yet",
-        near_band=standing.near_band,
-        spans=spans,
-        guarded=standing.guarded,
-        basis=entry.basis,
-        source=entry.source,
-        notice=entry.notice,
-        valid_until="" if entry.valid_until is None else entry.valid_until.isoformat(),
-        full_weight=standing.weights[0].weights[-1] if standing.weights else None,
-        weight_unit=standing.weights[0].weight_unit if standing.weights else "",
-    )
+    return {
+        "quantity": standing.quantity,
+        "unit": standing.unit,
+        "state": State.NO_DATA,
+        "limit": standing.fixed,
+        "value": None,
+        "margin": None,
+        "since": None if memory.state is None else time_from_us(memory.since_us),
+        "was": memory.was if lost else memory.state,
+        "was_at": _time_or_none(memory.was_us if lost else memory.last_us),
+        "reason": memory.reason or "no observation yet",
+        "near_band": standing.near_band,
+        "spans": spans,
+        "guarded": standing.guarded,
+        "basis": entry.basis,
+        "source": entry.source,
+        "notice": entry.notice,
+        "valid_until": "" if entry.valid_until is None else entry.valid_until.isoformat(),
+        "full_weight": standing.weights[0].weights[-1] if standing.weights else None,
+        "weight_unit": standing.weights[0].weight_unit if standing.weights else "",
+    }
 
 
 def _time_or_none(when_us: int) -> datetime | None:

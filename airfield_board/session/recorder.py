@@ -29,6 +29,7 @@ from airfield_board.session.intake import Intake
 from airfield_board.session.judge import Judge, Judged
 from airfield_board.session.recording import Recording, place_of_history
 from airfield_board.session.records import (
+    TYPED_IN,
     change_records,
     configuration_records,
     empty_table,
@@ -179,7 +180,7 @@ class Recorder:
         """
         now = self._clock.now()
         rows = _typed_row(time, altimeter_hpa, temperature_c, dewpoint_c, initials)
-        judged = self._take(rows, "typed", now)
+        judged = self._take(rows, TYPED_IN, now)
         if judged.checked.verdict[0] != Verdict.VALID:
             raise UserError(f"Not used: {judged.checked.reason.get(0, 'it does not pass the checks')}.")
         if judged.checked.late[0]:

@@ -12,6 +12,9 @@ from airfield_board.limits.rules import Episode, LimitChange
 from airfield_board.observations.observation import NO_TIME_US, CheckedTable, DewpointUse, ObservationTable, Verdict
 from airfield_board.session.judge import Judged
 
+TYPED_IN = "typed"
+"""The format of a row that a person typed in."""
+
 VALUES = (
     "altimeter_hpa",
     "temperature_c",
@@ -32,7 +35,7 @@ def observation_records(judged: Judged, form: str, at: datetime) -> list[Record]
     Parameters
     ----------
     form
-        The format they were read in, or ``typed``.
+        The format they were read in, or `TYPED_IN`.
     at
         When they were read.
     """

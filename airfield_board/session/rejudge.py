@@ -12,7 +12,7 @@ from airfield_board.history.records import Json, RecordKind, StoredRecord
 from airfield_board.limits.rules import Episode, LimitChange
 from airfield_board.observations.observation import Verdict
 from airfield_board.session.judge import Judge
-from airfield_board.session.records import change_body, empty_table, episode_body, table_from_records
+from airfield_board.session.records import TYPED_IN, change_body, empty_table, episode_body, table_from_records
 from airfield_board.session.settings import Airfield, Settings
 from airfield_board.session.status import CURRENT, PAST
 
@@ -207,7 +207,7 @@ class _Anew:
 
 def _read_together(one: StoredRecord, other: StoredRecord) -> bool:
     same = one.body.get("read") == other.body.get("read")
-    return same and (one.body.get("format") == "typed") == (other.body.get("format") == "typed")
+    return same and (one.body.get("format") == TYPED_IN) == (other.body.get("format") == TYPED_IN)
 
 
 def _words(body: Mapping[str, Json]) -> str:

@@ -1,6 +1,6 @@
 """Going on where the last recorder stopped: settings, states, holds, the day's curve, what waits."""
 
-from collections.abc import Callable, Collection, Mapping
+from collections.abc import Callable, Iterable, Mapping
 from dataclasses import dataclass
 from datetime import datetime
 from zoneinfo import ZoneInfo
@@ -14,10 +14,11 @@ from airfield_board.history.records import RecordKind, StoredRecord
 from airfield_board.history.store import History
 from airfield_board.limits.in_force import LimitKey
 from airfield_board.limits.states import State
-from airfield_board.observations.observation import Verdict
+from airfield_board.observations.observation import NO_TIME_US, Verdict
 from airfield_board.observations.quality_judgement import FUTURE_US
 from airfield_board.session.day_record import KEPT_US, DayRecord
 from airfield_board.session.judge import Judge
+from airfield_board.session.records import TYPED_IN
 from airfield_board.session.rejudge import SettingsReader, judge_anew
 from airfield_board.session.settings import Airfield, Settings
 from airfield_board.session.status import CURRENT, PAST, RowChange, StatusLog
@@ -34,7 +35,7 @@ class Start:
     Attributes
     ----------
     recall
-        From a stretch of time: texts of the rows recorded of it.
+        For an `Intake`.
     read_back_to_us
         How far back the observation file is to be read at first.
     doubt
@@ -44,7 +45,7 @@ class Start:
     judge: Judge
     day: DayRecord
     status: StatusLog
-    recall: Callable[[int, int], Collection[str]]
+    recall: Callable[[int, int], Iterable[tuple[int, str]]]
     read_back_to_us: int
     doubt: str
 
@@ -122,15 +123,25 @@ def restored(history: History | None, in_force: Airfield, now: datetime) -> Star
         judge=judge,
         day=day,
         status=status,
-        recall=history.raw_lines,
+        recall=_recall_from(history),
         read_back_to_us=read_back_to_us,
         doubt=_doubt(history),
     )
 
 
-def _nothing(from_us: int, until_us: int) -> Collection[str]:
+def _nothing(from_us: int, until_us: int) -> Iterable[tuple[int, str]]:
     del from_us, until_us
     return ()
+
+
+def _recall_from(history: History) -> Callable[[int, int], Iterable[tuple[int, str]]]:
+    def recall(from_us: int, until_us: int) -> Iterable[tuple[int, str]]:
+        for record in (*history.observation_records(from_us, until_us), *history.untimed_observation_records()):
+            if record.body["format"] != TYPED_IN:
+                time_us = record.body.get("time")
+                yield (time_us if isinstance(time_us, int) else NO_TIME_US), str(record.body["raw"])
+
+    return recall
 
 
 def _judge(history: History, in_force: Airfield) -> Judge:

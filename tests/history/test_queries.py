@@ -69,13 +69,11 @@ def test_records_of_observations_can_be_had_by_verdict(history: History) -> None
     assert suspect.body["reason"] == "a step"
 
 
-def test_raw_lines_are_those_of_the_time_and_the_latest_without_a_time(history: History) -> None:
+def test_the_latest_rows_without_a_time_can_be_had(history: History) -> None:
     untimed = [observation(0, time=None, raw=f"line {number}", verdict="rejected") for number in range(1_002)]
-    history.append([observation(0), observation(1), observation(2), *untimed])
-    timed = {observation(0).body["raw"], observation(1).body["raw"]}
-    assert history.raw_lines(START_US, START_US + 2 * MINUTE_US, include_untimed=False) == timed
-    found = history.raw_lines(START_US, START_US + 2 * MINUTE_US)
-    assert found == timed | {f"line {number}" for number in range(2, 1_002)}
+    history.append([observation(0), *untimed, observation(1)])
+    found = [record.body["raw"] for record in history.untimed_observation_records()]
+    assert found == [f"line {number}" for number in range(1_001, 1, -1)]
 
 
 def test_changes_of_a_time_by_scope(history: History) -> None:

@@ -1,0 +1,96 @@
+"""Which rows of a re-read file are new, and that the last of one time always counts."""
+
+from collections.abc import Iterable
+from pathlib import Path
+
+import numpy as np
+
+from airfield_board.limits.states import State
+from airfield_board.observations.observation import NO_TIME_US, ObservationTable
+from airfield_board.session.intake import Intake
+from tests.session.fields import make_field, row_of
+
+
+def _table(*rows: tuple[int, str]) -> ObservationTable:
+    unknown = np.full(len(rows), np.nan)
+    return ObservationTable(
+        time_us=np.array([time_us for time_us, _ in rows], dtype=np.int64),
+        altimeter_hpa=unknown,
+        temperature_c=unknown,
+        dewpoint_c=unknown,
+        elevation_m=unknown,
+        temperature_resolution_c=unknown,
+        dewpoint_resolution_c=unknown,
+        position=np.arange(len(rows), dtype=np.int64),
+        raw=[text for _, text in rows],
+    )
+
+
+def _nothing(from_us: int, until_us: int) -> Iterable[tuple[int, str]]:
+    del from_us, until_us
+    return ()
+
+
+def _taken(intake: Intake, *rows: tuple[int, str]) -> list[str]:
+    table = intake.new_rows(_table(*rows))
+    return [table.raw[row] for row in range(len(table))]
+
+
+def test_a_row_is_new_once() -> None:
+    intake = Intake(_nothing)
+    assert _taken(intake, (1, "a"), (2, "b")) == ["a", "b"]
+    assert _taken(intake, (1, "a"), (2, "b"), (3, "c")) == ["c"]
+    assert _taken(intake, (1, "a"), (2, "b"), (3, "c")) == []
+
+
+def test_the_last_row_of_a_time_counts_even_where_its_text_has_been_seen() -> None:
+    intake = Intake(_nothing)
+    assert _taken(intake, (1, "hot"), (1, "cool"), (1, "hot")) == ["hot", "cool", "hot"]
+    assert _taken(intake, (1, "hot"), (1, "cool"), (1, "hot")) == []
+    assert _taken(intake, (1, "hot"), (1, "cool")) == ["cool"]
+    assert _taken(intake, (1, "hot")) == ["hot"]
+
+
+def test_one_text_at_two_times_is_two_rows() -> None:
+    assert _taken(Intake(_nothing), (1, "same"), (2, "same")) == ["same", "same"]
+
+
+def test_rows_without_a_time_are_known_by_their_text() -> None:
+    intake = Intake(_nothing)
+    assert _taken(intake, (NO_TIME_US, "rubbish"), (5, "a")) == ["rubbish", "a"]
+    assert _taken(intake, (NO_TIME_US, "rubbish"), (NO_TIME_US, "more"), (5, "a")) == ["more"]
+
+
+def test_what_was_recorded_before_is_recalled_for_as_far_back_as_the_file_goes() -> None:
+    asked: list[tuple[int, int]] = []
+
+    def recall(from_us: int, until_us: int) -> Iterable[tuple[int, str]]:
+        asked.append((from_us, until_us))
+        recorded = [(10, "x"), (10, "y"), (20, "z")]
+        return [row for row in recorded if from_us <= row[0] < until_us]
+
+    intake = Intake(recall)
+    assert _taken(intake, (20, "z"), (30, "new")) == ["new"]
+    assert _taken(intake, (10, "x"), (10, "y"), (20, "z"), (30, "new")) == []
+    assert [from_us for from_us, _ in asked] == [20, 10]
+    assert _taken(intake, (10, "x"), (20, "z"), (30, "new")) == ["x"], "the file no longer has the correction"
+
+
+def test_a_correction_back_to_an_earlier_text_is_judged(tmp_path: Path) -> None:
+    field = make_field(tmp_path)
+    hot, cool = field.row(0, 35.0), field.row(0, 25.0)
+    field.write(hot)
+    recorder = field.open()
+    assert row_of(recorder.poll(), "trainer").state is State.HOLD
+    field.append(cool)
+    recorder.poll()
+    field.append(hot)
+    state = recorder.poll()
+    assert state.observation is not None
+    assert state.observation.temperature_c == 35.0
+    recorder.close()
+    recorder = field.open()
+    state = recorder.poll()
+    assert state.observation is not None
+    assert state.observation.temperature_c == 35.0
+    recorder.close()
