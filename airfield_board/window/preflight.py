@@ -6,8 +6,11 @@ looked for first, without importing Qt, and what is missing is said all at once.
 
 import ctypes
 import os
+import queue
+import re
 import socket
 import sys
+import threading
 from collections.abc import Callable, Iterable, Mapping, Sequence
 from dataclasses import dataclass
 from functools import partial
@@ -19,8 +22,8 @@ COMMANDS_WITHOUT_SCREEN = ("assess", "compute", "replay", "check", "snapshot", "
 """Commands that need no display."""
 
 _PLATFORMS_WITHOUT_SCREEN = frozenset({"offscreen", "minimal", "minimalegl"})
-_CONNECT_S = 3.0
-_X11_TCP_PORT = 6000
+_CONNECT_S = 5.0
+_X11_DISPLAY = re.compile(r"[^\0]*:[0-9]{1,5}(\.[0-9]{1,3})?")
 
 # Library and Debian/Ubuntu package, from the plugins' own lists of needed libraries (readelf) and Debian 12's
 # package index.
@@ -249,35 +252,32 @@ def _wayland_answers(environment: Mapping[str, str]) -> bool:
     if not display:
         return False
     path = Path(environment.get("XDG_RUNTIME_DIR", "/")) / display  # an absolute display replaces the folder
-    return _connects(socket.AF_UNIX, str(path))
-
-
-def _x11_connection(display: str) -> Callable[[], object] | None:
-    """Connect to an X server; return what ends the connection, None where it is not there or does not let us in."""
-    host, colon, number = display.rpartition(":")
-    screen = number.split(".")[0]
-    if not colon or not screen.isdecimal():
-        return None
-    if host in {"", "unix"}:
-        path = f"/tmp/.X11-unix/X{screen}"  # noqa: S108  the place where X servers put their sockets
-        reached = _connects(socket.AF_UNIX, path) or _connects(socket.AF_UNIX, f"\0{path}")
-    else:
-        reached = _connects(socket.AF_INET, (host, _X11_TCP_PORT + int(screen)))
-    return _x11_entry(display) if reached else None
-
-
-def _connects(family: socket.AddressFamily, address: str | tuple[str, int]) -> bool:
     try:
-        with socket.socket(family, socket.SOCK_STREAM) as connection:
+        with socket.socket(socket.AF_UNIX, socket.SOCK_STREAM) as connection:
             connection.settimeout(_CONNECT_S)
-            connection.connect(address)
-    except (OSError, OverflowError):
+            connection.connect(str(path))
+    except OSError:
         return False
     return True
 
 
+def _x11_connection(display: str) -> Callable[[], object] | None:
+    """Connect to an X server; return what ends the connection, None where it is not there or does not let us in.
+
+    Done on a thread, which is left behind where a distant server does not answer in time. No socket is tried first:
+    a server takes that for its last client leaving, and starts anew.
+    """
+    if not _X11_DISPLAY.fullmatch(display):
+        return None
+    entered: queue.SimpleQueue[Callable[[], object] | None] = queue.SimpleQueue()
+    threading.Thread(target=lambda: entered.put(_x11_entry(display)), daemon=True).start()
+    try:
+        return entered.get(timeout=_CONNECT_S)
+    except queue.Empty:
+        return None
+
+
 def _x11_entry(display: str) -> Callable[[], object] | None:
-    """Ask an X server to let us in: a socket that connects is not enough."""
     try:
         xcb = ctypes.CDLL("libxcb.so.1")
     except OSError:

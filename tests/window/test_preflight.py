@@ -1,8 +1,10 @@
+import ctypes
 import os
 import shutil
 import socket
 import subprocess
 import sys
+import threading
 from pathlib import Path
 
 import pytest
@@ -154,15 +156,31 @@ def test_without_display_variables_there_is_no_display() -> None:
 
 
 @linux_only
-@pytest.mark.parametrize("display", [":7931", "localhost:7931", "nonsense", ":", ":x", "host:99999", "unix:7931.0"])
+@pytest.mark.parametrize("display", [":7931", "localhost:7931", "nonsense", ":", ":x", ":99999", "unix:7931.0"])
 def test_a_display_that_cannot_be_reached_is_no_display(display: str) -> None:
     assert platforms({"DISPLAY": display}) == ()
 
 
 @linux_only
-def test_a_server_that_does_not_let_us_in_is_no_display(monkeypatch: pytest.MonkeyPatch) -> None:
-    monkeypatch.setattr(preflight, "_connects", lambda *_: True)
-    assert platforms({"DISPLAY": ":7931"}) == ()
+def test_a_distant_server_that_does_not_answer_in_time_is_no_display(monkeypatch: pytest.MonkeyPatch) -> None:
+    answer = threading.Event()
+    monkeypatch.setattr(preflight, "_CONNECT_S", 0.0)
+    monkeypatch.setattr(preflight, "_x11_entry", lambda _: answer.wait())
+    assert platforms({"DISPLAY": "far:0"}) == ()
+    answer.set()
+
+
+@linux_only
+def test_without_the_library_to_ask_an_x_server_the_missing_library_is_what_is_told(
+    monkeypatch: pytest.MonkeyPatch,
+) -> None:
+    def missing(library: str) -> None:
+        raise OSError(f"{library}: cannot open shared object file")
+
+    monkeypatch.setattr(ctypes, "CDLL", missing)
+    assert platforms({"DISPLAY": ":0"}) == ("xcb",)
+    with pytest.raises(MissingLibraries, match="libxcb1"):
+        choose_screen(find_screens({"DISPLAY": ":0"}), {})
 
 
 @linux_only
@@ -176,7 +194,6 @@ def test_a_wayland_socket_that_answers_is_a_display(tmp_path: Path) -> None:
 
 @linux_only
 def test_an_x_server_that_lets_us_in_is_a_display(monkeypatch: pytest.MonkeyPatch) -> None:
-    monkeypatch.setattr(preflight, "_connects", lambda *_: True)
     monkeypatch.setattr(preflight, "_x11_entry", lambda _: lambda: None)
     assert platforms({"DISPLAY": ":5"}) == ("xcb",)
     assert platforms({"DISPLAY": "far:5.0", "QT_QPA_PLATFORM": "xcb"}) == ("xcb",)
