@@ -176,6 +176,32 @@ def test_a_fault_before_the_first_dew_point_is_found(taken: list[int]) -> None:
     assert len(taken) == 3
 
 
+def test_a_fault_within_hours_of_one_value_is_found(taken: list[int]) -> None:
+    rows = [*every(5, 20), *(R(100 + 5 * k, temp=21.0) for k in range(100))]
+    rows[60] = rows[60]._replace(elevation=0.0)
+    rows[80] = rows[80]._replace(elevation=0.0)
+    checked, _ = run(rows)
+    assert np.flatnonzero(checked.verdict).tolist() == [60, 80]
+    assert sorted(checked.reason) == sorted([60, 80, *range(20 + int(hours(6) / 5), 120)])
+    assert len(taken) == 3
+
+
+def test_a_value_that_changes_with_the_first_row_of_a_stretch_counts_from_it(taken: list[int]) -> None:
+    rows = [*every(5, 20), R(100, temp=99.0), R(105, temp=20.0), *(R(110 + 5 * k, temp=20.3) for k in range(150))]
+    checked, _ = run(rows)
+    assert taken[1] > 50
+    assert min(k for k in checked.reason if k > 20) == 22 + int(hours(6) / 5)
+    assert np.flatnonzero(checked.verdict).tolist() == [20, *range(22 + int(hours(12) / 5), 172)]
+
+
+def test_dew_points_of_exactly_24_hours_ago_are_kept() -> None:
+    rows = [row._replace(dew=18.0 - 0.1 * k) for k, row in enumerate(every(60, 80, like=R(0, temp=25.0)))]
+    at_once = said(rows, [], "auto", 1e8)
+    assert at_once == said(rows, list(range(1, 80)), "auto", 1e8)
+    # The last row's before it was judged, which stood at the end of a stretch.
+    assert [entry.time_us for entry in at_once[1].before.highest_dewpoints] == [us(hours(k)) for k in range(54, 79)]
+
+
 def test_faults_are_found_after_rows_without_a_time_and_late_ones(taken: list[int]) -> None:
     _, memory = run([R(0)])
     rows = [R(None), R(None, fault="no time"), R(-5), *every(1, 100, 5)]
