@@ -6,7 +6,7 @@ from dataclasses import dataclass
 from datetime import datetime, timedelta
 from zoneinfo import ZoneInfo
 
-from PySide6.QtCore import Qt, QTimer, Signal
+from PySide6.QtCore import QSize, Qt, QTimer, Signal
 from PySide6.QtGui import QCloseEvent
 from PySide6.QtWidgets import QMainWindow, QMessageBox, QStackedWidget, QVBoxLayout, QWidget
 
@@ -29,7 +29,8 @@ from airfield_board.window.theme import SchemeChoice, apply_scheme, scheme_of
 from airfield_board.window.worker import Answer, Request, Worker
 
 _logger = logging.getLogger(__name__)
-_FIRST_PX = (1440, 900)
+_FIRST_PX = QSize(1600, 1000)
+_SCREEN_EDGE_PX = QSize(40, 80)
 _TICK_MS = 1000
 _FAST_TICK_MS = 250
 _RESUME_AFTER_S = 30.0
@@ -91,7 +92,7 @@ class MainWindow(QMainWindow):
         self._waiting_shown: object = ()
 
         self.setWindowTitle("Airfield Board")
-        self.resize(*_FIRST_PX)
+        self.resize(_FIRST_PX.boundedTo(self.screen().availableSize() - _SCREEN_EDGE_PX))
         self.view = BoardView()
         self.notice = NoticeBar()
         self._stack = QStackedWidget()

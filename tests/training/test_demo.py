@@ -66,7 +66,7 @@ def test_the_air_is_as_the_day_was_meant(played: list[BoardState]) -> None:
         ("trainer-2/Departure", {State.GO, State.NEAR, State.HOLD}),
         ("tow-plane-2/Aerotow", {State.GO, State.NEAR, State.REDUCED}),
         ("gyroplane/Departure", {State.NO_DATA}),
-        ("survey-drone/Survey flight", {State.GO}),
+        ("survey-drone/Survey", {State.GO}),
     ],
 )
 def test_the_day_shows_every_state(played: list[BoardState], key: str, states: set[State]) -> None:
