@@ -2,6 +2,7 @@
 
 from collections.abc import Callable, Iterable, Mapping
 from dataclasses import dataclass
+from math import isclose
 from pathlib import Path
 
 from airfield_board.clock import iso_utc, time_from_us, us_from_time
@@ -9,6 +10,7 @@ from airfield_board.configuration.fleet import fleet_from_text
 from airfield_board.configuration.profile import profile_from_text
 from airfield_board.errors import FileFaults
 from airfield_board.history.records import Json, RecordKind, StoredRecord
+from airfield_board.limits.in_force import EQUAL
 from airfield_board.limits.rules import Episode, LimitChange
 from airfield_board.observations.observation import Verdict
 from airfield_board.session.judge import Judge
@@ -181,7 +183,7 @@ class _Anew:
             self._differ(record.seq, f"a change that does not come about anew: {_words(record.body)}")
             return
         anew = change_body(self._due_changes.pop(0))
-        if any(record.body.get(key) != value for key, value in anew.items()):
+        if not _alike(record.body, anew):
             self._differ(record.seq, f"recorded is {_words(record.body)}; judged anew it is {_words(anew)}")
 
     def _compare_episode(self, record: StoredRecord) -> None:
@@ -189,7 +191,7 @@ class _Anew:
             self._differ(record.seq, "an episode that does not come about anew")
             return
         anew = episode_body(self._due_episodes.pop(0))
-        if any(record.body.get(key) != value for key, value in anew.items()):
+        if not _alike(record.body, anew):
             self._differ(record.seq, "an episode that is another when judged anew")
 
     def _settle(self, seq: int) -> None:
@@ -208,6 +210,18 @@ class _Anew:
 def _read_together(one: StoredRecord, other: StoredRecord) -> bool:
     same = one.body.get("read") == other.body.get("read")
     return same and (one.body.get("format") == TYPED_IN) == (other.body.get("format") == TYPED_IN)
+
+
+def _alike(recorded: Mapping[str, Json], anew: Mapping[str, Json]) -> bool:
+    """Whether a record says what came about anew; another machine may round the last digit of a number otherwise."""
+    for key, value in anew.items():
+        before = recorded.get(key)
+        if isinstance(value, float) and isinstance(before, float):
+            if not isclose(value, before, rel_tol=1e-9, abs_tol=EQUAL):
+                return False
+        elif before != value:
+            return False
+    return True
 
 
 def _words(body: Mapping[str, Json]) -> str:
