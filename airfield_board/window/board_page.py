@@ -21,7 +21,8 @@ from airfield_board.window.lettering import Lettering, baseline_for_middle, widt
 from airfield_board.window.no_data_card import NoDataCard
 from airfield_board.window.palette import Palette
 from airfield_board.window.reading import Cause, View
-from airfield_board.window.row_panel import GUTTER_PX, Headings, RowPanel
+from airfield_board.window.row_painter import GUTTER_PX
+from airfield_board.window.row_panel import Headings, RowPanel
 from airfield_board.window.row_words import tip_of, words_of
 
 if TYPE_CHECKING:

@@ -226,7 +226,7 @@ def limit_phrase(line: LimitLine | None) -> str:
         return line.quantity.value
     value = value_of_limit(line.limit, line.unit)
     if line.quantity is Quantity.PRESSURE_ALTITUDE:
-        value = f"pressure alt. {value}"
+        value = f"PA {value}"
     elif line.quantity is Quantity.ISA_DEVIATION:
         value = f"ISA {'+' if line.limit >= 0 else ''}{value}"
     return f"limit {value}{', guarded' if line.guarded else ''}"

@@ -31,7 +31,8 @@ from airfield_board.window.operation_picker import Choice, OperationPicker
 from airfield_board.window.palette import Palette
 from airfield_board.window.reading import Cause, View
 from airfield_board.window.row_layout import Density
-from airfield_board.window.row_panel import GUTTER_PX, Headings, RowPanel, columns_for
+from airfield_board.window.row_painter import GUTTER_PX, columns_for
+from airfield_board.window.row_panel import Headings, RowPanel
 from airfield_board.window.row_words import RowWords, tip_of, words_of
 
 if TYPE_CHECKING:

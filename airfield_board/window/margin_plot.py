@@ -10,7 +10,7 @@ from PySide6.QtWidgets import QWidget
 from airfield_board.limits.states import State
 from airfield_board.window.fonts import MEDIUM
 from airfield_board.window.formatting import number
-from airfield_board.window.lettering import Lettering
+from airfield_board.window.lettering import Lettering, width_of
 from airfield_board.window.margin_scene import MarginLine, MarginScene
 from airfield_board.window.palette import LIGHT, Palette
 from airfield_board.window.plot import PixelPlot, paint_gap
@@ -49,7 +49,7 @@ class MarginPlot(PixelPlot):
             return
         used = 0
         for line in scene.lines:
-            width = 3.0 if line.key == self._chosen else 2.0
+            width = (3.0 if line.key == self._chosen else 2.0) * self.devicePixelRatioF()
             for group in _GROUPS:
                 x, y = state_points(line, group)
                 item = self._item(used)
@@ -122,12 +122,13 @@ class MarginPlot(PixelPlot):
             self._name(painter, letters, top + 18.0, f"near limit, to {number(near)} ft", colours.tint_near)
 
     def _name(self, painter: QPainter, letters: Lettering, baseline: float, text: str, ground: str) -> None:
-        """Write the name of a side on its own ground, so that no line runs through it."""
-        before = len(letters.painted)
-        letters.text((12, baseline), text, ground, 13, MEDIUM)
-        box = letters.painted.pop(before)
-        painter.fillRect(QRectF(8, box.top - 4, box.width + 8, box.height + 8), QColor(ground))
-        letters.text((12, baseline), text, self._colours.ink, 13, MEDIUM)
+        """Write the name of a side where no lines are: ahead of now, late in the day at the left."""
+        scene = self._scene_shown
+        width = width_of(text, 13, MEDIUM)
+        ahead = scene is not None and scene.time.px(scene.now) + width + 40 < self.width()
+        left = self.width() - width - 12 if ahead else 12.0
+        painter.fillRect(QRectF(left - 4, baseline - 14, width + 8, 19), QColor(ground))
+        letters.text((left, baseline), text, self._colours.ink, 13, MEDIUM)
 
     def _paint_now(self, painter: QPainter, scene: MarginScene, x: float) -> None:
         colours = self._colours

@@ -101,7 +101,7 @@ class DayPlot(PixelPlot):
         for part in self._parts[len(self._stretches) :]:
             part.clear()
         for part, stretch in zip(self._parts, self._stretches, strict=False):
-            part.fill(stretch, self._colours)
+            part.fill(stretch, self._colours, 2.2 * self.devicePixelRatioF())
 
     def paint_under(self, painter: QPainter) -> None:
         """Paint water, hours, limits and holds."""
@@ -251,8 +251,8 @@ class _CurveItems:
         for item in (self._band, self._curve):
             box.addItem(item, ignoreBounds=True)
 
-    def fill(self, stretch: Stretch, colours: Palette) -> None:
-        """Take other points and colours."""
+    def fill(self, stretch: Stretch, colours: Palette, width_px: float) -> None:
+        """Take other points and colours, and a width in the screen's own pixels."""
         self._band.setPath(
             _polygon(
                 np.concatenate((stretch.seconds, stretch.seconds[::-1])),
@@ -260,7 +260,7 @@ class _CurveItems:
             )
         )
         self._band.setBrush(_clear(colours.accent, 62))
-        self._curve.setData(x=stretch.seconds, y=stretch.value, pen=pg.mkPen(QColor(colours.accent), width=2.2))
+        self._curve.setData(x=stretch.seconds, y=stretch.value, pen=pg.mkPen(QColor(colours.accent), width=width_px))
 
     def clear(self) -> None:
         """Show nothing."""

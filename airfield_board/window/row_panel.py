@@ -18,12 +18,11 @@ from PySide6.QtGui import (
 from PySide6.QtWidgets import QToolTip, QWidget
 
 from airfield_board.limits.states import State
-from airfield_board.window import formatting
 from airfield_board.window.axes import AltitudeAxis
 from airfield_board.window.canvas import Canvas
-from airfield_board.window.fonts import BOLD, MEDIUM, REGULAR, SEMIBOLD
+from airfield_board.window.fonts import MEDIUM, SEMIBOLD
 from airfield_board.window.lettering import Lettering, baseline_for_middle, width_of
-from airfield_board.window.marks import mark_colour, paint_mark
+from airfield_board.window.marks import mark_colour
 from airfield_board.window.row_layout import (
     FOLDED_PITCH_PX,
     PITCH_SMALLEST_PX,
@@ -34,66 +33,14 @@ from airfield_board.window.row_layout import (
     plan_rows,
     rows_that_fit,
 )
+from airfield_board.window.row_painter import GUTTER_PX, HOLD_COLUMN_FROM_PX, Columns, RowPainter, columns_for
 from airfield_board.window.row_words import FOLDED, RowWords, folded, wish_of
 
-GUTTER_PX = 58
-RIGHT_PX = 12
-HOLD_COLUMN_FROM_PX = 1320
-"""Window width below which the column of hold temperatures goes."""
 PLOT_MIDDLE_PX = 90
 UNFOLDED_ROWS = 40
 """So many rows are always listed one by one; of more, some are counted in one line where they get too low to read."""
 ROWS_TOP_PX = 32
 ROWS_BOTTOM_PX = 7
-
-
-@dataclass(frozen=True, slots=True, kw_only=True)
-class Columns:
-    """Where the columns begin or end, from the left of the rows.
-
-    Attributes
-    ----------
-    limit_right, hold_right
-        None where the column is left out.
-    """
-
-    block_px: float
-    name: float
-    limit_right: float | None
-    margin_right: float
-    change: float
-    change_right: float
-    hold_right: float | None
-
-    @property
-    def width(self) -> float:
-        """Width of all columns."""
-        return self.hold_right + RIGHT_PX if self.hold_right is not None else self.change_right + RIGHT_PX
-
-
-def columns_for(density: Density, window_px: int) -> Columns:
-    """Choose the columns for a height of the rows and a width of the window."""
-    with_hold = window_px >= HOLD_COLUMN_FROM_PX
-    if density is Density.COMFORTABLE:
-        return Columns(
-            block_px=144,
-            name=158,
-            limit_right=None,
-            margin_right=406,
-            change=424,
-            change_right=640,
-            hold_right=698 if with_hold else None,
-        )
-    block_px = 116 if density is Density.STANDARD else 100
-    return Columns(
-        block_px=block_px,
-        name=block_px + 12,
-        limit_right=420,
-        margin_right=486,
-        change=501,
-        change_right=716,
-        hold_right=756 if with_hold else None,
-    )
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -254,8 +201,12 @@ class RowPanel(Canvas):
         if not self._words:
             at = (GUTTER_PX + self._columns.name, PLOT_MIDDLE_PX)
             letters.text(at, self._empty_words, self.colours.soft_ink, 15, MEDIUM)
+        rows = RowPainter(painter=painter, letters=letters, colours=self.colours, columns=self._columns)
         for box in plan.boxes:
-            self._paint_row(painter, letters, box, plan)
+            row = self._words[box.index]
+            if row.key == self._chosen:
+                self._paint_ring(painter, box)
+            rows.paint_row(box, row, plan)
         if plan.level_px is not None:
             self._paint_level(painter, letters, plan, axis)
 
@@ -326,25 +277,6 @@ class RowPanel(Canvas):
             SEMIBOLD,
         )
 
-    def _paint_row(self, painter: QPainter, letters: Lettering, box: RowBox, plan: RowPlan) -> None:
-        row = self._words[box.index]
-        if row.key == self._chosen:
-            self._paint_ring(painter, box)
-        if plan.pitch.density is Density.COMFORTABLE:
-            self._paint_block(painter, letters, box, row, size_px=17, height_px=min(box.height_px - 6, 29.0))
-            self._paint_comfortable(letters, box, row)
-            return
-        pitch = plan.pitch.px
-        if plan.pitch.density is Density.STANDARD:
-            size, height = 14, min(pitch - 4, 26.0)
-        elif pitch >= 15:
-            size, height = 12, pitch - 1.5
-        else:
-            size, height = (11 if pitch >= 13 else 10), pitch - 1
-        self._paint_block(painter, letters, box, row, size_px=size, height_px=height)
-        text_px = 13 if plan.pitch.density is Density.STANDARD else size
-        self._paint_one_line(letters, box, row, text_px)
-
     def _paint_ring(self, painter: QPainter, box: RowBox) -> None:
         painter.save()
         painter.setRenderHint(QPainter.RenderHint.Antialiasing)
@@ -352,109 +284,6 @@ class RowPanel(Canvas):
         ring = QRectF(GUTTER_PX - 5, box.top_px + 0.5, self.width() - GUTTER_PX + 1, box.height_px - 1)
         painter.drawRoundedRect(ring, 5, 5)
         painter.restore()
-
-    def _paint_block(
-        self, painter: QPainter, letters: Lettering, box: RowBox, row: RowWords, *, size_px: int, height_px: float
-    ) -> None:
-        colours, width = self.colours, self._columns.block_px
-        block = QRectF(GUTTER_PX, box.middle_px - height_px / 2, width, height_px)
-        fill, ink, border, dashed = {
-            State.HOLD: (colours.hold_block, colours.on_hold, None, False),
-            State.NEAR: (colours.near_block, colours.on_near, colours.near_line, False),
-            State.REDUCED: (colours.reduced_block, colours.on_reduced, colours.near_line, False),
-            State.GO: (None, colours.go, None, False),
-            State.NO_DATA: (None, colours.no_data, colours.line, True),
-        }[row.state]
-        painter.save()
-        painter.setRenderHint(QPainter.RenderHint.Antialiasing)
-        stroke = 2.0 if row.state is State.REDUCED and height_px > 20 else 1.2
-        painter.setPen(Qt.PenStyle.NoPen if border is None else _border(border, stroke, dashed=dashed))
-        painter.setBrush(Qt.BrushStyle.NoBrush if fill is None else QColor(fill))
-        radius = 4.0 if height_px > 20 else 2.5
-        if fill is not None or border is not None:
-            painter.drawRoundedRect(block.adjusted(stroke / 2, stroke / 2, -stroke / 2, -stroke / 2), radius, radius)
-        painter.restore()
-        side = max(round(size_px * 0.86), 9)
-        side = min(side, int(height_px - 2))
-        pad = 9.0 if height_px > 20 else 6.0
-        mark_ink = colours.near_line if row.state is State.REDUCED else ink
-        mark = QRectF(block.left() + pad, box.middle_px - side / 2, side, side)
-        paint_mark(painter, row.state, mark, mark_ink, fill or colours.card)
-        word_left = mark.right() + (8 if size_px > 14 else 6)
-        word = formatting.STATE_WORDS[row.state]
-        letters.text((word_left, baseline_for_middle(box.middle_px, size_px)), word, ink, size_px, BOLD)
-
-    def _paint_comfortable(self, letters: Lettering, box: RowBox, row: RowWords) -> None:
-        colours, columns, left = self.colours, self._columns, float(GUTTER_PX)
-        lines = 3 if row.temporary else 2
-        step = min(16.0, box.height_px / lines)
-        first = box.middle_px - step * (lines - 1) / 2
-        name, margin_px = left + columns.name, 20 if row.margin[-1:].isdigit() else 17
-        margin_left = left + columns.margin_right - width_of(row.margin, margin_px, SEMIBOLD)
-        room = margin_left - name - 8
-        letters.text((name, baseline_for_middle(first, 15)), row.name, colours.ink, 15, SEMIBOLD, room_px=room)
-        second = baseline_for_middle(first + step, 13)
-        letters.text((name, second), row.details, colours.soft_ink, 13, room_px=room)
-        if row.temporary:
-            letters.text(
-                (name, baseline_for_middle(first + 2 * step, 13)), row.temporary, colours.soft_ink, 13, room_px=room
-            )
-        dashes = row.margin == formatting.DASH
-        letters.text(
-            (left + columns.margin_right, baseline_for_middle(box.middle_px, margin_px)),
-            row.margin,
-            colours.soft_ink if dashes else colours.ink,
-            margin_px,
-            REGULAR if dashes else SEMIBOLD,
-            side="right",
-        )
-        self._paint_change_in_two(letters, box, row)
-        self._paint_last(letters, box, row, 14)
-
-    def _paint_change_in_two(self, letters: Lettering, box: RowBox, row: RowWords) -> None:
-        colours, columns, left = self.colours, self._columns, float(GUTTER_PX)
-        change, room = left + columns.change, columns.change_right - columns.change
-        if row.loud and row.quiet:
-            upper, lower = box.middle_px - 8, box.middle_px + 8
-            letters.text((change, baseline_for_middle(upper, 14)), row.loud, colours.ink, 14, MEDIUM, room_px=room)
-            letters.text((change, baseline_for_middle(lower, 13)), row.quiet, colours.soft_ink, 13, room_px=room)
-            return
-        text, ink, weight = (row.loud, colours.ink, MEDIUM) if row.loud else (row.quiet, colours.soft_ink, REGULAR)
-        if row.state is State.NO_DATA:
-            ink, weight = colours.soft_ink, MEDIUM
-        if text:
-            letters.text((change, baseline_for_middle(box.middle_px, 14)), text, ink, 14, weight, room_px=room)
-
-    def _paint_one_line(self, letters: Lettering, box: RowBox, row: RowWords, size_px: int) -> None:
-        colours, columns, left = self.colours, self._columns, float(GUTTER_PX)
-        baseline = baseline_for_middle(box.middle_px, size_px)
-        name, limit_right = left + columns.name, left + (columns.limit_right or columns.margin_right)
-        limit_left = limit_right - width_of(row.limit, size_px) - 10
-        letters.text((name, baseline), row.one_line, colours.ink, size_px, MEDIUM, room_px=limit_left - name)
-        letters.text((limit_right, baseline), row.limit, colours.soft_ink, size_px, side="right")
-        letters.text((left + columns.margin_right, baseline), row.margin, colours.ink, size_px, SEMIBOLD, side="right")
-        change, room = left + columns.change, columns.change_right - columns.change
-        if row.loud:
-            muted = row.state is State.NO_DATA
-            ink = colours.soft_ink if muted else colours.ink
-            end = letters.text((change, baseline), row.loud, ink, size_px, MEDIUM, room_px=room) - change
-            rest = room - end - 8
-            if row.quiet and width_of(row.quiet, size_px) <= rest:
-                letters.text((change + end + 8, baseline), row.quiet, colours.soft_ink, size_px)
-        elif row.quiet:
-            letters.text((change, baseline), row.quiet, colours.soft_ink, size_px, room_px=room)
-        self._paint_last(letters, box, row, size_px)
-
-    def _paint_last(self, letters: Lettering, box: RowBox, row: RowWords, size_px: int) -> None:
-        if self._columns.hold_right is None:
-            return
-        ink = self.colours.soft_ink if row.last == formatting.DASH else self.colours.ink
-        right = GUTTER_PX + self._columns.hold_right
-        middle = box.middle_px - (8 if row.last_below else 0)
-        letters.text((right, baseline_for_middle(middle, size_px)), row.last, ink, size_px, MEDIUM, side="right")
-        if row.last_below:
-            baseline = baseline_for_middle(box.middle_px + 8, 13)
-            letters.text((right, baseline), row.last_below, self.colours.soft_ink, 13, side="right")
 
     def _choose(self, key: str, *, pin: bool) -> None:
         self._pinned = pin and bool(key)
@@ -516,13 +345,6 @@ class RowPanel(Canvas):
         if not self._pinned and not self.underMouse():
             self._choose("", pin=False)
         super().focusOutEvent(event)
-
-
-def _border(colour: str, stroke: float, *, dashed: bool) -> QPen:
-    pen = QPen(QColor(colour), stroke)
-    if dashed:
-        pen.setDashPattern([3.0, 2.2])
-    return pen
 
 
 def _leader(painter: QPainter, from_px: float, to_px: float) -> None:

@@ -199,7 +199,7 @@ def test_limits_name_what_is_not_a_density_altitude() -> None:
     temperature = limit_line(quantity=Quantity.TEMPERATURE, unit="c", limit=42.0)
     assert formatting.limit_phrase(temperature) == "limit 42 °C"
     pressure = limit_line(quantity=Quantity.PRESSURE_ALTITUDE, limit=5000.0)
-    assert formatting.limit_phrase(pressure) == "limit pressure alt. 5,000 ft"
+    assert formatting.limit_phrase(pressure) == "limit PA 5,000 ft"
     deviation = limit_line(quantity=Quantity.ISA_DEVIATION, unit="c", limit=25.5)
     assert formatting.limit_phrase(deviation) == "limit ISA +25.5 °C"
     assert formatting.limit_phrase(limit_line(guarded=True)) == "limit 6,350 ft, guarded"
