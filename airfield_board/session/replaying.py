@@ -6,6 +6,7 @@ from datetime import datetime
 from pathlib import Path
 
 import numpy as np
+from numpy.typing import NDArray
 
 from airfield_board import __version__
 from airfield_board.clock import time_from_us, us_from_time
@@ -19,7 +20,8 @@ from airfield_board.session.judge import Judge, Judged
 from airfield_board.session.records import change_records, configuration_records, observation_records
 from airfield_board.session.status import RowStates
 
-_BATCH_ROWS = 5_000
+_RECORDED_BATCH_ROWS = 5_000
+_UNRECORDED_BATCH_ROWS = 250_000
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -81,9 +83,7 @@ def replay(
     """
     judge = Judge(profile, fleet)
     if history_path is None:
-        steps = [judge.advance(read.table, us_from_time(now))]
-        if progress is not None:
-            progress(len(read.table))
+        steps = list(_judged(judge, read.table, now, progress))
     else:
         steps = list(_recorded(judge, read, now, history_path, progress))
     place = {key: index for index, key in enumerate(judge.limits)}
@@ -97,12 +97,27 @@ def replay(
     )
 
 
+def _judged(
+    judge: Judge, table: ObservationTable, now: datetime, progress: Callable[[int], None] | None
+) -> Iterator[Judged]:
+    order = _order(table)
+    for start, stop in _batches(table.time_us[order], _UNRECORDED_BATCH_ROWS):
+        yield judge.advance(table.take(order[start:stop]), us_from_time(now))
+        if progress is not None:
+            progress(stop)
+
+
+def _order(table: ObservationTable) -> NDArray[np.int64]:
+    order: NDArray[np.int64] = np.argsort(table.time_us, kind="stable")
+    return order
+
+
 def _recorded(
     judge: Judge, read: ReadResult, now: datetime, path: Path, progress: Callable[[int], None] | None
 ) -> Iterator[Judged]:
     """Judge in batches, each recorded as if it had been read when its last row was new."""
     table = read.table
-    order: np.ndarray[tuple[int], np.dtype[np.int64]] = np.argsort(table.time_us, kind="stable")
+    order = _order(table)
     first_us = int(table.time_us[table.time_us > 0].min(initial=us_from_time(now)))
     begun = min(now, time_from_us(first_us))
     history = History.open(path, now=begun, program_version=__version__)
@@ -112,7 +127,7 @@ def _recorded(
         source: dict[str, Json] = {"topic": "replay", "text": "recorded by a replay of past observations"}
         message = Record(kind=RecordKind.MESSAGE, at=begun, body=source)
         history.append([message, *configuration_records(judge.profile, judge.fleet, begun)])
-        for start, stop in _batches(table.time_us[order]):
+        for start, stop in _batches(table.time_us[order], _RECORDED_BATCH_ROWS):
             batch = table.take(order[start:stop])
             judged, closed_at = _batch_step(judge, batch, now, closed_at)
             records = observation_records(judged, read.format, closed_at)
@@ -127,11 +142,11 @@ def _recorded(
         history.close(now=closed_at)
 
 
-def _batches(time_us: np.ndarray[tuple[int], np.dtype[np.int64]]) -> Iterator[tuple[int, int]]:
+def _batches(time_us: NDArray[np.int64], rows: int) -> Iterator[tuple[int, int]]:
     """Yield stretches of rows in order of time, none of which parts two rows of one time."""
     start = 0
     while start < len(time_us):
-        stop = min(start + _BATCH_ROWS, len(time_us))
+        stop = min(start + rows, len(time_us))
         stop = int(np.searchsorted(time_us, time_us[stop - 1], side="right"))
         yield start, stop
         start = stop
