@@ -298,7 +298,7 @@ def _clearing(line: LimitLine, now: datetime, zone: ZoneInfo) -> tuple[str, str]
     if clearing.since is None or clearing.earliest is None:
         return f"clears at or below {needs}", f"for {minutes(clearing.for_min)} min"
     if clearing.earliest <= now:
-        back = "back at the next reading at the earliest"
+        back = "may clear at the next reading"
     else:
         back = f"back {clock_up(clearing.earliest, zone)} at the earliest"
     return back, f"below {needs} since {time_near(clearing.since, now, zone)}"
