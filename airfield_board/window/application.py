@@ -5,7 +5,9 @@ import signal
 import sys
 import tempfile
 from collections.abc import Callable, Iterable
+from functools import partial
 from pathlib import Path
+from types import TracebackType
 from typing import TYPE_CHECKING, TextIO
 from zoneinfo import ZoneInfo
 
@@ -19,7 +21,7 @@ from airfield_board.window import formatting
 from airfield_board.window.preflight import Screen, choose_screen, find_screens, no_display_message, require_libraries
 
 if TYPE_CHECKING:
-    from airfield_board.window.main_window import Feed
+    from airfield_board.window.main_window import Feed, MainWindow
 
 DONE = 0
 _FOLDER_PREFIX = "airfield-board-demo-"
@@ -157,6 +159,14 @@ def write_changes(boards: Iterable[BoardState], out: TextIO) -> BoardState:
     return last
 
 
+def _take_fault(
+    window: "MainWindow", kind: type[BaseException], error: BaseException, trace: TracebackType | None
+) -> None:
+    """Report what nothing caught on the window's thread, and take away a board that may no longer be kept up."""
+    sys.__excepthook__(kind, error, trace)
+    window.show_fault(f"{kind.__name__}: {error}")
+
+
 def _height(state: BoardState, change: StatusChange) -> str:
     """Say at what density altitude it changed, where the board is that of the change."""
     if state.conditions is None or state.observation is None or state.observation.time != change.time:
@@ -205,6 +215,7 @@ def _run(screen: Screen, start_feed: "Callable[[], Feed]", *, scheme: str, repla
     window.opening_failed.connect(give_up)
     for number in (signal.SIGINT, signal.SIGTERM):
         signal.signal(number, lambda *_: window.close())  # noticed at the next tick of the window's clock
+    sys.excepthook = partial(_take_fault, window)
     window.show()
     window.start()
     code = application.exec()

@@ -7,7 +7,7 @@ from datetime import datetime, timedelta
 from zoneinfo import ZoneInfo
 
 from PySide6.QtCore import QSize, Qt, QTimer, Signal
-from PySide6.QtGui import QCloseEvent
+from PySide6.QtGui import QCloseEvent, QGuiApplication
 from PySide6.QtWidgets import QMainWindow, QMessageBox, QStackedWidget, QVBoxLayout, QWidget
 
 from airfield_board.clock import Clock
@@ -20,10 +20,10 @@ from airfield_board.window.dialogs import (
     MessagesDialog,
     TypeInDialog,
     WaitingSettingsDialog,
-    plain_label,
 )
 from airfield_board.window.entry import TypedObservation
 from airfield_board.window.menus import KEYS, Menus
+from airfield_board.window.no_board_page import NoBoardPage
 from airfield_board.window.notice_bar import NoticeBar
 from airfield_board.window.theme import SchemeChoice, apply_scheme, scheme_of
 from airfield_board.window.worker import Answer, Request, Worker
@@ -95,9 +95,11 @@ class MainWindow(QMainWindow):
         self.resize(_FIRST_PX.boundedTo(self.screen().availableSize() - _SCREEN_EDGE_PX))
         self.view = BoardView()
         self.notice = NoticeBar()
+        self._nothing_yet = NoBoardPage("Nothing has been read yet. Reading …")
+        self.fault_page = NoBoardPage("", action="Show the board again", act=self._show_again)
         self._stack = QStackedWidget()
-        self._stack.addWidget(_nothing_yet())
-        self._stack.addWidget(self.view)
+        for page in (self._nothing_yet, self.view, self.fault_page):
+            self._stack.addWidget(page)
         middle = QWidget()
         column = QVBoxLayout(middle)
         column.setContentsMargins(0, 0, 0, 0)
@@ -112,6 +114,8 @@ class MainWindow(QMainWindow):
         self.view.page_asked.connect(self.show_page)
         self.view.poll_asked.connect(self.poll)
         self.view.type_in_asked.connect(self.type_in)
+        self._style_hints = QGuiApplication.styleHints()
+        self._style_hints.colorSchemeChanged.connect(self._system_scheme_changed)
         self._ticker = QTimer(self)
         self._ticker.setTimerType(Qt.TimerType.PreciseTimer)
         self._ticker.timeout.connect(self.tick)
@@ -137,16 +141,21 @@ class MainWindow(QMainWindow):
         self._feed.worker.deleteLater()
         self._state = None
         self._last_tick = None
-        self._stack.setCurrentIndex(0)
+        self._stack.setCurrentWidget(self._nothing_yet)
         self.notice.dismiss()
         self._feed = self._start_feed()
         self._listen()
 
     def choose_scheme(self, choice: SchemeChoice) -> None:
-        """Show light or dark colours, or those of the system."""
+        """Show light or dark colours, or those of the system and its changes."""
+        self._choice = choice
         scheme = scheme_of(choice)
         self.view.set_scheme(scheme)
         apply_scheme(scheme)
+
+    def _system_scheme_changed(self) -> None:
+        if self._choice is SchemeChoice.SYSTEM:
+            self.choose_scheme(self._choice)
 
     def tick(self) -> None:
         """Show the time and the age; trust nothing where the recorder has not answered for too long."""
@@ -163,6 +172,24 @@ class MainWindow(QMainWindow):
         self.view.show_state(state, now)
         if self._type_in is not None:
             self._type_in[1].refresh()
+
+    def show_fault(self, fault: str) -> None:
+        """Take the board away after an unexpected fault of the window: what is on the screen may be out of date.
+
+        Parameters
+        ----------
+        fault
+            What went wrong, in a line.
+        """
+        self.fault_page.say(
+            f"The window met an unexpected fault ({fault}). What the board showed may be out of date.\n"
+            "Observations are still read and recorded."
+        )
+        self._stack.setCurrentWidget(self.fault_page)
+
+    def _show_again(self) -> None:
+        self._stack.setCurrentWidget(self._nothing_yet if self._state is None else self.view)
+        self.tick()
 
     # What a person asks for.
 
@@ -260,8 +287,8 @@ class MainWindow(QMainWindow):
     def _take_state(self, state: BoardState) -> None:
         self._state = state
         self.setWindowTitle(f"{state.airfield.name} · Airfield Board")
-        if self._stack.currentIndex() == 0:
-            self._stack.setCurrentIndex(1)
+        if self._stack.currentWidget() is self._nothing_yet:
+            self._stack.setCurrentWidget(self.view)
         self.tick()
         if self._messages is not None:
             self._messages.show_state(state)
@@ -284,11 +311,13 @@ class MainWindow(QMainWindow):
             return
         acknowledged = self._acknowledged.pop(answer.request, None)
         if answer.problem:
-            if answer.problem != self._poll_problem:
+            if not answer.request.polls or answer.problem != self._poll_problem:
                 self.notice.say(answer.problem)
-            self._poll_problem = answer.problem
+            if answer.request.polls:
+                self._poll_problem = answer.problem
             return
-        self._poll_problem = ""
+        if answer.request.polls:
+            self._poll_problem = ""
         if acknowledged is not None:
             numbers, initials = acknowledged
             self.notice.say(
@@ -378,12 +407,6 @@ class MainWindow(QMainWindow):
         if not self._feed.worker.close(_CLOSE_WAIT_S):
             _logger.warning("The recorder did not close in %.0f s; its stop is not recorded", _CLOSE_WAIT_S)
         super().closeEvent(event)
-
-
-def _nothing_yet() -> QWidget:
-    label = plain_label("NO DATA\n\nNothing has been read yet. Reading …")
-    label.setAlignment(Qt.AlignmentFlag.AlignCenter)
-    return label
 
 
 def _count(number: int, what: str) -> str:

@@ -71,11 +71,14 @@ class Request:
         Called with the recorder, on its thread.
     still_seen
         Asked of the recorder's newest board just before ``run``: whether it is still what the person saw who asked.
+    polls
+        Whether it only reads the source.
     """
 
     what: str
     run: Callable[[BoardRecorder], BoardState] = field(repr=False)
     still_seen: Callable[[BoardState], bool] = field(default=lambda _: True, repr=False)
+    polls: bool = False
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -169,7 +172,7 @@ class Worker(QObject):
         if self._closing or self._poll_under_way is not None:
             return
         self._timer.stop()
-        self._poll_under_way = Request(what=_POLL_WORDS, run=self._fed_poll)
+        self._poll_under_way = Request(what=_POLL_WORDS, run=self._fed_poll, polls=True)
         self._requests.put(self._poll_under_way)
 
     def ask(self, request: Request) -> None:
@@ -240,7 +243,7 @@ class Worker(QObject):
     def _opened(self) -> BoardRecorder | None:
         recorder, problem = _tried(_OPEN_WORDS, self._open_recorder)
         if recorder is None:
-            first = self._requests.get() or Request(what=_OPEN_WORDS, run=self._fed_poll)
+            first = self._requests.get() or Request(what=_OPEN_WORDS, run=self._fed_poll, polls=True)
             self._tell(Answer(request=first, state=None, problem=problem, opened=False))
         return recorder
 

@@ -42,6 +42,29 @@ main_window.MainWindow.start = start
 sys.exit(main(sys.argv[2:]))
 """
 
+WINDOW_THAT_FAULTS = """
+import sys
+from airfield_board.cli import main
+from airfield_board.window import application, board_view, main_window, preflight
+
+application.find_screens = lambda _: (preflight.Screen(platform="offscreen"),)
+
+def show_state(self, state, now):
+    raise ZeroDivisionError("on purpose")
+
+board_view.BoardView.show_state = show_state
+tell = main_window.MainWindow.show_fault
+
+def show_fault(self, fault):
+    tell(self, fault)
+    if self.isVisible():
+        print("NO DATA page:" if self.fault_page.isVisible() else "board:", fault)
+    self.close()
+
+main_window.MainWindow.show_fault = show_fault
+sys.exit(main(sys.argv[1:]))
+"""
+
 
 @pytest.fixture
 def field(tmp_path: Path) -> Iterator[Path]:
@@ -137,6 +160,13 @@ def test_the_demo_opens_in_the_window_and_leaves_nothing_behind(tmp_path: Path) 
     assert done.returncode == 0
     assert "Traceback" not in done.stderr
     assert list(tmp_path.iterdir()) == []
+
+
+def test_a_fault_while_showing_the_board_takes_the_board_away(field: Path) -> None:
+    done = run_python(["-c", WINDOW_THAT_FAULTS, "--airfield", str(field)])
+    assert "ZeroDivisionError" in done.stderr
+    assert done.stdout == "NO DATA page: ZeroDivisionError: on purpose\n"
+    assert done.returncode == 0
 
 
 @linux_only

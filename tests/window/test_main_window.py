@@ -4,6 +4,7 @@ from datetime import timedelta
 
 import pytest
 from PySide6.QtCore import Qt
+from PySide6.QtGui import QGuiApplication
 from PySide6.QtTest import QTest
 from PySide6.QtWidgets import QMessageBox, QWidget
 from pytestqt.qtbot import QtBot
@@ -15,7 +16,7 @@ from airfield_board.window.dialogs import AcknowledgeDialog, MessagesDialog, Typ
 from airfield_board.window.main_window import Feed, MainWindow
 from airfield_board.window.reading import Cause
 from airfield_board.window.theme import SchemeChoice
-from airfield_board.window.worker import Worker
+from airfield_board.window.worker import Request, Worker
 from tests.window.recorders import FakeRecorder
 from tests.window.states import board
 
@@ -329,6 +330,37 @@ def test_a_poll_that_fails_is_told_once_and_the_board_stays(desk: Desk) -> None:
     assert desk.window.state is state
     desk.window.notice.dismiss()
     assert not desk.window.notice.isVisible()
+
+
+def test_another_request_that_fails_with_the_same_words_is_told_again(desk: Desk) -> None:
+    desk.recorder.failures = [UserError("the disk is full")]
+    desk.window.poll()
+    desk.qtbot.waitUntil(desk.window.notice.isVisible)
+    desk.window.notice.dismiss()
+    desk.recorder.failures = [UserError("the disk is full")]
+    desk.window.worker.ask(Request(what="try", run=lambda recorder: recorder.poll()))
+    desk.qtbot.waitUntil(desk.window.notice.isVisible)
+    assert desk.window.notice.label.text() == "the disk is full"
+
+
+def test_after_a_fault_of_the_window_the_board_is_gone_until_it_is_asked_for(desk: Desk) -> None:
+    desk.window.show_fault("ValueError: no")
+    assert not desk.window.view.isVisible()
+    assert any("NO DATA" in label for label in labels(desk.window))
+    assert any("ValueError: no" in label for label in labels(desk.window))
+    desk.show(board())
+    assert not desk.window.view.isVisible()
+    desk.window.fault_page.button.click()
+    assert desk.window.view.isVisible()
+
+
+def test_a_change_of_the_systems_look_is_followed_only_where_that_was_chosen(desk: Desk) -> None:
+    desk.window.choose_scheme(SchemeChoice.DARK)
+    QGuiApplication.styleHints().colorSchemeChanged.emit(Qt.ColorScheme.Light)
+    desk.qtbot.waitUntil(lambda: desk.window.palette().window().color().lightness() < 60)
+    desk.window.choose_scheme(SchemeChoice.SYSTEM)
+    QGuiApplication.styleHints().colorSchemeChanged.emit(Qt.ColorScheme.Light)
+    desk.qtbot.waitUntil(lambda: desk.window.palette().window().color().lightness() > 60)
 
 
 def test_f11_shows_the_board_alone_and_back(desk: Desk) -> None:
