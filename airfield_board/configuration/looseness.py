@@ -127,17 +127,14 @@ def merge_limits(in_force: Sequence[Limit], read: Sequence[Limit], *, today: dat
         the rules take the lowest. Of bands and off-delays the greater holds, and guarded before simple acceptance.
     """
     spans = tuple(_spans((*in_force, *read)))
-    merged: list[tuple[_Span, tuple[Limit, ...]]] = []
+    merged: list[tuple[_Span, LimitMerge]] = []
     loosened: set[Aspect] = set()
     tightened: set[Aspect] = set()
     for span in spans:
         new = _undated(read, span)
-        if today is not None and span[1] is not None and span[1] < today:
-            merged.append((span, new))
-            continue
-        old = _undated(in_force, span)
-        day = _merge_day(old, new)
-        merged.append((span, day.effective))
+        is_over = today is not None and span[1] is not None and span[1] < today
+        day = _merge_day(new if is_over else _undated(in_force, span), new)
+        merged.append((span, day))
         loosened |= day.loosened
         tightened |= day.tightened
     return LimitMerge(
@@ -166,12 +163,21 @@ def _undated(limits: Iterable[Limit], span: _Span) -> tuple[Limit, ...]:
     return tuple(dict.fromkeys(alike))
 
 
-def _joined(merged: Sequence[tuple[_Span, tuple[Limit, ...]]]) -> Iterator[Limit]:
-    """Give the entries of all spans their dates again, one entry where it goes on from span to span."""
-    for limit in dict.fromkeys(limit for _, limits in merged for limit in limits):
+def _joined(merged: Sequence[tuple[_Span, LimitMerge]]) -> Iterator[Limit]:
+    """Give entries their dates again, one where it goes on from span to span.
+
+    Of old and new limits that hold together, those that are the lowest on none of their days go: else every change
+    would leave some more behind.
+    """
+    needed = [
+        limit
+        for _, merge in merged
+        for limit in (ruling(merge.effective) if Aspect.LIMIT in merge.loosened else merge.effective)
+    ]
+    for limit in dict.fromkeys(needed):
         run: _Span | None = None
-        for span, limits in merged:
-            if limit in limits:
+        for span, merge in merged:
+            if limit in merge.effective:
                 run = (span[0] if run is None else run[0], span[1])
             elif run is not None:
                 yield replace(limit, valid_from=run[0], valid_until=run[1])
@@ -187,7 +193,8 @@ def _merge_day(old: tuple[Limit, ...], new: tuple[Limit, ...]) -> LimitMerge:
     kept = new
     if not _nowhere_looser(new, old):
         loosened.add(Aspect.LIMIT)
-        kept = ruling((*new, *old))
+        lowest = ruling((*new, *old))
+        kept = (*new, *(limit for limit in old if limit in lowest))
     if not _nowhere_looser(old, new):
         tightened.add(Aspect.LIMIT)
     if old and new:
@@ -200,11 +207,12 @@ def _merge_day(old: tuple[Limit, ...], new: tuple[Limit, ...]) -> LimitMerge:
             if Aspect.LIMIT in loosened or aspect in loosened:
                 least = max(before, after)
                 kept = tuple(with_band(limit, max(read_band(limit), least)) for limit in kept)
-        was_guarded, is_guarded = (any(limit.guarded for limit in limits) for limits in (old, new))
-        if was_guarded != is_guarded:
-            (loosened if was_guarded else tightened).add(Aspect.ACCEPTANCE)
-        if was_guarded and not is_guarded:
-            kept = tuple(replace(limit, guarded=True) for limit in kept)
+    was_guarded, is_guarded = (any(limit.guarded for limit in limits) for limits in (old, new))
+    if old and new and was_guarded != is_guarded:
+        (loosened if was_guarded else tightened).add(Aspect.ACCEPTANCE)
+    if loosened and (was_guarded or is_guarded):
+        # One guarded entry makes all of its days guarded, also where it is not the one that stays.
+        kept = tuple(replace(limit, guarded=True) for limit in kept)
     return LimitMerge(
         effective=tuple(dict.fromkeys(kept)), loosened=frozenset(loosened), tightened=frozenset(tightened)
     )

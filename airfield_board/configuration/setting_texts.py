@@ -39,8 +39,7 @@ def aspect_text(limits: Sequence[Limit], aspect: Aspect) -> str:
             return _apart(telling, [f"{number_text(limit.deadband)} {_UNITS[limit.unit]}" for limit in telling])
         case Aspect.OFF_DELAY:
             return _apart(telling, [f"{number_text(limit.off_delay_min)} min" for limit in telling])
-        case Aspect.ACCEPTANCE:
-            return _apart(telling, ["guarded" if limit.guarded else "simple" for limit in telling])
+    return _apart(telling, ["guarded" if limit.guarded else "simple" for limit in telling])
 
 
 def _overruled(limit: Limit, limits: Sequence[Limit]) -> bool:

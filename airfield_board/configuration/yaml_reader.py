@@ -166,7 +166,6 @@ class _Reader:
     def _begin(self, line: int, *, is_mapping: bool) -> None:
         if len(self._open) >= _DEEPEST:
             raise _StopReadingError(line, f"this is nested more than {_DEEPEST} deep; no settings file needs that")
-        self._count(line)
         self._open.append(_Open(line=line, is_mapping=is_mapping, key_line=line))
 
     def _end(self) -> None:

@@ -228,11 +228,11 @@ def test_deep_nesting_is_refused_at_once(unit: str) -> None:
 
 
 def test_a_file_of_very_many_values_is_refused(monkeypatch: pytest.MonkeyPatch) -> None:
-    monkeypatch.setattr(yaml_reader, "_MOST_NODES", 12)
+    monkeypatch.setattr(yaml_reader, "_MOST_NODES", 11)
 
     assert faults("a: [1, 2, 3, 4, 5, 6]\nb: 2\n") == []
-    assert faults("a: [1, 2, 3, 4, 5, 6, 7]\nb: 2\n") == [
-        "file.yaml:2: the file has more than 12 values; a settings file is expected"
+    assert faults("a: [1, 2, 3, 4, 5, 6, 7, 8]\nb: 2\n") == [
+        "file.yaml:2: the file has more than 11 values; a settings file is expected"
     ]
 
 
