@@ -79,10 +79,23 @@ class Entry:
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class Mapping:
-    """Keys with values, each key once."""
+    """Keys with values, each key once.
+
+    Attributes
+    ----------
+    line
+        From 1.
+    by_key
+        The entries in the order of the file.
+    """
 
     line: int
-    entries: tuple[Entry, ...]
+    by_key: dict[str, Entry]
+
+    @property
+    def entries(self) -> tuple[Entry, ...]:
+        """The entries in the order of the file."""
+        return tuple(self.by_key.values())
 
     def plain(self) -> PlainValue:
         """Return a dictionary of plain values."""
@@ -90,7 +103,7 @@ class Mapping:
 
     def entry(self, key: str) -> Entry | None:
         """Return the entry of a key, if it is there."""
-        return next((entry for entry in self.entries if entry.key == key), None)
+        return self.by_key.get(key)
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)

@@ -172,7 +172,7 @@ class _Reader:
         closed = self._open.pop()
         node: Node
         if closed.is_mapping:
-            node = Mapping(line=closed.line, entries=tuple(closed.entries.values()))
+            node = Mapping(line=closed.line, by_key=closed.entries)
         else:
             node = Sequence(line=closed.line, items=tuple(closed.items))
         self._place(node, closed.line)
