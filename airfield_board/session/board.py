@@ -7,7 +7,7 @@ from zoneinfo import ZoneInfo
 import numpy as np
 
 from airfield_board.clock import local_day, start_of_local_day, time_from_us, us_from_time
-from airfield_board.configuration.model import Aircraft, Operation, Quantity
+from airfield_board.configuration.model import Aircraft, Operation
 from airfield_board.limits.in_force import LimitKey
 from airfield_board.limits.states import State, worst
 from airfield_board.observations.conditions import standard_uncertainties
@@ -27,10 +27,10 @@ from airfield_board.session.board_state import (
 from airfield_board.session.day_record import DayRecord
 from airfield_board.session.judge import Judge
 from airfield_board.session.limit_lines import LimitLines, TrustedAir, known
-from airfield_board.units import MINUTE_US, ft_from_m
+from airfield_board.units import MINUTE_US
 
 _AGEING_INTERVALS = 2.0
-_SECTIONS = {State.GO: 0, State.NEAR: 0, State.REDUCED: 1, State.HOLD: 1, State.NO_DATA: 2}
+_ABOVE, _BELOW, _FOOT = range(3)
 
 
 def board_state(judge: Judge, record: DayRecord, mode: Mode, now: datetime) -> BoardState:
@@ -84,7 +84,7 @@ def board_state(judge: Judge, record: DayRecord, mode: Mode, now: datetime) -> B
         stale_after_min=profile.observations.stale_after_min,
         ageing_after_min=_AGEING_INTERVALS * profile.observations.expected_every_min,
         aircraft=aircraft,
-        operations=tuple(_in_board_order(rows, air)),
+        operations=tuple(_in_board_order(rows)),
         curve=curve,
         unused=record.unused(day_start_us),
     )
@@ -183,33 +183,16 @@ def _shown_first(line: LimitLine) -> tuple[int, float]:
     return -line.state.severity, np.inf if temperature is None else temperature
 
 
-def _in_board_order(rows: Sequence[OperationLine], air: TrustedAir | None) -> list[OperationLine]:
+def _in_board_order(rows: Sequence[OperationLine]) -> list[OperationLine]:
     """Return the rows as they stand on the board.
 
-    Above the level those that may go, by the density altitude at which that ends, the highest first; below it those
-    that may not, likewise; at the foot those without data. With no data at all, by that altitude alone.
+    Above the level those that may go, and those of which that is not known, by the density altitude at which it ends,
+    the highest first; below the level those that may not, likewise; at the foot those that have no such altitude.
     """
-    blank = all(row.state is State.NO_DATA for row in rows)
 
     def place(row: OperationLine) -> tuple[int, float]:
-        section = 0
-        if not blank:
-            section = _SECTIONS[row.state]
-        return section, -_axis_of(row, air)
+        if row.shown is None or row.shown.place_ft is None:
+            return _FOOT, 0.0
+        return _BELOW if row.state in (State.HOLD, State.REDUCED) else _ABOVE, -row.shown.place_ft
 
     return sorted(rows, key=place)
-
-
-def _axis_of(row: OperationLine, air: TrustedAir | None) -> float:
-    shown = row.shown
-    if shown is None:
-        return -np.inf
-    if shown.axis_ft is not None:
-        return shown.axis_ft
-    if shown.quantity is Quantity.DENSITY_ALTITUDE and shown.limit is not None:
-        return shown.limit if shown.unit == "ft" else ft_from_m(shown.limit)
-    if air is None or shown.margin is None:
-        return -np.inf
-    # A limit of pressure altitude has no place on the axis; its margin gives it a place in the list.
-    margin_ft = shown.margin if shown.unit == "ft" else ft_from_m(shown.margin)
-    return float(air.conditions.density_altitude_ft[0]) + margin_ft

@@ -169,6 +169,9 @@ class LimitLine:
         The greatest weight of its table, in ``weight_unit``.
     axis_ft
         Density altitude at which the limit is reached now; None where it has no place on the axis.
+    place_ft
+        Density altitude by which the row finds its place among the others: ``axis_ft``, or for a limit on pressure
+        altitude the present one and the margin; None: at the foot.
     gone_by
         When the present rate will have used up the margin, where that is before the reading goes stale.
     spans
@@ -195,6 +198,7 @@ class LimitLine:
     full_weight: float | None = None
     weight_unit: Literal["lb", "kg", ""] = ""
     axis_ft: float | None = None
+    place_ft: float | None = None
     gone_by: datetime | None = None
     clearing: Clearing | None = None
     spans: tuple[Span, ...] = ()

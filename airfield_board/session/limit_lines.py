@@ -118,7 +118,8 @@ class LimitLines:
         line = _unjudged(limit, standing, self._spans(key))
         air, now = self._air, self._now.get(key)
         if air is not None and now is not None:
-            line |= {"limit": now.full, "axis_ft": self._place(standing, now.full).axis_ft}
+            place = self._place(standing, now.full)
+            line |= {"limit": now.full, "axis_ft": place.axis_ft, "place_ft": place.axis_ft}
             if not air.trusted:
                 line["reason"] = "no current observation"
             elif limit.memory.state not in (None, State.NO_DATA):
@@ -142,6 +143,7 @@ class LimitLines:
             "was": None,
             "was_at": None,
             "axis_ft": place.axis_ft,
+            "place_ft": _place_ft(standing, air, place, shown - now.value),
             "hold_temperature_c": place.hold_temperature_c,
             "hold_above_c": above.hold_temperature_c,
             "gone_by": _gone_by(standing, air, now.full - now.value),
@@ -152,6 +154,12 @@ class LimitLines:
             line["greatest_weight"], line["full_weight"], line["weight_unit"] = weight
             line["greatest_weight_lb"] = weight_in_lb(weight[0], weight[2])
         return line
+
+
+def _place_ft(standing: Standing, air: TrustedAir, place: _Place, margin: float) -> float | None:
+    if place.axis_ft is not None or standing.quantity is not Quantity.PRESSURE_ALTITUDE:
+        return place.axis_ft
+    return float(air.conditions.density_altitude_ft[0]) + (margin if standing.unit == "ft" else ft_from_m(margin))
 
 
 def _group(standing: Standing) -> _Group:

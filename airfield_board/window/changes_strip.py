@@ -93,11 +93,13 @@ class ChangesStrip(Canvas):
             return
         fitting = max(int((right - 12 - left) // (_ITEM_PX if not compact else 230.0)), 1)
         width = min((right - 12 - left) / fitting, 330.0)
-        for index, change in enumerate(view.state.changes[:fitting]):
+        # What waits comes first: it must not be pushed out by what does not.
+        shown = sorted(view.state.changes, key=lambda change: not change.open)[:fitting]
+        for index, change in enumerate(shown):
             box = QRectF(
                 left + index * width, 6 if not compact else 3, width - 8, self.height() - (12 if not compact else 6)
             )
-            previous = view.state.changes[index - 1] if index else None
+            previous = shown[index - 1] if index else None
             if previous is not None and not change.open and not previous.open:
                 painter.fillRect(QRectF(round(box.left()) - 8, 12, 1, self.height() - 24), QColor(colours.hairline))
             self._items.append((box, change))

@@ -154,7 +154,9 @@ class MarginPage(Canvas):
         scene = self._scene
         if scene is not None:
             axis_ft = next((drawn.now_ft for drawn in scene.lines if drawn.key == row.key), None)
-        return replace(words, last=lowest or formatting.DASH, last_below=below, axis_ft=axis_ft, temporary="")
+        return replace(
+            words, last=lowest or formatting.DASH, last_below=below, axis_ft=axis_ft, place_ft=axis_ft, temporary=""
+        )
 
     def _show_choices(self, view: View) -> None:
         keys, needle = self.keys, self.search.text().strip().casefold()

@@ -61,11 +61,11 @@ def columns_for(density: Density, window_px: int) -> Columns:
     return Columns(
         block_px=block_px,
         name=block_px + 12,
-        limit_right=420,
-        margin_right=486,
-        change=501,
-        change_right=716,
-        hold_right=756 if with_hold else None,
+        limit_right=450,
+        margin_right=516,
+        change=531,
+        change_right=732,
+        hold_right=776 if with_hold else None,
     )
 
 

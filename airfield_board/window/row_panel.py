@@ -34,7 +34,7 @@ from airfield_board.window.row_layout import (
     rows_that_fit,
 )
 from airfield_board.window.row_painter import GUTTER_PX, HOLD_COLUMN_FROM_PX, Columns, RowPainter, columns_for
-from airfield_board.window.row_words import FOLDED, RowWords, folded, wish_of
+from airfield_board.window.row_words import RowWords, folded, wish_of
 
 PLOT_MIDDLE_PX = 90
 UNFOLDED_ROWS = 40
@@ -138,7 +138,7 @@ class RowPanel(Canvas):
             len(words),
             with_level=self._level is not None,
             extra_lines=sum(row.extra_lines for row in words),
-            with_foot=any(row.axis_ft is None for row in words),
+            with_foot=any(row.place_ft is None for row in words),
         )
         columns = columns_for(pitch.density, window_px)
         if columns != self._columns:
@@ -147,7 +147,7 @@ class RowPanel(Canvas):
         return columns
 
     def _fitting(self, bottom_px: float) -> tuple[RowWords, ...]:
-        with_foot = any(row.axis_ft is None for row in self._all)
+        with_foot = any(row.place_ft is None for row in self._all)
         room_px = bottom_px - ROWS_TOP_PX
         smallest_px = PITCH_SMALLEST_PX if len(self._all) <= UNFOLDED_ROWS else FOLDED_PITCH_PX
         most = rows_that_fit(room_px, smallest_px, with_level=self._level is not None, with_foot=with_foot)
@@ -180,7 +180,7 @@ class RowPanel(Canvas):
             return
         bottom_px = self.height() - ROWS_BOTTOM_PX if self._room_bottom_px is None else self._room_bottom_px
         self._words = self._fitting(bottom_px)
-        wishes = [wish_of(row, axis.px(row.axis_ft) if row.axis_ft is not None else None) for row in self._words]
+        wishes = [wish_of(row, axis.px(row.place_ft) if row.place_ft is not None else None) for row in self._words]
         level_px = axis.px(self._level[0]) if self._level is not None else None
         self._plan = plan_rows(wishes, level_px, ROWS_TOP_PX, bottom_px)
         self.update()
@@ -237,7 +237,7 @@ class RowPanel(Canvas):
         quiet_first = sorted(plan.boxes, key=lambda box: self._words[box.index].state.severity)
         for box in quiet_first:
             row = self._words[box.index]
-            if row.axis_ft is None or row.key.startswith(FOLDED):
+            if row.axis_ft is None:
                 continue
             loud = row.state in (State.HOLD, State.NEAR, State.REDUCED)
             colour = mark_colour(row.state, self.colours) if loud else self.colours.line

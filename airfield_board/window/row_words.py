@@ -30,7 +30,9 @@ class RowWords:
     last, last_below
         What the last column has, and a line under it.
     axis_ft
-        Where the row's leader begins; on the Margin page a margin.
+        Where the row's leader begins; on the Margin page a margin. None: it has none.
+    place_ft
+        Where the row would stand, likewise; None: at the foot.
     """
 
     key: str
@@ -45,6 +47,7 @@ class RowWords:
     quiet: str
     last: str
     axis_ft: float | None
+    place_ft: float | None
     last_below: str = ""
 
     @property
@@ -83,6 +86,7 @@ def words_of(row: OperationLine, view: View) -> RowWords:
             formatting.hold_temperature(above, unit) if above is not None and math.isfinite(above) else formatting.DASH
         ),
         axis_ft=line.axis_ft if line is not None else None,
+        place_ft=line.place_ft if line is not None else None,
     )
 
 
@@ -119,7 +123,7 @@ def folded(words: Sequence[RowWords], most: int) -> tuple[RowWords, ...]:
 
 def _fold_line(state: State, rows: Sequence[RowWords]) -> RowWords:
     text = f"{len(rows)} more {formatting.STATE_WORDS[state]}"
-    places = [row.axis_ft for row in rows if row.axis_ft is not None]
+    places = [row.place_ft for row in rows if row.place_ft is not None]
     return RowWords(
         key=f"{FOLDED}{state.value}",
         state=state,
@@ -132,7 +136,8 @@ def _fold_line(state: State, rows: Sequence[RowWords]) -> RowWords:
         loud="",
         quiet="no room to list them",
         last="",
-        axis_ft=places[0] if len(places) == len(rows) else None,
+        axis_ft=None,
+        place_ft=places[0] if len(places) == len(rows) else None,
     )
 
 

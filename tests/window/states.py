@@ -151,6 +151,7 @@ def _limit_line(
             hold_temperature_c=42.0,
             hold_above_c=42.0,
             axis_ft=8050.0,
+            place_ft=8050.0,
         )
     spans, held = _spans(limit, hour)
     margin = limit - air_ft
@@ -184,6 +185,7 @@ def _limit_line(
         full_weight=2450.0 if weighted else None,
         weight_unit="lb" if weighted else "",
         axis_ft=limit,
+        place_ft=limit,
         gone_by=local(hour + 0.4) if state is State.NEAR and rising and margin < 150 else None,
         clearing=clearing,
         spans=tuple(
