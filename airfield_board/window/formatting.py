@@ -170,6 +170,14 @@ def time_near(when: datetime, now: datetime, zone: ZoneInfo) -> str:
     return f"{local:%H:%M}" if same_day else f"{day(local.date())} {local:%H:%M}"
 
 
+def observed_label(observation: CurrentObservation | None, now: datetime, zone: ZoneInfo) -> str:
+    """Say when the reading is of, in the strip's narrow cell: ``Observed 13:34``, ``15 Jul 18:40``."""
+    if observation is None:
+        return "Observed"
+    when = time_near(observation.time, now, zone)
+    return f"Observed {when}" if when == clock(observation.time, zone) else when
+
+
 def stamp(when: datetime, zone: ZoneInfo) -> str:
     """Full local and universal time, for pictures: ``Thu 16 Jul 2026, 13:20 (20:20 UTC)``."""
     local = when.astimezone(zone)

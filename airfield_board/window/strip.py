@@ -166,7 +166,7 @@ def content_of(view: View) -> StripContent:
         cells=(air, derived, measured),
         source=formatting.source_line(observation, airfield) or "no observation yet",
         typed_in=bool(observation is not None and observation.initials),
-        observed="Observed" + (f" {formatting.time_near(observation.time, now, zone)}" if observation else ""),
+        observed=formatting.observed_label(observation, now, zone),
         age=formatting.age(age) if age is not None else (dash, ""),
         age_share=min(age / stale_after, 1.0) if age is not None else 0.0,
         ageing_share=state.ageing_after_min / state.stale_after_min,

@@ -245,3 +245,14 @@ def test_tips_escape_what_files_say() -> None:
     late = tip_of(row, view_of(state, state.assessed_at + timedelta(hours=2), None))
     assert "NO DATA" not in tip
     assert "limit" not in late
+
+
+def test_the_strip_says_the_day_of_a_reading_that_is_not_of_today() -> None:
+    observation = states.board().observation
+    assert observation is not None
+    zone = ZoneInfo("America/Los_Angeles")
+    today = formatting.observed_label(observation, observation.time, zone)
+    later = formatting.observed_label(observation, observation.time + timedelta(days=40), zone)
+    assert today == f"Observed {formatting.clock(observation.time, zone)}"
+    assert later == f"16 Jul {formatting.clock(observation.time, zone)}"
+    assert formatting.observed_label(None, observation.time, zone) == "Observed"
