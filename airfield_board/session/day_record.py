@@ -28,7 +28,7 @@ class DayRecord:
         self._density_altitude_ft = np.empty(0)
         self._uncertainty_ft = np.empty(0)
         self._changes: dict[LimitKey, list[tuple[int, State]]] = {}
-        self._unused: list[tuple[int | None, str]] = []
+        self._unused: list[tuple[int | None, int, str]] = []
 
     def add_values(
         self,
@@ -45,28 +45,30 @@ class DayRecord:
         self._uncertainty_ft = uncertainties[first]
 
     def add_rows(
-        self, checked: CheckedTable, density_altitude_ft: NDArray[np.float64], u_ft: NDArray[np.float64]
+        self, checked: CheckedTable, density_altitude_ft: NDArray[np.float64], u_ft: NDArray[np.float64], read_us: int
     ) -> None:
-        """Add checked rows: the valid ones to the curve, the others to the list of unused ones."""
+        """Add checked rows read at a time: the valid ones to the curve, the others to the list of unused ones."""
         valid = np.flatnonzero(checked.verdict == Verdict.VALID)
         if len(valid):
             self.add_values(checked.rows.time_us[valid], density_altitude_ft[valid], u_ft[valid])
         for row in np.flatnonzero(checked.verdict != Verdict.VALID)[-_UNUSED_KEPT:]:
             time_us = int(checked.rows.time_us[row])
-            self.add_unused(None if time_us == NO_TIME_US else time_us, checked.reason.get(int(row), ""))
+            self.add_unused(None if time_us == NO_TIME_US else time_us, read_us, checked.reason.get(int(row), ""))
 
-    def add_unused(self, time_us: int | None, reason: str) -> None:
+    def add_unused(self, time_us: int | None, read_us: int, reason: str) -> None:
         """Add one row that was not used."""
-        self._unused.append((time_us, reason))
+        self._unused.append((time_us, read_us, reason))
         del self._unused[:-_UNUSED_KEPT]
 
     def add_changes(self, changes: Iterable[LimitChange]) -> None:
         """Add changes of limits, in order of time."""
         for change in changes:
-            self.add_state(change.key, change.time_us, change.state)
+            self.add_state(change.key, change.time_us, change.state, change.was)
 
-    def add_state(self, key: LimitKey, time_us: int, state: State) -> None:
-        """Add a limit's state from a time on."""
+    def add_state(self, key: LimitKey, time_us: int, state: State, was: State | None) -> None:
+        """Add a limit's state from a time on; a limit that had none before begins anew, and what was drawn of it goes."""
+        if was is None:
+            self._changes.pop(key, None)
         self._changes.setdefault(key, []).append((time_us, state))
 
     def forget_before(self, when_us: int) -> None:
@@ -118,10 +120,10 @@ class DayRecord:
         return tuple(spans)
 
     def unused(self, day_start_us: int) -> tuple[tuple[datetime | None, str], ...]:
-        """Return the rows of a day that were not used, the newest first, and those without a time."""
+        """Return the rows of a day that were not used, those read last first; without a time the day they were read."""
         found = [
             (None if time_us is None else time_from_us(time_us), reason)
-            for time_us, reason in self._unused
-            if time_us is None or time_us >= day_start_us
+            for time_us, read_us, reason in self._unused
+            if (read_us if time_us is None else time_us) >= day_start_us
         ]
         return tuple(reversed(found))

@@ -7,7 +7,8 @@ import numpy as np
 from airfield_board.observations.observation import NO_TIME_US, ObservationTable
 
 _MOST_KNOWN = 200_000
-_END_US = int(np.iinfo(np.int64).max)
+END_US = int(np.iinfo(np.int64).max)
+"""After all times."""
 
 
 class Intake:
@@ -55,7 +56,7 @@ class Intake:
     def _recall_for(self, table: ObservationTable) -> None:
         timed = table.time_us[table.time_us != NO_TIME_US]
         first_us = int(timed.min()) if len(timed) else 0
-        until_us = _END_US if self._recalled_from_us is None else self._recalled_from_us
+        until_us = END_US if self._recalled_from_us is None else self._recalled_from_us
         if first_us >= until_us:
             return
         recalled = list(self._recall(first_us, until_us))

@@ -3,7 +3,7 @@
 import re
 from collections.abc import Sequence
 from dataclasses import replace
-from datetime import datetime
+from datetime import datetime, timedelta
 from pathlib import Path
 from zoneinfo import ZoneInfo
 
@@ -86,6 +86,7 @@ class Recorder:
         self._heard: set[str] = set()
         self._doubt = start.doubt
         self._rows = RowStates(self._judge)
+        self._step_us, self._step = 0, 0
         self._source = _source(self._settings.in_force[0])
         # The settings may have changed while no recorder ran: what they tighten must act before the first poll.
         changes, ended = self._judge.change_settings(*self._settings.in_force, us_from_time(now))
@@ -264,7 +265,8 @@ class Recorder:
         now_us = us_from_time(now)
         judged = self._judge.advance(rows, now_us, pass_to_us=now_us)
         checked = judged.checked
-        self._day.add_rows(checked, judged.conditions.density_altitude_ft, judged.conditions.uncertainty_ft)
+        air = judged.conditions
+        self._day.add_rows(checked, air.density_altitude_ft, air.uncertainty_ft, now_us)
         valid = np.flatnonzero(checked.verdict == Verdict.VALID)
         self._warnings += [
             (int(checked.rows.time_us[row]), checked.reason[int(row)]) for row in valid if int(row) in checked.reason
@@ -272,7 +274,11 @@ class Recorder:
         if len(valid):
             newest_us = int(checked.rows.time_us[valid].max())
             self._read_back_to_us = max(self._read_back_to_us, newest_us - _OVERLAP_US)
-        self._write(observation_records(judged, form, now), judged.changes, judged.ended, now)
+        if len(rows):
+            # The clock may stand, or have been set back to, where rows were taken before: those were judged apart.
+            self._step = self._step + 1 if now_us == self._step_us else 0
+            self._step_us = now_us
+        self._write(observation_records(judged, form, now, step=self._step), judged.changes, judged.ended, now)
         return judged
 
     # -- records
@@ -305,7 +311,8 @@ class Recorder:
         zone = ZoneInfo(profile.time_zone)
         day_start = start_of_local_day(local_day(now, zone), zone)
         self._day.forget_before(us_from_time(now) - KEPT_US)
-        self._status.forget_before(day_start)
+        # A day longer than it is shown: the clock may be set back.
+        self._status.forget_before(day_start - timedelta(days=1))
         self._warnings = [warning for warning in self._warnings if warning[0] >= us_from_time(day_start)]
         not_recording = self._recording.problem
         return replace(

@@ -29,7 +29,7 @@ def _number(value: float) -> float | None:
     return None if np.isnan(value) else float(value)
 
 
-def observation_records(judged: Judged, form: str, at: datetime) -> list[Record]:
+def observation_records(judged: Judged, form: str, at: datetime, *, step: int = 0) -> list[Record]:
     """Return the records of checked rows, used and unused, in order of time.
 
     Parameters
@@ -38,13 +38,15 @@ def observation_records(judged: Judged, form: str, at: datetime) -> list[Record]
         The format they were read in, or `TYPED_IN`.
     at
         When they were read.
+    step
+        Tells apart rows of several steps at one time of the clock.
     """
     checked = judged.checked
     read_us = us_from_time(at)
-    return [
-        Record(kind=RecordKind.OBSERVATION, at=at, body=_observation_body(checked, judged, row, form, read_us))
-        for row in range(len(checked))
-    ]
+    bodies = [_observation_body(checked, judged, row, form, read_us) for row in range(len(checked))]
+    if step:
+        bodies = [{**body, "step": step} for body in bodies]
+    return [Record(kind=RecordKind.OBSERVATION, at=at, body=body) for body in bodies]
 
 
 def _observation_body(checked: CheckedTable, judged: Judged, row: int, form: str, read_us: int) -> dict[str, Json]:
@@ -133,7 +135,7 @@ def configuration_records(profile: Profile, fleet: Fleet, at: datetime) -> list[
 def table_from_records(records: Sequence[StoredRecord]) -> ObservationTable:
     """Return recorded observations as rows not yet checked, in the order in which they were recorded.
 
-    All must have been read at one time and typed in by one person, or by nobody.
+    All must have been judged in one step, and typed in by one person, or by nobody.
     """
     bodies = [record.body for record in records]
     values = [_mapping(body["values"]) for body in bodies]

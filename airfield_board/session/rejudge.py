@@ -116,7 +116,7 @@ class _Anew:
     def take(self, record: StoredRecord) -> None:
         """Take the next record."""
         if record.kind is RecordKind.OBSERVATION:
-            if self._batch and not _read_together(self._batch[-1], record):
+            if self._batch and not _judged_together(self._batch[-1], record):
                 self._judge_batch()
             self._batch.append(record)
             return
@@ -207,8 +207,8 @@ class _Anew:
             self.differences.append(Difference(seq=seq, text=text))
 
 
-def _read_together(one: StoredRecord, other: StoredRecord) -> bool:
-    same = one.body.get("read") == other.body.get("read")
+def _judged_together(one: StoredRecord, other: StoredRecord) -> bool:
+    same = all(one.body.get(key) == other.body.get(key) for key in ("read", "step"))
     return same and (one.body.get("format") == TYPED_IN) == (other.body.get("format") == TYPED_IN)
 
 

@@ -15,8 +15,8 @@ from airfield_board.history.store import History
 from airfield_board.limits.in_force import LimitKey
 from airfield_board.limits.states import State
 from airfield_board.observations.observation import NO_TIME_US, Verdict
-from airfield_board.observations.quality_judgement import FUTURE_US
 from airfield_board.session.day_record import KEPT_US, DayRecord
+from airfield_board.session.intake import END_US
 from airfield_board.session.judge import Judge
 from airfield_board.session.records import TYPED_IN
 from airfield_board.session.rejudge import SettingsReader, judge_anew
@@ -114,7 +114,7 @@ def restored(history: History | None, in_force: Airfield, now: datetime) -> Star
     judge = _judge(history, in_force)
     _fill_day(day, history, judge, now_us)
     zone = ZoneInfo(in_force[0].time_zone)
-    _fill_status(status, history, us_from_time(start_of_local_day(local_day(now, zone), zone)), now_us)
+    _fill_status(status, history, us_from_time(start_of_local_day(local_day(now, zone), zone)))
     read_back_to_us = now_us - KEPT_US
     newest = history.newest(RecordKind.OBSERVATION)
     if newest is not None and isinstance(recorded_us := newest.body.get("time"), int):
@@ -159,31 +159,41 @@ def _judge(history: History, in_force: Airfield) -> Judge:
 
 
 def _fill_day(day: DayRecord, history: History, judge: Judge, now_us: int) -> None:
-    since_us = now_us - KEPT_US
-    until_us = now_us + FUTURE_US + 1
+    # The clock may have been set back since: what is recorded of a later time of the day is part of it all the same.
+    since_us, until_us = now_us - KEPT_US, END_US
     columns = history.observations_between(since_us, until_us)
     valid = np.flatnonzero(columns.verdict == Verdict.VALID)
     day.add_values(columns.time_us[valid], columns.density_altitude_ft[valid], columns.uncertainty_ft[valid])
-    for record in history.observation_records(since_us, until_us, verdicts=_UNUSED):
+    unused = (
+        *history.observation_records(since_us, until_us, verdicts=_UNUSED),
+        *history.untimed_observation_records(),
+    )
+    for record in sorted(unused, key=lambda record: record.seq):
         time_us = record.body.get("time")
-        day.add_unused(time_us if isinstance(time_us, int) else None, str(record.body.get("reason", "")))
+        reason = str(record.body.get("reason", ""))
+        day.add_unused(time_us if isinstance(time_us, int) else None, us_from_time(record.at), reason)
     seen: set[LimitKey] = set()
-    for record in history.changes_between(since_us, until_us, scope="limit"):
+    # In the order in which they came about: after a clock set back that is not the order of their times.
+    changes = history.changes_between(since_us, until_us, scope="limit")
+    for record in sorted(changes, key=lambda record: record.seq):
         key = LimitKey(
             aircraft=str(record.body["aircraft"]),
             operation=str(record.body["operation"]),
             quantity=Quantity(str(record.body["quantity"])),
         )
+        was = None if record.body.get("from") is None else State(str(record.body["from"]))
+        if key not in seen and was is not None:
+            day.add_state(key, since_us, was, None)
         seen.add(key)
-        day.add_state(key, int(str(record.body["time"])), State(str(record.body["to"])))
+        day.add_state(key, int(str(record.body["time"])), State(str(record.body["to"])), was)
     for key, limit in judge.limits.items():
         if key not in seen and limit.memory.state is not None:
-            day.add_state(key, limit.memory.since_us, limit.memory.state)
+            day.add_state(key, limit.memory.since_us, limit.memory.state, None)
 
 
-def _fill_status(status: StatusLog, history: History, day_start_us: int, now_us: int) -> None:
+def _fill_status(status: StatusLog, history: History, day_start_us: int) -> None:
     waiting = history.open_changes(scope=CURRENT)
-    today = history.changes_between(day_start_us, now_us + FUTURE_US)
+    today = history.changes_between(day_start_us, END_US)
     records = {record.seq: record for record in (*waiting, *today) if record.body.get("scope") in (CURRENT, PAST)}
     for number, record in records.items():
         status.add(number, _row_change(record))

@@ -88,7 +88,8 @@ def _present(airfield: Airfield, table: ObservationTable, history: History | Non
     changes, _ = start.judge.change_settings(*in_force, now_us)
     start.day.add_changes(changes)
     judged = start.judge.advance(Intake(start.recall).new_rows(table), now_us, pass_to_us=now_us)
-    start.day.add_rows(judged.checked, judged.conditions.density_altitude_ft, judged.conditions.uncertainty_ft)
+    air = judged.conditions
+    start.day.add_rows(judged.checked, air.density_altitude_ft, air.uncertainty_ft, now_us)
     start.day.add_changes(judged.changes)
     return _with_changes(board_state(start.judge, start.day, Mode.LIVE, now), start, in_force[0], now)
 
@@ -129,4 +130,5 @@ def _joined(one: ObservationTable, other: ObservationTable) -> ObservationTable:
 def _with_changes(state: BoardState, start: Start, profile: Profile, when: datetime) -> BoardState:
     zone = ZoneInfo(profile.time_zone)
     day_start = start_of_local_day(local_day(when, zone), zone)
-    return replace(state, changes=start.status.newest_first(day_start))
+    changes = tuple(change for change in start.status.newest_first(day_start) if change.time <= when)
+    return replace(state, changes=changes)

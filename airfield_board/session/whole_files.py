@@ -68,6 +68,6 @@ def assess(profile: Profile, fleet: Fleet, table: ObservationTable, at: datetime
         table = table.take(np.flatnonzero(table.time_us <= at_us))
     judge, day = Judge(profile, fleet), DayRecord()
     judged = judge.advance(table, at_us, pass_to_us=at_us)
-    day.add_rows(judged.checked, judged.conditions.density_altitude_ft, judged.conditions.uncertainty_ft)
+    day.add_rows(judged.checked, judged.conditions.density_altitude_ft, judged.conditions.uncertainty_ft, at_us)
     day.add_changes(judged.changes)
     return board_state(judge, day, Mode.PAST if exact else Mode.LIVE, at)
