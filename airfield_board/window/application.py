@@ -19,6 +19,7 @@ from airfield_board.session.recorder import Recorder
 from airfield_board.training.demo import DEMO_POLL_S, DEMO_SPEED, DemoDay, running_clock, stepped_day
 from airfield_board.window import formatting
 from airfield_board.window.preflight import Screen, choose_screen, find_screens, no_display_message, require_libraries
+from airfield_board.window.text_board import ADVISES
 
 if TYPE_CHECKING:
     from airfield_board.window.main_window import Feed, MainWindow
@@ -28,7 +29,6 @@ _FOLDER_PREFIX = "airfield-board-demo-"
 DEMO_PICTURE = "airfield-board-demo.png"
 _DEMO_PICTURE_PX = (1440, 900)
 _INVENTED = "DEMO: an invented field, invented aircraft, an invented day. Not for use in flight."
-_ADVISES = "The program advises; the flight manual, local orders and the licensed people on duty decide."
 
 
 def run_window(profile_path: Path, *, scheme: str = "system") -> int:
@@ -130,7 +130,7 @@ def play_demo_in_terminal(out: TextIO, folder: Path, *, scheme: str = "light") -
     with tempfile.TemporaryDirectory(prefix=_FOLDER_PREFIX, ignore_cleanup_errors=True) as playing:
         state = write_changes(stepped_day(Path(playing)), out)
     picture = _paint(state, folder, scheme)
-    out.write(f"\nThe day is over. The board as it stands: {picture}\n{formatting.CAUTION}\n{_ADVISES}\n")
+    out.write(f"\nThe day is over. The board as it stands: {picture}\n{formatting.CAUTION}\n{ADVISES}\n")
     return DONE
 
 

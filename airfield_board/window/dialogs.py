@@ -29,7 +29,6 @@ _WIDTH_PX = 560
 _LIST_SIZE_PX = (880, 560)
 _MARGINS_PX = (20, 16, 20, 16)
 _SPACING_PX = 12
-ADVISES = "The program advises; the flight manual, local orders and the licensed people on duty decide."
 
 
 def plain_label(text: str = "") -> QLabel:

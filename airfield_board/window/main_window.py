@@ -15,7 +15,6 @@ from airfield_board.session.board_state import BoardState, Mode, StatusChange
 from airfield_board.window import formatting
 from airfield_board.window.board_view import BoardView
 from airfield_board.window.dialogs import (
-    ADVISES,
     AcknowledgeDialog,
     MessagesDialog,
     TypeInDialog,
@@ -25,6 +24,7 @@ from airfield_board.window.entry import TypedObservation
 from airfield_board.window.menus import KEYS, Menus
 from airfield_board.window.no_board_page import NoBoardPage
 from airfield_board.window.notice_bar import NoticeBar
+from airfield_board.window.text_board import ADVISES
 from airfield_board.window.theme import SchemeChoice, apply_scheme, scheme_of
 from airfield_board.window.worker import Answer, Request, Worker
 
