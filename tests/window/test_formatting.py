@@ -184,7 +184,7 @@ def test_a_margin_that_will_be_gone_says_so() -> None:
     line = limit_line(state=State.NEAR, clearing=None, gone_by=NOON + timedelta(minutes=14))
     assert formatting.next_change(line, NOON, LOS_ANGELES)[0] == "margin may be gone by 12:14"
     later = NOON + timedelta(minutes=20)
-    assert formatting.next_change(line, later, LOS_ANGELES)[0] == "margin may be gone since 12:14"
+    assert formatting.next_change(line, later, LOS_ANGELES)[0] == "may be gone since 12:14"
 
 
 def test_no_data_says_what_it_was_or_why() -> None:
