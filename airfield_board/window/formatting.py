@@ -293,8 +293,8 @@ def next_change(line: LimitLine | None, now: datetime, zone: ZoneInfo) -> tuple[
         full = f"greatest weight {weight(line.full_weight, line.weight_unit)}" if line.full_weight is not None else ""
         return lighter, full
     if line.gone_by is not None:
-        word = "by" if line.gone_by > now else "since"
-        return f"margin may be gone {word} {clock(line.gone_by, zone)}", ""
+        words = "margin may be gone by" if line.gone_by > now else "may be gone since"
+        return f"{words} {clock(line.gone_by, zone)}", ""
     return "", f"since {time_near(line.since, now, zone)}" if line.since is not None else ""
 
 
