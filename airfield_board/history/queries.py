@@ -15,7 +15,7 @@ from airfield_board.clock import time_from_us
 from airfield_board.history.chain import EMPTY, Head, bind
 from airfield_board.history.connection import plain_errors
 from airfield_board.history.errors import HistoryDamaged
-from airfield_board.history.records import Json, RecordKind, StoredRecord, body_from_text
+from airfield_board.history.records import Json, RecordKind, StoredRecord, body_from_text, json_text
 from airfield_board.history.schema import SqlValue
 from airfield_board.observations.observation import Verdict
 
@@ -135,13 +135,13 @@ class HistoryQueries:
         last = self.count if until_seq is None else until_seq
         if kinds is not None and RecordKind.OBSERVATION not in kinds:
             for row in self._rows(
-                "SELECT seq, at_us, kind, body, hash FROM journal "
-                "WHERE kind <> 'observation' AND seq BETWEEN ? AND ? ORDER BY seq",
+                "SELECT seq, at_us, kind, body, hash FROM journal WHERE kind <> 'observation' "
+                "AND kind IN (SELECT value FROM json_each(?)) AND seq BETWEEN ? AND ? ORDER BY seq",
+                json_text([str(kind) for kind in kinds]),
                 from_seq,
                 last,
             ):
-                if row[2] in kinds:
-                    yield self._record(row)
+                yield self._record(row)
             return
         for first in range(from_seq, last + 1, _BATCH):
             for row in self._rows(

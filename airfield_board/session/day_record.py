@@ -66,7 +66,7 @@ class DayRecord:
             self.add_state(change.key, change.time_us, change.state, change.was)
 
     def add_state(self, key: LimitKey, time_us: int, state: State, was: State | None) -> None:
-        """Add a limit's state from a time on; a limit that had none before begins anew, and what was drawn of it goes."""
+        """Add a limit's state from a time on; one that had none before begins anew, and what was drawn of it goes."""
         if was is None:
             self._changes.pop(key, None)
         self._changes.setdefault(key, []).append((time_us, state))

@@ -90,7 +90,7 @@ class Recorder:
         self._source = _source(self._settings.in_force[0])
         # The settings may have changed while no recorder ran: what they tighten must act before the first poll.
         changes, ended = self._judge.change_settings(*self._settings.in_force, us_from_time(now))
-        records = configuration_records(*airfield, now) if new_version else []
+        records = configuration_records(*airfield, now, settled=not self._settings.waiting) if new_version else []
         self._write(records, changes, ended, now)
 
     @classmethod
@@ -247,7 +247,8 @@ class Recorder:
                 self._write([Record(kind=RecordKind.MESSAGE, at=now, body=body)], (), (), now)
         if reading.airfield is not None:
             self._settings.take(reading.airfield, now)
-            self._put_in_force(configuration_records(*reading.airfield, now), now)
+            settled = not self._settings.waiting
+            self._put_in_force(configuration_records(*reading.airfield, now, settled=settled), now)
 
     def _put_in_force(self, records: list[Record], now: datetime) -> None:
         before = self._judge.profile.observations

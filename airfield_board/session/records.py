@@ -117,13 +117,19 @@ def change_records(changes: Iterable[LimitChange], ended: Iterable[Episode], at:
     ]
 
 
-def configuration_records(profile: Profile, fleet: Fleet, at: datetime) -> list[Record]:
-    """Return the records of a version of the settings, full text and hash, the fleet's last."""
+def configuration_records(profile: Profile, fleet: Fleet, at: datetime, *, settled: bool) -> list[Record]:
+    """Return the records of a version of the settings, full text and hash, the fleet's last.
+
+    Parameters
+    ----------
+    settled
+        Whether it is in force as it stands, so that nobody needs the versions before it to know what is in force.
+    """
     return [
         Record(
             kind=RecordKind.CONFIGURATION,
             at=at,
-            body={"kind": kind, "name": str(path), "sha256": sha256, "text": text},
+            body={"kind": kind, "name": str(path), "sha256": sha256, "text": text, "settled": settled},
         )
         for kind, path, sha256, text in (
             ("profile", profile.path, profile.sha256, profile.text),

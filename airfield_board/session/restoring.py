@@ -1,6 +1,6 @@
 """Going on where the last recorder stopped: settings, states, holds, the day's curve, what waits."""
 
-from collections.abc import Callable, Iterable, Mapping
+from collections.abc import Callable, Iterable, Mapping, Sequence
 from dataclasses import dataclass
 from datetime import datetime
 from zoneinfo import ZoneInfo
@@ -55,13 +55,28 @@ def settings_from_history(history: History | None) -> Settings | None:
     if history is None:
         return None
     reader = SettingsReader()
+    versions = tuple(history.records(kinds=(RecordKind.CONFIGURATION, RecordKind.SETTINGS_ACCEPTED)))
     try:
-        for record in history.records(kinds=(RecordKind.CONFIGURATION, RecordKind.SETTINGS_ACCEPTED)):
+        for record in _since_settled(versions):
             reader.take(record)
     except FileFaults:
         # Texts of an older version of the program, which no longer count as valid, tell nothing.
         return None
     return reader.settings
+
+
+def _since_settled(versions: Sequence[StoredRecord]) -> Sequence[StoredRecord]:
+    """Leave out the versions before the last one that came in force as it stands, or was accepted as it stood."""
+    newest = [0, 0]
+    start: Sequence[StoredRecord] = ()
+    rest = 0
+    for place, record in enumerate(versions):
+        if record.kind is RecordKind.CONFIGURATION:
+            newest[record.body["kind"] == "fleet"] = place
+        whole = record.body.get("kind") == "fleet" and record.body.get("settled") is True
+        if whole or record.kind is RecordKind.SETTINGS_ACCEPTED:
+            start, rest = [versions[each] for each in newest], place + 1
+    return [*start, *versions[rest:]]
 
 
 def settings_at_start(kept: Settings | None, airfield: Airfield, now: datetime) -> tuple[Settings, bool]:

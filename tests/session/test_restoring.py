@@ -4,9 +4,14 @@ from pathlib import Path
 
 import pytest
 
+from airfield_board.configuration.profile import load_airfield
+from airfield_board.history.records import Record, RecordKind
+from airfield_board.history.store import History
 from airfield_board.limits.states import State
 from airfield_board.session.board_state import BoardState
 from airfield_board.session.recorder import Recorder
+from airfield_board.session.records import configuration_records
+from airfield_board.session.restoring import settings_from_history
 from airfield_board.session.verifying import verify_history
 from tests.session.fields import FLEET, PROFILE, Field, make_field, row_of
 
@@ -131,3 +136,54 @@ def test_a_limit_that_went_and_came_back_shows_no_stretch_of_the_time_between(fi
     assert shown is not None
     assert [(span.state, span.start, span.end) for span in shown.spans] == [(State.HOLD, field.at(9), None)]
     assert after.operations == before.operations
+
+
+def _history_with(field: Field, *records: Record) -> History:
+    history = History.open(field.history, now=field.at(0), program_version="1")
+    history.append(records)
+    return history
+
+
+def _older_version(field: Field) -> list[Record]:
+    """Settings that this version of the program does not take."""
+    return [
+        Record(
+            kind=RecordKind.CONFIGURATION,
+            at=field.at(0),
+            body={"kind": kind, "name": f"{kind}.yaml", "sha256": "", "text": "schema: 0\n"},
+        )
+        for kind in ("profile", "fleet")
+    ]
+
+
+def test_settings_are_known_from_the_last_version_that_came_in_force_as_it_stood(field: Field) -> None:
+    airfield = load_airfield(field.profile)
+    accepted = Record(kind=RecordKind.SETTINGS_ACCEPTED, at=field.at(2), body={"name": "R. Keel", "accepted": []})
+    settled = configuration_records(*airfield, field.at(1), settled=True)
+    history = _history_with(field, *_older_version(field), *settled)
+    settings = settings_from_history(history)
+    assert settings is not None
+    assert settings.in_force[1].sha256 == airfield[1].sha256
+    history.append(_older_version(field))
+    assert settings_from_history(history) is None
+    history.append([*configuration_records(*airfield, field.at(2), settled=False), accepted])
+    settings = settings_from_history(history)
+    assert settings is not None
+    assert not settings.waiting
+    history.close()
+
+
+def test_a_version_that_was_only_partly_in_force_needs_those_before_it(field: Field) -> None:
+    first = load_airfield(field.profile)
+    field.fleet.write_text(FLEET.replace("6350", "7000"), encoding="utf-8")
+    looser = load_airfield(field.profile)
+    history = _history_with(
+        field,
+        *configuration_records(*first, field.at(0), settled=True),
+        *configuration_records(*looser, field.at(1), settled=False),
+    )
+    settings = settings_from_history(history)
+    history.close()
+    assert settings is not None
+    assert [change.in_force for change in settings.waiting] == ["6,350 ft"]
+    assert settings.read[1].sha256 == looser[1].sha256
