@@ -281,16 +281,19 @@ def _heads_at_snapshot(reading: Reading) -> tuple[tuple[Head, ...] | None, list[
     An empty tuple where it cannot be compared: with the fault, or because the recorder never paused.
     """
     for attempt in range(_ATTEMPTS):
+        last = attempt == _ATTEMPTS - 1
         try:
             before = read_heads(reading.path)
             _fix_snapshot(reading.connection)
             if before == read_heads(reading.path):
                 return before, []
         except (ValueError, OSError) as error:
-            _fix_snapshot(reading.connection)
-            message = f"{head_path(reading.path).name} cannot be used: {error}"
-            return (), [HistoryFault(seq=None, damage=Damage.SECOND_PLACE, message=message)]
-        if attempt < _ATTEMPTS - 1:
+            # It may have been read while it was being written.
+            if last:
+                _fix_snapshot(reading.connection)
+                message = f"{head_path(reading.path).name} cannot be used: {error}"
+                return (), [HistoryFault(seq=None, damage=Damage.SECOND_PLACE, message=message)]
+        if not last and reading.connection.in_transaction:
             reading.connection.execute("ROLLBACK")
     return (), []
 

@@ -1,6 +1,6 @@
 """What the recorder keeps of the last day and a half for the screens: the curve, the spans, the rows not used."""
 
-from collections.abc import Iterable, Sequence
+from collections.abc import Collection, Iterable, Sequence
 from datetime import datetime
 
 import numpy as np
@@ -70,6 +70,10 @@ class DayRecord:
         if was is None:
             self._changes.pop(key, None)
         self._changes.setdefault(key, []).append((time_us, state))
+
+    def keep_only(self, keys: Collection[LimitKey]) -> None:
+        """Let go of what is drawn of limits that are gone: one of the same name that comes later begins anew."""
+        self._changes = {key: changes for key, changes in self._changes.items() if key in keys}
 
     def forget_before(self, when_us: int) -> None:
         """Let go of what is older, but for the last state before."""

@@ -33,20 +33,25 @@ class Intake:
     def new_rows(self, table: ObservationTable) -> ObservationTable:
         """Return the rows not taken before, in the order of the file, and know them from now on."""
         self._recall_for(table)
-        rows = list(zip(table.time_us.tolist(), (table.raw[row] for row in range(len(table))), strict=True))
-        last_place = {time_us: row for row, (time_us, _) in enumerate(rows)}
+        rows = list(zip(table.time_us.tolist(), table.raw, strict=True))
+        last = dict(rows)
+        # Few rows of many are new: only those, and others of their times, are looked at one by one.
+        touched = {time_us for time_us, _ in (*(set(rows) - self._known), *(last.items() - self._last.items()))}
+        places = [place for place, (time_us, _) in enumerate(rows) if time_us in touched] if touched else []
+        last_place = {rows[place][0]: place for place in places}
         fresh: list[int] = []
-        for row, (time_us, text) in enumerate(rows):
+        for place in places:
+            time_us, text = rows[place]
             known = (time_us, text) in self._known
-            counts_again = time_us != NO_TIME_US and last_place[time_us] == row and self._last.get(time_us) != text
+            counts_again = time_us != NO_TIME_US and last_place[time_us] == place and self._last.get(time_us) != text
             if known and not counts_again:
                 continue
             self._know(time_us, text)
-            fresh.append(row)
+            fresh.append(place)
         if len(self._known) > _MOST_KNOWN:
             # What no longer stands in the part of the file that is read cannot come again.
             self._known = set(rows)
-            self._last = dict(rows)
+            self._last = last
         return table.take(np.array(fresh, dtype=np.int64))
 
     def _know(self, time_us: int, text: str) -> None:

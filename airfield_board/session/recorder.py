@@ -3,7 +3,7 @@
 import re
 from collections.abc import Sequence
 from dataclasses import replace
-from datetime import datetime, timedelta
+from datetime import datetime
 from pathlib import Path
 from zoneinfo import ZoneInfo
 
@@ -257,6 +257,7 @@ class Recorder:
         after = self._settings.in_force[0].observations
         if (before.file, before.station, before.time_zone) != (after.file, after.station, after.time_zone):
             self._source = _source(self._settings.in_force[0])
+        self._day.keep_only(self._judge.limits)
         self._write(records, changes, ended, now)
         self._rows.follow_all(self._judge)
 
@@ -312,8 +313,7 @@ class Recorder:
         zone = ZoneInfo(profile.time_zone)
         day_start = start_of_local_day(local_day(now, zone), zone)
         self._day.forget_before(us_from_time(now) - KEPT_US)
-        # A day longer than it is shown: the clock may be set back.
-        self._status.forget_before(day_start - timedelta(days=1))
+        self._status.forget_before(day_start)
         self._warnings = [warning for warning in self._warnings if warning[0] >= us_from_time(day_start)]
         not_recording = self._recording.problem
         return replace(

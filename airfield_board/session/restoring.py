@@ -21,7 +21,7 @@ from airfield_board.session.judge import Judge
 from airfield_board.session.records import TYPED_IN
 from airfield_board.session.rejudge import SettingsReader, judge_anew
 from airfield_board.session.settings import Airfield, Settings
-from airfield_board.session.status import CURRENT, PAST, RowChange, StatusLog
+from airfield_board.session.status import CURRENT, PAST, STATUS_KEPT_US, RowChange, StatusLog
 from airfield_board.units import HOUR_US
 
 _LONGEST_READ_BACK_US = 31 * 24 * HOUR_US
@@ -129,7 +129,7 @@ def restored(history: History | None, in_force: Airfield, now: datetime) -> Star
     judge = _judge(history, in_force)
     _fill_day(day, history, judge, now_us)
     zone = ZoneInfo(in_force[0].time_zone)
-    _fill_status(status, history, us_from_time(start_of_local_day(local_day(now, zone), zone)))
+    _fill_status(status, history, us_from_time(start_of_local_day(local_day(now, zone), zone)) - STATUS_KEPT_US)
     read_back_to_us = now_us - KEPT_US
     newest = history.newest(RecordKind.OBSERVATION)
     if newest is not None and isinstance(recorded_us := newest.body.get("time"), int):
@@ -201,15 +201,16 @@ def _fill_day(day: DayRecord, history: History, judge: Judge, now_us: int) -> No
             day.add_state(key, since_us, was, None)
         seen.add(key)
         day.add_state(key, int(str(record.body["time"])), State(str(record.body["to"])), was)
+    day.keep_only({key for key, limit in judge.limits.items() if limit.memory.state is not None})
     for key, limit in judge.limits.items():
         if key not in seen and limit.memory.state is not None:
             day.add_state(key, limit.memory.since_us, limit.memory.state, None)
 
 
-def _fill_status(status: StatusLog, history: History, day_start_us: int) -> None:
+def _fill_status(status: StatusLog, history: History, since_us: int) -> None:
     waiting = history.open_changes(scope=CURRENT)
-    today = history.changes_between(day_start_us, END_US)
-    records = {record.seq: record for record in (*waiting, *today) if record.body.get("scope") in (CURRENT, PAST)}
+    lately = history.changes_between(since_us, END_US)
+    records = {record.seq: record for record in (*waiting, *lately) if record.body.get("scope") in (CURRENT, PAST)}
     for number, record in records.items():
         status.add(number, _row_change(record))
     for number, found in history.acknowledgements(records).items():

@@ -2,7 +2,7 @@
 
 from collections.abc import Iterable, Sequence
 from dataclasses import dataclass, replace
-from datetime import datetime
+from datetime import datetime, timedelta
 from itertools import groupby
 from typing import TypeAlias
 
@@ -13,12 +13,16 @@ from airfield_board.limits.rules import LimitChange
 from airfield_board.limits.states import State, worst
 from airfield_board.session.board_state import StatusChange
 from airfield_board.session.judge import Judge
+from airfield_board.units import HOUR_US
 
 RowKey: TypeAlias = tuple[str, str]
 """Aircraft and operation."""
 
 CURRENT, PAST = "operation", "past"
 """Scopes of a change of a row: one that somebody may have to acknowledge, and one that later rows had overtaken."""
+
+STATUS_KEPT_US = 24 * HOUR_US
+"""How much longer changes are kept than they are shown: the clock, or the airfield's time zone, may be set back."""
 
 _ASKING = (State.HOLD, State.NO_DATA)
 
@@ -165,9 +169,10 @@ class StatusLog:
                 self._changes[new] = replace(change, number=new)
 
     def forget_before(self, when: datetime) -> None:
-        """Let go of older changes that wait for nobody."""
+        """Let go of changes long before that wait for nobody."""
+        since = when - timedelta(microseconds=STATUS_KEPT_US)
         self._changes = {
-            number: change for number, change in self._changes.items() if change.open or change.time >= when
+            number: change for number, change in self._changes.items() if change.open or change.time >= since
         }
 
     def newest_first(self, since: datetime) -> tuple[StatusChange, ...]:

@@ -31,11 +31,46 @@ def test_anybody_can_read_the_count_and_the_hash(tmp_path: Path) -> None:
 
 def test_what_cannot_be_replaced_still_stands(tmp_path: Path) -> None:
     path = tmp_path / "history.db"
-    write_heads(path, HEADS, durable=True)
+    # Of another length, so that it is not written over in its place.
+    head_path(path).write_text("somebody's own", encoding="utf-8")
     (tmp_path / "history.db.head.new").mkdir()
     with pytest.raises(OSError, match="."):  # noqa: RUF043 - any of the system's
         write_heads(path, HEADS[:1], durable=True)
-    assert read_heads(path) == HEADS
+    assert head_path(path).read_text(encoding="utf-8") == "somebody's own"
+    (tmp_path / "history.db.head.new").rmdir()
+    write_heads(path, HEADS[:1], durable=True)
+    assert read_heads(path) == HEADS[:1]
+
+
+def test_it_is_one_sector_written_over_in_its_place(tmp_path: Path) -> None:
+    path = tmp_path / "history.db"
+    write_heads(path, (EMPTY, *HEADS[:1]), durable=True)
+    first = head_path(path).stat()
+    most = Head(records=2**62, hash=bytes([255] * 32))
+    write_heads(path, (most, most), durable=True)
+    then = head_path(path).stat()
+    assert (first.st_size, then.st_size) == (512, 512)
+    assert then.st_ino == first.st_ino
+    assert read_heads(path) == (most, most)
+
+
+@pytest.mark.parametrize("name", ["fdatasync", "fsync"])
+def test_an_announcement_is_on_the_disk_before_it_counts(
+    tmp_path: Path, monkeypatch: pytest.MonkeyPatch, name: str
+) -> None:
+    path = tmp_path / "history.db"
+    write_heads(path, HEADS, durable=True)
+    if name == "fsync":
+        monkeypatch.delattr("airfield_board.history.head_file.os.fdatasync", raising=False)
+
+    def failing(_handle: int) -> None:
+        raise OSError(5, "Input/output error")
+
+    monkeypatch.setattr(f"airfield_board.history.head_file.os.{name}", failing, raising=False)
+    with pytest.raises(OSError, match="Input/output error"):
+        write_heads(path, HEADS[:1], durable=True)
+    write_heads(path, HEADS[1:], durable=False)
+    assert read_heads(path) == HEADS[1:]
 
 
 def test_a_half_written_replacement_is_removed(tmp_path: Path, monkeypatch: pytest.MonkeyPatch) -> None:

@@ -187,3 +187,38 @@ def test_a_version_that_was_only_partly_in_force_needs_those_before_it(field: Fi
     assert settings is not None
     assert [change.in_force for change in settings.waiting] == ["6,350 ft"]
     assert settings.read[1].sha256 == looser[1].sha256
+
+
+def test_nothing_is_drawn_of_a_limit_that_went_and_came_back_without_a_reading_since(field: Field) -> None:
+    field.write(field.row(0, HOT_C))
+    recorder = field.open()
+    recorder.poll()
+    field.fleet.write_text(FLEET.replace("id: trainer", "id: other"), encoding="utf-8")
+    field.move_to(1)
+    recorder.poll()
+    recorder.accept_settings("R. Keel")
+    field.fleet.write_text(FLEET, encoding="utf-8")
+    field.move_to(20)
+    recorder.poll()
+    recorder.accept_settings("R. Keel")
+    before, after = _reopened(field, recorder)
+    shown = row_of(before, "trainer").shown
+    assert shown is not None
+    assert (shown.state, shown.spans) == (State.NO_DATA, ())
+    assert after.operations == before.operations
+
+
+def test_a_clock_set_back_over_midnight_shows_the_day_before_again(field: Field) -> None:
+    field.write(field.row(0, HOT_C))
+    recorder = field.open()
+    changes = recorder.poll().changes
+    recorder.acknowledge([change.number for change in changes], "RK")
+    field.move_to(13 * 60 + 10)
+    recorder.poll()
+    recorder.close()
+    recorder = field.open()
+    assert [change.time for change in recorder.poll().changes] == [field.at(15)], "the local day began after 13 h"
+    field.move_to(12 * 60)
+    before, after = _reopened(field, recorder)
+    assert len(before.changes) == len(changes) + 1
+    assert after.changes == before.changes
