@@ -40,6 +40,7 @@ class History(HistoryQueries):
         self._lock = lock
         self._reading = reading
         self._known: tuple[Head, ...] = (EMPTY,)
+        self._file = _identity(path)
         self._closed = False
 
     @classmethod
@@ -168,6 +169,9 @@ class History(HistoryQueries):
             raise NotRecorded(f"{self._path}: opened read-only, nothing is recorded")
         if self._closed:
             raise NotRecorded(f"{self._path}: closed, nothing is recorded")
+        if _identity(self._path) != self._file:
+            # What is open has no name any more: it would go with the program.
+            raise NotRecorded(f"{self._path}: not recorded: the file was taken away, or another put in its place")
         kinds = [RecordKind(record.kind) for record in records]
         times_us = [us_from_time(record.at) for record in records]
         texts = [
@@ -257,3 +261,12 @@ class History(HistoryQueries):
                     self._connection.close()
             if self._lock is not None:
                 self._lock.release()
+
+
+def _identity(path: Path) -> tuple[int, int] | None:
+    """Return what tells a file from any other that has its name later; None where there is none."""
+    try:
+        found = path.stat()
+    except OSError:
+        return None
+    return found.st_dev, found.st_ino

@@ -11,7 +11,7 @@ import numpy as np
 import platformdirs
 
 from airfield_board import __version__
-from airfield_board.clock import Clock, iso_utc, local_day, start_of_local_day, time_from_us, us_from_time
+from airfield_board.clock import Clock, local_day, start_of_local_day, time_from_us, us_from_time
 from airfield_board.configuration.model import Profile
 from airfield_board.configuration.profile import load_airfield
 from airfield_board.errors import UserError
@@ -27,13 +27,15 @@ from airfield_board.session.board_state import BoardState, Message, Mode, Weight
 from airfield_board.session.day_record import KEPT_US, DayRecord
 from airfield_board.session.intake import Intake
 from airfield_board.session.judge import Judge, Judged
-from airfield_board.session.recording import Recording, place_of_history
+from airfield_board.session.recording import Recording, late, place_of_history
 from airfield_board.session.records import (
     TYPED_IN,
     change_records,
     configuration_records,
     empty_table,
     observation_records,
+    observation_steps,
+    typed_row,
 )
 from airfield_board.session.restoring import restored, settings_at_start, settings_from_history
 from airfield_board.session.settings import Airfield, SettingsFiles
@@ -71,27 +73,46 @@ class Recorder:
         self._recording = recording
         self._files = SettingsFiles(airfield) if watch_settings else None
         self._refused = ""
-        now = clock.now()
+        self._warnings: list[tuple[int, str]] = []
+        self._source_says: tuple[str, ...] = ()
+        self._heard: set[str] = set()
+        self._begin(airfield, clock.now())
+
+    def _begin(self, airfield: Airfield, now: datetime) -> None:
+        """Go on where the history ends."""
+        history = self._recording.history
         self._settings_since = now
-        kept = settings_from_history(recording.history)
-        start = restored(recording.history, airfield if kept is None else kept.in_force, now)
+        kept = settings_from_history(history)
+        start = restored(history, airfield if kept is None else kept.in_force, now)
         self._settings, new_version = settings_at_start(kept, airfield, now)
         self._judge: Judge = start.judge
         self._day: DayRecord = start.day
         self._status: StatusLog = start.status
         self._intake = Intake(start.recall)
         self._read_back_to_us = start.read_back_to_us
-        self._warnings: list[tuple[int, str]] = []
-        self._source_says: tuple[str, ...] = ()
-        self._heard: set[str] = set()
         self._doubt = start.doubt
         self._rows = RowStates(self._judge)
         self._step_us, self._step = 0, 0
         self._source = _source(self._settings.in_force[0])
         # The settings may have changed while no recorder ran: what they tighten must act before the first poll.
         changes, ended = self._judge.change_settings(*self._settings.in_force, us_from_time(now))
-        records = configuration_records(*airfield, now, settled=not self._settings.waiting) if new_version else []
+        settled = not self._settings.waiting
+        records = configuration_records(*airfield, now, settled=settled) if new_version else []
         self._write(records, changes, ended, now)
+
+    def _begin_again(self, now: datetime) -> None:
+        """Go on where a history ends that could not be opened before; it knows of holds that nothing else tells of.
+
+        What was taken meanwhile is taken anew, as if it had come now. States and their acknowledgements of that time
+        fall away: they were judged without knowing what came before.
+        """
+        kept_back = self._recording.take_kept_back()
+        self._begin(self._settings.read, now)
+        for rows, form in observation_steps(kept_back):
+            self._take(rows if form == TYPED_IN else self._intake.new_rows(rows), form, now)
+        told = [late(record) for record in kept_back if record.kind in (RecordKind.NOTE, RecordKind.MESSAGE)]
+        if told:
+            self._write(told, (), (), now)
 
     @classmethod
     def open(
@@ -143,6 +164,7 @@ class Recorder:
     def poll(self) -> BoardState:
         """Look at the settings and the observation file once, judge and record what is new."""
         now = self._clock.now()
+        self._look_for_history(now)
         self._look_at_settings(now)
         reading = self._source.read(now, time_from_us(self._read_back_to_us))
         self._hear(reading, now)
@@ -180,7 +202,7 @@ class Recorder:
             With the reason, where the checks do not let it be used; it is recorded all the same.
         """
         now = self._clock.now()
-        rows = _typed_row(time, altimeter_hpa, temperature_c, dewpoint_c, initials)
+        rows = typed_row(time, altimeter_hpa, temperature_c, dewpoint_c, initials)
         judged = self._take(rows, TYPED_IN, now)
         if judged.checked.verdict[0] != Verdict.VALID:
             raise UserError(f"Not used: {judged.checked.reason.get(0, 'it does not pass the checks')}.")
@@ -232,7 +254,15 @@ class Recorder:
         NotRecorded
             Where something could not be recorded.
         """
-        self._recording.close(self._clock.now())
+        now = self._clock.now()
+        self._look_for_history(now)
+        if self._recording.kept_back:
+            self._write([], (), (), now)
+        self._recording.close(now)
+
+    def _look_for_history(self, now: datetime) -> None:
+        if self._recording.opens() and self._recording.knows_more():
+            self._begin_again(now)
 
     # -- settings
 
@@ -354,24 +384,3 @@ def _source(profile: Profile) -> FileSource:
     settings = profile.observations
     rules = SourceRules(time_zone=settings.time_zone, station=settings.station, name=settings.file_as_written)
     return FileSource(settings.file, rules)
-
-
-def _typed_row(
-    time: datetime, altimeter_hpa: float, temperature_c: float, dewpoint_c: float | None, initials: str
-) -> ObservationTable:
-    dewpoint = "no dew point" if dewpoint_c is None else f"dew point {dewpoint_c!r} C"
-    unknown = np.array([np.nan])
-    return ObservationTable(
-        time_us=np.array([us_from_time(time)], dtype=np.int64),
-        altimeter_hpa=np.array([altimeter_hpa]),
-        temperature_c=np.array([temperature_c]),
-        dewpoint_c=np.array([np.nan if dewpoint_c is None else dewpoint_c]),
-        elevation_m=unknown,
-        temperature_resolution_c=unknown,
-        dewpoint_resolution_c=unknown,
-        position=np.array([0], dtype=np.int64),
-        raw=[
-            f"{iso_utc(time)} altimeter {altimeter_hpa!r} hPa, temperature {temperature_c!r} C, {dewpoint}, {initials}"
-        ],
-        initials=initials,
-    )

@@ -25,8 +25,7 @@ class Recording:
     problem
         Why it could not.
     reopen
-        Tried again before each writing while there is no history; None: another recorder records into it, and this
-        one only watches.
+        For `opens` while there is no history; None: another recorder records into it, and this one only watches.
     """
 
     def __init__(self, history: History | None, problem: str, reopen: Callable[[], History] | None) -> None:
@@ -61,11 +60,14 @@ class Recording:
             return (), {}
         try:
             if self.history is None:
-                self.history = self._opened()
+                raise NotRecorded(self.problem)
             first = self.history.count + 1
             found = {old: first + place for place, old in enumerate(provisional)}
             self.history.append(
-                [_late(_named(record, found), place < len(self._waiting)) for place, record in enumerate(waiting)],
+                [
+                    _named(late(record) if place < len(self._waiting) else record, found)
+                    for place, record in enumerate(waiting)
+                ],
                 resume=resume,
             )
         except UserError as error:
@@ -75,10 +77,25 @@ class Recording:
         self._waiting, self._provisional, self.problem = [], [], ""
         return tuple(found[old] for old in numbers), moved
 
-    def _opened(self) -> History:
-        if self._reopen is None:
-            raise NotRecorded(self.problem)
-        return self._reopen()
+    def opens(self) -> bool:
+        """Try to open a history that could not be opened so far, if something waits; return whether that went well."""
+        if self.history is not None or self._reopen is None or not self._waiting:
+            return False
+        try:
+            self.history = self._reopen()
+        except UserError as error:
+            self.problem = str(error)
+            return False
+        return True
+
+    def knows_more(self) -> bool:
+        """Whether the history tells of a time before it was opened."""
+        return self.history is not None and self.history.latest_configuration("fleet") is not None
+
+    def take_kept_back(self) -> list[Record]:
+        """Give away what waits to be recorded."""
+        waiting, self._waiting, self._provisional = self._waiting, [], []
+        return waiting
 
     @property
     def kept_back(self) -> int:
@@ -108,8 +125,9 @@ def _named(record: Record, numbers: Mapping[int, int]) -> Record:
     return replace(record, body={**record.body, "changes": named})
 
 
-def _late(record: Record, late: bool) -> Record:
-    return replace(record, body={**record.body, "recorded_late": True}) if late else record
+def late(record: Record) -> Record:
+    """Mark a record as one that was recorded some time after it happened."""
+    return replace(record, body={**record.body, "recorded_late": True})
 
 
 def place_of_history(profile_history: Path | None, user_folder: Path, airfield_name: str) -> Path:

@@ -1,11 +1,11 @@
 """What the recorder writes down, as bodies of records, and rows read back from them."""
 
-from collections.abc import Iterable, Mapping, Sequence
+from collections.abc import Iterable, Iterator, Mapping, Sequence
 from datetime import datetime
 
 import numpy as np
 
-from airfield_board.clock import us_from_time
+from airfield_board.clock import iso_utc, us_from_time
 from airfield_board.configuration.model import Fleet, Profile
 from airfield_board.history.records import Json, Record, RecordKind, StoredRecord
 from airfield_board.limits.rules import Episode, LimitChange
@@ -138,7 +138,7 @@ def configuration_records(profile: Profile, fleet: Fleet, at: datetime, *, settl
     ]
 
 
-def table_from_records(records: Sequence[StoredRecord]) -> ObservationTable:
+def table_from_records(records: Sequence[Record | StoredRecord]) -> ObservationTable:
     """Return recorded observations as rows not yet checked, in the order in which they were recorded.
 
     All must have been judged in one step, and typed in by one person, or by nobody.
@@ -160,8 +160,28 @@ def table_from_records(records: Sequence[StoredRecord]) -> ObservationTable:
         position=np.array([body.get("pos", 0) for body in bodies], dtype=np.int64),
         raw=[str(body["raw"]) for body in bodies],
         faults={row: str(body["fault"]) for row, body in enumerate(bodies) if body.get("fault")},
-        initials=str(bodies[0].get("initials", "")) if bodies else "",
+        initials=str(bodies[0].get("initials") or "") if bodies else "",
     )
+
+
+def judged_together(one: Record | StoredRecord, other: Record | StoredRecord) -> bool:
+    """Whether two observations that were recorded one after the other were judged in one step."""
+    same = all(one.body.get(key) == other.body.get(key) for key in ("read", "step"))
+    return same and (one.body.get("format") == TYPED_IN) == (other.body.get("format") == TYPED_IN)
+
+
+def observation_steps(records: Iterable[Record]) -> Iterator[tuple[ObservationTable, str]]:
+    """Yield the observations of some records, rows of one step together, with their format."""
+    step: list[Record] = []
+    for record in records:
+        if record.kind is not RecordKind.OBSERVATION:
+            continue
+        if step and not judged_together(step[-1], record):
+            yield table_from_records(step), str(step[0].body["format"])
+            step = []
+        step.append(record)
+    if step:
+        yield table_from_records(step), str(step[0].body["format"])
 
 
 def _mapping(value: Json) -> Mapping[str, Json]:
@@ -171,3 +191,25 @@ def _mapping(value: Json) -> Mapping[str, Json]:
 def empty_table() -> ObservationTable:
     """Return no rows at all."""
     return table_from_records(())
+
+
+def typed_row(
+    time: datetime, altimeter_hpa: float, temperature_c: float, dewpoint_c: float | None, initials: str
+) -> ObservationTable:
+    """Return an observation that a person typed in as a row."""
+    dewpoint = "no dew point" if dewpoint_c is None else f"dew point {dewpoint_c!r} C"
+    unknown = np.array([np.nan])
+    return ObservationTable(
+        time_us=np.array([us_from_time(time)], dtype=np.int64),
+        altimeter_hpa=np.array([altimeter_hpa]),
+        temperature_c=np.array([temperature_c]),
+        dewpoint_c=np.array([np.nan if dewpoint_c is None else dewpoint_c]),
+        elevation_m=unknown,
+        temperature_resolution_c=unknown,
+        dewpoint_resolution_c=unknown,
+        position=np.array([0], dtype=np.int64),
+        raw=[
+            f"{iso_utc(time)} altimeter {altimeter_hpa!r} hPa, temperature {temperature_c!r} C, {dewpoint}, {initials}"
+        ],
+        initials=initials,
+    )

@@ -14,7 +14,13 @@ from airfield_board.limits.in_force import EQUAL
 from airfield_board.limits.rules import Episode, LimitChange
 from airfield_board.observations.observation import Verdict
 from airfield_board.session.judge import Judge
-from airfield_board.session.records import TYPED_IN, change_body, empty_table, episode_body, table_from_records
+from airfield_board.session.records import (
+    change_body,
+    empty_table,
+    episode_body,
+    judged_together,
+    table_from_records,
+)
 from airfield_board.session.settings import Airfield, Settings
 from airfield_board.session.status import CURRENT, PAST
 
@@ -116,7 +122,7 @@ class _Anew:
     def take(self, record: StoredRecord) -> None:
         """Take the next record."""
         if record.kind is RecordKind.OBSERVATION:
-            if self._batch and not _judged_together(self._batch[-1], record):
+            if self._batch and not judged_together(self._batch[-1], record):
                 self._judge_batch()
             self._batch.append(record)
             return
@@ -205,11 +211,6 @@ class _Anew:
     def _differ(self, seq: int, text: str) -> None:
         if len(self.differences) < _MOST_DIFFERENCES:
             self.differences.append(Difference(seq=seq, text=text))
-
-
-def _judged_together(one: StoredRecord, other: StoredRecord) -> bool:
-    same = all(one.body.get(key) == other.body.get(key) for key in ("read", "step"))
-    return same and (one.body.get("format") == TYPED_IN) == (other.body.get("format") == TYPED_IN)
 
 
 def _alike(recorded: Mapping[str, Json], anew: Mapping[str, Json]) -> bool:
