@@ -2,6 +2,7 @@
 
 from collections.abc import Iterable
 from dataclasses import dataclass
+from difflib import get_close_matches
 from pathlib import Path
 
 from airfield_board.configuration.file_reading import in_order, read_settings_file
@@ -61,10 +62,32 @@ def check_files(paths: Iterable[Path]) -> Findings:
 
 
 def _checked(path: Path, root: Mapping | None) -> list[str]:
-    if root is not None and root.entry("aircraft") is not None and root.entry("airfield") is None:
+    if root is not None and _looks_like_a_fleet(root):
         fleet = load_fleet(path, acceptance="simple")
         operations = sum(len(aircraft.operations) for aircraft in fleet.aircraft)
         return [f"{path}: valid fleet, {len(fleet.aircraft)} aircraft, {operations} operations"]
     profile, fleet = load_airfield(path)
     warnings = [f"{warning} (warning)" for warning in warnings_of(profile, fleet)]
     return [*warnings, f"{path}: valid profile of {profile.name}, with its fleet {fleet.path.name}"]
+
+
+def _looks_like_a_fleet(root: Mapping) -> bool:
+    """Tell a fleet by its top-level keys, misspelt or not, from a profile."""
+    found = {"fleet": 0, "profile": 0}
+    for entry in root.entries:
+        near = get_close_matches(entry.key, _TOP_KEYS, n=1)
+        if near:
+            found[_TOP_KEYS[near[0]]] += 1
+    return found["fleet"] > found["profile"]
+
+
+_TOP_KEYS = {
+    "aircraft": "fleet",
+    "defaults": "fleet",
+    "airfield": "profile",
+    "observations": "profile",
+    "density_altitude": "profile",
+    "acceptance": "profile",
+    "fleet": "profile",
+    "history": "profile",
+}
