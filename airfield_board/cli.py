@@ -7,8 +7,8 @@ unreadable input.
 import argparse
 import os
 import sys
-from collections.abc import Callable, Iterable, Sequence
-from contextlib import suppress
+from collections.abc import Callable, Iterable, Iterator, Sequence
+from contextlib import contextmanager, suppress
 from datetime import UTC, datetime
 from pathlib import Path
 from typing import TextIO
@@ -42,9 +42,7 @@ def main(arguments: Sequence[str] | None = None) -> int:
         sys.stderr.write(f"{error}\n")
         return WRONG_USE
     except BrokenPipeError:
-        # Whoever read the output has had enough; what Python still holds for it must not be written at the end.
-        with suppress(OSError):
-            os.dup2(os.open(os.devnull, os.O_WRONLY), sys.stdout.fileno())
+        # Whoever read the output has had enough.
         return DONE
     except KeyboardInterrupt:
         sys.stderr.write("Stopped.\n")
@@ -152,11 +150,11 @@ def _assess(options: argparse.Namespace) -> int:
     if options.json:
         from airfield_board.session.board_json import board_json
 
-        _print_json(board_json(state), indent=2)
+        _print(_json_line(board_json(state), indent=2))
     else:
         from airfield_board.window.text_board import text_board
 
-        sys.stdout.write(text_board(state))
+        _print(text_board(state))
     if trouble is not None:
         _say([str(trouble)])
         return WRONG_USE
@@ -191,7 +189,8 @@ def _compute(options: argparse.Namespace) -> int:
     computed = compute(read, elevation_m, us_from_time(datetime.now(UTC)))
     progress = _progress("rows written", len(computed.table))
     if options.out is None:
-        write_csv(computed, sys.stdout, progress)
+        with _output() as out:
+            write_csv(computed, out, progress)
     else:
         _write_file(options.out, lambda out: write_csv(computed, out, progress))
     return DONE
@@ -234,15 +233,12 @@ def _replay(options: argparse.Namespace) -> int:
     if options.json:
         from airfield_board.session.board_json import change_json, episode_json
 
-        for change in outcome.changes:
-            _print_json(change_json(change))
-        for episode in outcome.episodes:
-            _print_json(episode_json(episode))
-        _print_json(outcome.summary())
+        lines = [*map(change_json, outcome.changes), *map(episode_json, outcome.episodes), outcome.summary()]
+        _print("".join(map(_json_line, lines)))
     else:
         from airfield_board.window.text_board import text_replay
 
-        sys.stdout.write(text_replay(outcome, profile, fleet))
+        _print(text_replay(outcome, profile, fleet))
     return DONE
 
 
@@ -258,8 +254,7 @@ def _check(options: argparse.Namespace) -> int:
     from airfield_board.configuration.checking import check_files
 
     findings = check_files(options.files)
-    for line in findings.lines:
-        sys.stdout.write(f"{line}\n")
+    _print("".join(f"{line}\n" for line in findings.lines))
     if findings.unreadable:
         return WRONG_USE
     return NO if findings.faults else DONE
@@ -273,7 +268,7 @@ def _add_schema(commands: "argparse._SubParsersAction[argparse.ArgumentParser]")
 def _schema(options: argparse.Namespace) -> int:
     from airfield_board.configuration.json_schema import fleet_schema, profile_schema
 
-    _print_json(profile_schema() if options.of == "profile" else fleet_schema(), indent=2)
+    _print(_json_line(profile_schema() if options.of == "profile" else fleet_schema(), indent=2))
     return DONE
 
 
@@ -340,8 +335,7 @@ def _verify(options: argparse.Namespace) -> int:
         rejudge=options.rejudge,
         progress=_progress("records checked", None),
     )
-    for line in findings.lines:
-        sys.stdout.write(f"{line}\n")
+    _print("".join(f"{line}\n" for line in findings.lines))
     return DONE if findings.whole else NO
 
 
@@ -353,10 +347,32 @@ def _say(lines: Iterable[str]) -> None:
         sys.stderr.write(f"{line}\n")
 
 
-def _print_json(value: object, indent: int | None = None) -> None:
+def _json_line(value: object, indent: int | None = None) -> str:
     import json
 
-    sys.stdout.write(json.dumps(value, ensure_ascii=False, allow_nan=False, indent=indent) + "\n")
+    return json.dumps(value, ensure_ascii=False, allow_nan=False, indent=indent) + "\n"
+
+
+def _print(text: str) -> None:
+    with _output() as out:
+        out.write(text)
+
+
+@contextmanager
+def _output() -> Iterator[TextIO]:
+    """Give standard output, and see that it takes everything: a full disk must not pass for a result."""
+    if sys.stdout is None:
+        raise UserError("There is no standard output to write to.")
+    try:
+        yield sys.stdout
+        sys.stdout.flush()
+    except OSError as error:
+        # What Python still holds for it must not be written, and fail again, at the end.
+        with suppress(OSError):
+            os.dup2(os.open(os.devnull, os.O_WRONLY), sys.stdout.fileno())
+        if isinstance(error, BrokenPipeError):
+            raise
+        raise UserError(f"The output cannot be written: {error.strerror or error}") from error
 
 
 def _progress(words: str, of: int | None) -> Callable[[int], None] | None:

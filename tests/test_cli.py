@@ -115,7 +115,7 @@ def test_replay_gives_changes_episodes_and_a_summary(field: Field, capsys: pytes
     assert main(["replay", str(field.observations), "--airfield", str(field.profile), "--json"]) == DONE
     lines = _json_lines(capsys.readouterr().out)
     kinds = [line["kind"] for line in lines]
-    assert kinds == sorted(kinds, key=["change", "episode", "summary"].index)
+    assert kinds == sorted(kinds, key=lambda kind: ["change", "episode", "summary"].index(str(kind)))
     trainer = [line for line in lines if line["kind"] == "change" and line["aircraft"] == "trainer"]
     assert [(line["from"], line["to"], line["time"]) for line in trainer] == [
         (None, "go", "2026-07-14T18:00:00Z"),
@@ -169,6 +169,39 @@ def test_compute_needs_an_elevation(field: Field, capsys: pytest.CaptureFixture[
     assert main(["compute", str(field.observations)]) == WRONG_USE
     assert "--elevation-ft" in capsys.readouterr().err
     assert main(["compute", str(field.observations), "--elevation-ft", "90000"]) == WRONG_USE
+
+
+def test_compute_gives_the_elevation_in_feet_and_says_where_it_can_be_none(
+    field: Field, capsys: pytest.CaptureFixture[str]
+) -> None:
+    field.observations.write_text(
+        "time,altimeter_hpa,temperature_c,elevation_m\n"
+        "2026-07-14T18:00:00Z,1013.25,15.0,304.8\n"
+        "2026-07-14T18:05:00Z,1013.25,15.0,99999\n"
+        "2026-07-14T18:10:00Z,1013.25,15.0,\n",
+        encoding="utf-8",
+    )
+    assert main(["compute", str(field.observations)]) == DONE
+    rows = list(csv.DictReader(io.StringIO(capsys.readouterr().out)))
+    assert float(rows[0]["elevation_ft"]) == pytest.approx(1000.0)
+    assert rows[0]["elevation_m"] == "304.8"
+    assert float(rows[0]["pressure_altitude_ft"]) == pytest.approx(1000.0, abs=0.01)
+    assert [row["quality"].partition(":")[0] for row in rows] == ["valid", "rejected", "rejected"]
+    assert "no elevation of an airfield" in rows[1]["quality"]
+    assert [row["density_altitude_ft"] for row in rows[1:]] == ["", ""]
+
+
+@pytest.mark.skipif(not Path("/dev/full").exists(), reason="no device that is always full")
+def test_an_output_that_takes_nothing_is_said(field: Field, monkeypatch: pytest.MonkeyPatch) -> None:
+    said = io.StringIO()
+    monkeypatch.setattr("sys.stderr", said)
+    for arguments in (["schema", "fleet"], ["compute", str(field.observations), "--elevation-ft", "4120"]):
+        with Path("/dev/full").open("w", encoding="utf-8") as full, monkeypatch.context() as patched:
+            patched.setattr("sys.stdout", full)
+            assert main(arguments) == WRONG_USE
+    assert said.getvalue().count("The output cannot be written: ") == 2
+    monkeypatch.setattr("sys.stdout", None)
+    assert main(["schema", "fleet"]) == WRONG_USE
 
 
 def test_compute_writes_to_a_file(field: Field) -> None:

@@ -139,7 +139,8 @@ Day = Annotated[
 
 Latitude = Annotated[float, Field(ge=-90, le=90)]
 Longitude = Annotated[float, Field(ge=-180, le=180)]
-ElevationFt = Annotated[float, Field(ge=-1400, le=20000)]
+LOWEST_ELEVATION_FT, HIGHEST_ELEVATION_FT = -1400.0, 20000.0
+ElevationFt = Annotated[float, Field(ge=LOWEST_ELEVATION_FT, le=HIGHEST_ELEVATION_FT)]
 ElevationM = Annotated[float, Field(ge=-426.72, le=6096)]
 PollSeconds = Annotated[float, Field(ge=0.5, le=3600)]
 PeriodMin = Annotated[float, Field(gt=0, le=1440)]

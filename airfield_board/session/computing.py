@@ -9,7 +9,7 @@ from typing import TextIO
 import numpy as np
 from numpy.typing import NDArray
 
-from airfield_board.configuration.defaults import default_instruments
+from airfield_board.configuration.defaults import are_elevations_ft, default_instruments
 from airfield_board.errors import UserError
 from airfield_board.observations.conditions import ConditionsTable, conditions_of
 from airfield_board.observations.formats.reading import ReadResult
@@ -17,8 +17,9 @@ from airfield_board.observations.observation import NO_TIME_US, ObservationTable
 from airfield_board.observations.quality import check
 from airfield_board.observations.quality_judgement import QualityRules
 from airfield_board.observations.quality_memory import QualityMemory
+from airfield_board.units import ft_from_m
 
-READ = ("time", "altimeter_hpa", "temperature_c", "dewpoint_c", "elevation_m")
+READ = ("time", "altimeter_hpa", "temperature_c", "dewpoint_c", "elevation_ft")
 RESULTS = (
     "station_pressure_hpa",
     "pressure_altitude_ft",
@@ -43,7 +44,7 @@ class Computed:
     table
         Its rows in the order of the file.
     elevation_m
-        The one computed with; NaN where a row gives none.
+        The field's, else the row's own; NaN where a row gives none.
     conditions
         NaN in rows that fail a check.
     quality
@@ -84,7 +85,8 @@ def compute(read: ReadResult, elevation_m: float | None, now_us: int) -> Compute
     elevations_m = table.elevation_m if elevation_m is None else np.full(len(table), elevation_m)
     if elevation_m is None and len(table) and np.isnan(elevations_m).all():
         raise UserError("no row gives an elevation; say the field's with --elevation-ft")
-    usable = ((verdict == Verdict.VALID) | (verdict == Verdict.SUPERSEDED)) & ~np.isnan(elevations_m)
+    placed = are_elevations_ft(ft_from_m(elevations_m))
+    usable = ((verdict == Verdict.VALID) | (verdict == Verdict.SUPERSEDED)) & placed
     conditions = conditions_of(
         altimeter_hpa=np.where(usable, table.altimeter_hpa, np.nan),
         temperature_c=table.temperature_c,
@@ -99,7 +101,9 @@ def compute(read: ReadResult, elevation_m: float | None, now_us: int) -> Compute
         name = Verdict(int(verdict[row])).name.lower()
         quality[row] = f"{name}: {checked.reason.get(int(place[row]), '')}".rstrip(": ")
     for row in np.flatnonzero((verdict == Verdict.VALID) & ~usable).tolist():
-        quality[row] = "rejected: no elevation"
+        given_m = float(elevations_m[row])
+        none = "no elevation" if np.isnan(given_m) else f"elevation: {given_m:.1f} m is no elevation of an airfield"
+        quality[row] = f"rejected: {none}"
     return Computed(read=read, table=table, elevation_m=elevations_m, conditions=conditions, quality=quality)
 
 
@@ -132,7 +136,7 @@ def _lines(computed: Computed, own: Sequence[tuple[int, str]], start: int, stop:
         _column(table.altimeter_hpa[part], "%.4f"),
         _column(table.temperature_c[part], "%.4f"),
         _column(table.dewpoint_c[part], "%.4f"),
-        _column(computed.elevation_m[part], "%.4f"),
+        _column(ft_from_m(computed.elevation_m[part]), "%.4f"),
     ]
     if own:
         fields = [computed.read.fields(row) for row in range(start, stop)]
