@@ -6,7 +6,7 @@ import numpy as np
 
 from airfield_board.observations.observation import NO_TIME_US, ObservationTable
 
-_MOST_KNOWN = 200_000
+_MOST_KNOWN = 50_000
 END_US = int(np.iinfo(np.int64).max)
 """After all times."""
 

@@ -15,7 +15,8 @@ from airfield_board.history.records import Json, Record, RecordKind
 from airfield_board.history.store import History
 from airfield_board.limits.rules import Episode, LimitChange
 from airfield_board.observations.formats.reading import ReadResult
-from airfield_board.observations.observation import ObservationTable, Verdict
+from airfield_board.observations.observation import NO_TIME_US, ObservationTable, Verdict
+from airfield_board.observations.quality_judgement import FUTURE_US
 from airfield_board.session.judge import Judge, Judged
 from airfield_board.session.records import change_records, configuration_records, observation_records
 from airfield_board.session.status import RowStates
@@ -153,7 +154,8 @@ def _batches(time_us: NDArray[np.int64], rows: int) -> Iterator[tuple[int, int]]
 
 
 def _batch_step(judge: Judge, batch: ObservationTable, now: datetime, before: datetime) -> tuple[Judged, datetime]:
-    last_us = int(batch.time_us.max())
+    # No time passes with rows of times in the future.
+    last_us = int(batch.time_us[batch.time_us <= us_from_time(now) + FUTURE_US].max(initial=NO_TIME_US))
     at = before if last_us <= us_from_time(before) else min(now, time_from_us(last_us))
     at_us = us_from_time(at)
     return judge.advance(batch, at_us, pass_to_us=at_us), at
