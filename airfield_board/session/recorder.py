@@ -295,6 +295,7 @@ class Recorder:
 
     def _take(self, rows: ObservationTable, form: str, now: datetime) -> Judged:
         now_us = us_from_time(now)
+        was_stale = self._judge.stale
         judged = self._judge.advance(rows, now_us, pass_to_us=now_us)
         checked = judged.checked
         air = judged.conditions
@@ -310,7 +311,11 @@ class Recorder:
             # The clock may stand, or have been set back to, where rows were taken before: those were judged apart.
             self._step = self._step + 1 if now_us == self._step_us else 0
             self._step_us = now_us
-        self._write(observation_records(judged, form, now, step=self._step), judged.changes, judged.ended, now)
+        records = observation_records(judged, form, now, step=self._step)
+        if self._judge.stale and not was_stale and not judged.changes:
+            # No change tells that the reading has become stale, and the clock may be set back before one does.
+            records.append(Record(kind=RecordKind.CLOCK, at=now, body={"stale": True}))
+        self._write(records, judged.changes, judged.ended, now)
         return judged
 
     # -- records

@@ -133,6 +133,8 @@ class _Anew:
             self._compare_episode(record)
         else:
             self._settle(record.seq)
+            if record.kind is RecordKind.CLOCK:
+                self._pass_time_to(record)
             self._take_settings(record)
 
     def finish(self, seq: int) -> None:

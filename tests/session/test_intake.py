@@ -4,6 +4,7 @@ from collections.abc import Iterable
 from pathlib import Path
 
 import numpy as np
+import pytest
 
 from airfield_board.limits.states import State
 from airfield_board.observations.observation import NO_TIME_US, ObservationTable
@@ -94,3 +95,14 @@ def test_a_correction_back_to_an_earlier_text_is_judged(tmp_path: Path) -> None:
     assert state.observation is not None
     assert state.observation.temperature_c == 35.0
     recorder.close()
+
+
+def test_of_very_many_rows_only_those_that_still_stand_in_the_file_are_kept(monkeypatch: pytest.MonkeyPatch) -> None:
+    monkeypatch.setattr("airfield_board.session.intake._MOST_KNOWN", 5)
+    intake = Intake(_nothing)
+    first = [(minute, f"row {minute}") for minute in range(4)]
+    assert _taken(intake, *first) == ["row 0", "row 1", "row 2", "row 3"]
+    following = [(minute, f"row {minute}") for minute in range(2, 7)]
+    assert _taken(intake, *following) == ["row 4", "row 5", "row 6"]
+    assert _taken(intake, *following) == []
+    assert _taken(intake, (0, "row 0"), *following) == ["row 0"]
