@@ -262,6 +262,11 @@ class Schedule:
         """Return what counts at a moment."""
         return self.standings[bisect_right(self.edges_us, when_us)]
 
+    def newest_edge_us(self, when_us: int) -> int | None:
+        """Return since when it counts; None where it always has."""
+        place = bisect_right(self.edges_us, when_us)
+        return self.edges_us[place - 1] if place else None
+
 
 def _schedule(key: LimitKey, entries: Sequence[Limit], zone: ZoneInfo) -> Schedule:
     days: set[date] = set()

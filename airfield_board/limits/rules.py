@@ -6,6 +6,7 @@ off-delay.
 """
 
 from collections.abc import Sequence
+from dataclasses import replace
 
 import numpy as np
 from numpy.typing import NDArray
@@ -259,6 +260,32 @@ class LimitJudge:
         memory.last_us = last_us
         for doubtful in suspects:
             self._suspect(standing, single(standing, doubtful, when_us))
+
+    def as_of(
+        self, when_us: int, conditions: ConditionsTable, suspects: Sequence[ConditionsTable] = ()
+    ) -> "LimitJudge":
+        """Return this judge as it stands at a moment after its newest observation.
+
+        Limits change with the local day, observations come when they come: where a stricter limit has come into force
+        since the newest one, nobody may go by the limit of the day before. The judge itself waits for an observation.
+
+        Parameters
+        ----------
+        conditions, suspects
+            As in `re_judge`.
+
+        Returns
+        -------
+        LimitJudge
+            Itself, or a copy that has acted on what tightened.
+        """
+        edge_us = self.schedule.newest_edge_us(when_us)
+        if self.memory.state is None or edge_us is None or edge_us <= self.memory.last_us:
+            return self
+        acted = LimitJudge(self.schedule, replace(self.memory))
+        acted.re_judge(edge_us, conditions, suspects)
+        known, then = self.memory.state, acted.memory.state
+        return acted if then is not None and then.severity >= known.severity else self
 
     def retire(self, when_us: int) -> None:
         """End the open episode: the limit is gone from the settings."""

@@ -261,8 +261,7 @@ class Judge:
             for limit in self.limits.values():
                 limit.go_stale(when_us)
         if not self.stale:
-            conditions = self.current_conditions()
-            suspects = [self._conditions_of_row(row) for row in self._suspects]
+            conditions, suspects = self.current_conditions(), self.suspect_conditions()
             for limit in self.limits.values():
                 limit.re_judge(when_us, conditions, suspects)
 
@@ -277,6 +276,10 @@ class Judge:
         if self.current is None:
             raise ValueError("no current observation")
         return self._conditions_of_row(self.current)
+
+    def suspect_conditions(self) -> list[ConditionsTable]:
+        """Return the air of the suspect observations since the current one, one row each, likewise."""
+        return [self._conditions_of_row(row) for row in self._suspects]
 
     def _conditions_of_row(self, row: CurrentRow) -> ConditionsTable:
         return conditions_of(

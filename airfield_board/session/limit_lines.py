@@ -85,6 +85,8 @@ class LimitLines:
     ) -> None:
         self._judge = judge
         self._air = air
+        self._now_us = now_us
+        self._suspects = judge.suspect_conditions()
         self._spans = spans
         self._standings = {
             key: standing for key, limit in judge.limits.items() if (standing := limit.schedule.at(now_us)) is not None
@@ -115,8 +117,10 @@ class LimitLines:
 
     def _line(self, key: LimitKey) -> LimitLine:
         limit, standing = self._judge.limits[key], self._standings[key]
-        line = _unjudged(limit, standing, self._spans(key))
         air, now = self._air, self._now.get(key)
+        if air is not None and air.trusted:
+            limit = limit.as_of(self._now_us, air.conditions, self._suspects)
+        line = _unjudged(limit, standing, self._spans(key))
         if air is not None and now is not None:
             place = self._place(standing, now.full)
             line |= {"limit": now.full, "axis_ft": place.axis_ft, "place_ft": place.axis_ft}
