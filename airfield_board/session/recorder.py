@@ -23,7 +23,7 @@ from airfield_board.limits.rules import Episode, LimitChange
 from airfield_board.observations.observation import ObservationTable, Verdict
 from airfield_board.observations.source import FileSource, SourceReading, SourceRules
 from airfield_board.session.board import board_state
-from airfield_board.session.board_state import BoardState, Message, Mode, Weight
+from airfield_board.session.board_state import BoardState, Message, Mode, SettingChange, Weight
 from airfield_board.session.day_record import KEPT_US, DayRecord
 from airfield_board.session.intake import Intake
 from airfield_board.session.judge import Judge, Judged
@@ -226,9 +226,22 @@ class Recorder:
             self._write_about(RecordKind.ACKNOWLEDGEMENT_WITHDRAWN, known, initials, now)
         return self._state(now)
 
-    def accept_settings(self, name: str) -> BoardState:
-        """Put the waiting settings in force, in the name of a person."""
+    def accept_settings(self, name: str, *, seen: Sequence[SettingChange] | None = None) -> BoardState:
+        """Put the waiting settings in force, in the name of a person.
+
+        Parameters
+        ----------
+        seen
+            What the person saw waiting; None: it is not known.
+
+        Raises
+        ------
+        UserError
+            Where something else waits by now: the files have changed since the person looked.
+        """
         now = self._clock.now()
+        if seen is not None and tuple(seen) != self._settings.waiting:
+            raise UserError("Nothing was accepted: the files have changed since. Look at what waits now.")
         if self._settings.waiting:
             waiting: list[Json] = [
                 {"where": each.where, "in_force": each.in_force, "waiting": each.waiting}

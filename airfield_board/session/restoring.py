@@ -50,12 +50,22 @@ class Start:
     doubt: str
 
 
-def settings_from_history(history: History | None) -> Settings | None:
-    """Return the settings as the last recorder left them; None where the history cannot tell."""
+def settings_from_history(history: History | None, until: datetime | None = None) -> Settings | None:
+    """Return the settings as the last recorder left them, or as of a time; None where the history cannot tell.
+
+    Parameters
+    ----------
+    until
+        The time; None: the end.
+    """
     if history is None:
         return None
     reader = SettingsReader()
-    versions = tuple(history.records(kinds=(RecordKind.CONFIGURATION, RecordKind.SETTINGS_ACCEPTED)))
+    versions = tuple(
+        record
+        for record in history.records(kinds=(RecordKind.CONFIGURATION, RecordKind.SETTINGS_ACCEPTED))
+        if until is None or record.at <= until
+    )
     try:
         for record in _since_settled(versions):
             reader.take(record)

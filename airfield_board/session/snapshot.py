@@ -97,6 +97,7 @@ def _present(airfield: Airfield, table: ObservationTable, history: History | Non
 def _past(airfield: Airfield, table: ObservationTable, history: History | None, at: datetime) -> BoardState:
     if history is None:
         return assess(*airfield, table, at, exact=True)
+    airfield = _in_force(airfield, history, at)
     at_us = us_from_time(at)
     records = history.observation_records(us_from_time(at - _PAST_READ_BACK), at_us + 1)
     recorded = table_from_records(records)
@@ -105,6 +106,17 @@ def _past(airfield: Airfield, table: ObservationTable, history: History | None, 
     together = _joined(recorded, table.take(np.array(fresh, dtype=np.int64)))
     state = assess(*airfield, together, at, exact=True)
     return _with_changes(state, restored(history, airfield, at), airfield[0], at)
+
+
+def _in_force(airfield: Airfield, history: History, at: datetime) -> Airfield:
+    """Return the settings that were in force at a time."""
+    kept = settings_from_history(history, at)
+    if kept is None:
+        return airfield
+    if any(record.at >= at for record in history.records(from_seq=history.count)):
+        return kept.in_force
+    # No recorder ran then: as if one had been started, which what has been tightened since binds.
+    return settings_at_start(kept, airfield, at)[0].in_force
 
 
 def _joined(one: ObservationTable, other: ObservationTable) -> ObservationTable:

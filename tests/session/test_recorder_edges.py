@@ -154,3 +154,19 @@ def test_rows_that_went_and_came_back_are_recorded_once(field: Field) -> None:
     recorder.close()
     assert _kinds(field)[RecordKind.OBSERVATION] == 3
     _verified(field)
+
+
+def test_what_nobody_has_seen_is_not_accepted(field: Field) -> None:
+    field.write(field.row(0, WARM_C))
+    recorder = field.open()
+    recorder.poll()
+    field.fleet.write_text(FLEET.replace("6350", "6400"), encoding="utf-8")
+    seen = recorder.poll().waiting
+    field.fleet.write_text(FLEET.replace("6350", "9000"), encoding="utf-8")
+    now = recorder.poll().waiting
+    with pytest.raises(UserError, match="Nothing was accepted"):
+        recorder.accept_settings("R. Keel", seen=seen)
+    assert recorder.poll().waiting == now
+    assert not recorder.accept_settings("R. Keel", seen=now).waiting
+    recorder.close()
+    _verified(field)

@@ -131,3 +131,36 @@ def test_settings_with_faults_are_an_error(field: Field) -> None:
     field.fleet.write_text("schema: 1\naircraft: 7\n", encoding="utf-8")
     with pytest.raises(FileFaults):
         snapshot_state(field.profile, None, field.at(0))
+
+
+def test_a_past_moment_is_judged_by_the_limits_in_force_then(field: Field) -> None:
+    field.write(field.row(0, WARM_C))
+    recorder = field.open()
+    recorder.poll()
+    field.append(field.row(5, 28.0))
+    field.move_to(5)
+    recorder.poll()
+    field.fleet.write_text(FLEET.replace("6350", "9000"), encoding="utf-8")
+    field.move_to(6)
+    recorder.poll()
+    recorder.accept_settings("R. Keel")
+    field.move_to(7)
+    recorder.close()
+    assert _trainer_at(field, 5.5) == (6350, State.HOLD)
+    assert _trainer_at(field, 6.5)[0] == 9000
+    assert _trainer_at(field, 8)[0] == 9000
+    field.fleet.write_text(FLEET.replace("6350", "5000"), encoding="utf-8")
+    assert _trainer_at(field, 8) == (5000, State.HOLD)
+
+
+def _trainer_at(field: Field, minutes: float) -> tuple[float | None, State]:
+    shown = row_of(snapshot_state(field.profile, field.at(minutes), field.at(600))[0], "trainer").shown
+    assert shown is not None
+    return shown.limit, shown.state
+
+
+def test_a_past_moment_before_any_settings_of_the_history_goes_by_the_files(field: Field) -> None:
+    _recorded(field)
+    field.write(field.row(-60, HOT_C))
+    state, _ = snapshot_state(field.profile, field.at(-59), field.at(600))
+    assert row_of(state, "trainer").state is State.HOLD
