@@ -114,6 +114,7 @@ class MainWindow(QMainWindow):
         self.view.page_asked.connect(self.show_page)
         self.view.poll_asked.connect(self.poll)
         self.view.type_in_asked.connect(self.type_in)
+        self.view.messages_asked.connect(self.show_messages)
         self._style_hints = QGuiApplication.styleHints()
         self._style_hints.colorSchemeChanged.connect(self._system_scheme_changed)
         self._ticker = QTimer(self)

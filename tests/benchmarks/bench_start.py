@@ -46,8 +46,7 @@ def start_and_end(self):
     from PySide6.QtWidgets import QApplication
     start(self)
     def painted(state):
-        self.repaint()
-        QApplication.processEvents()
+        self.repaint()  # strip and rows with their states; the day's plot follows as soon as pyqtgraph is there
         QApplication.quit()
     self.worker.state_came.connect(painted)
 
