@@ -17,6 +17,8 @@ from airfield_board import __version__
 from airfield_board.errors import UserError
 
 DONE, NO, WRONG_USE = 0, 1, 2
+_PNG = b"\x89PNG\r\n\x1a\n"
+"""How every PNG file begins (ISO/IEC 15948, 5.2)."""
 _ADVISES = "Airfield Board advises; the flight manual, local orders and the licensed people on duty decide."
 
 
@@ -185,6 +187,8 @@ def _compute(options: argparse.Namespace) -> int:
             raise UserError(f"--elevation-ft {options.elevation_ft:g}: no elevation of an airfield")
         elevation_m = m_from_ft(options.elevation_ft)
     read = read_file(options.file, time_zone="UTC", station=options.station, finished=True)
+    if options.out is not None and options.out.exists() and options.out.samefile(options.file):
+        raise UserError(f"{options.out}: these are the observations themselves; they are never written to")
     _say(f"{options.file}: {note}" for note in read.notes)
     computed = compute(read, elevation_m, us_from_time(datetime.now(UTC)))
     progress = _progress("rows written", len(computed.table))
@@ -299,6 +303,7 @@ def _snapshot(options: argparse.Namespace) -> int:
     from airfield_board.session.snapshot import snapshot_state
     from airfield_board.window.preflight import require_libraries
 
+    _require_free_or_png(options.out)
     state, notes = snapshot_state(options.airfield, options.at, datetime.now(UTC))
     _say(notes)
     require_libraries("offscreen")
@@ -314,6 +319,18 @@ def _snapshot(options: argparse.Namespace) -> int:
         raise UserError(f"{options.out}: {error.strerror or error}") from error
     application.processEvents()
     return DONE
+
+
+def _require_free_or_png(path: Path) -> None:
+    """Refuse to paint over a file that is no picture: it could be the observations."""
+    try:
+        with path.open("rb") as file:
+            begins = file.read(len(_PNG))
+    except OSError:
+        # Whether it can be written shows when it is.
+        return
+    if begins not in (b"", _PNG):
+        raise UserError(f"{path}: this file is no PNG picture; name another, or one that does not exist yet")
 
 
 # -- verify

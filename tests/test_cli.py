@@ -226,6 +226,21 @@ def test_check_finds_all_faults_of_all_files(field: Field, capsys: pytest.Captur
     assert main(["check", str(field.folder / "none.yaml")]) == WRONG_USE
 
 
+def test_observations_are_never_written_over(field: Field, capsys: pytest.CaptureFixture[str]) -> None:
+    before = field.observations.read_bytes()
+    other_name = field.folder / "link.csv"
+    other_name.symlink_to(field.observations)
+    for out in (field.observations, other_name):
+        arguments = ["compute", str(field.observations), "--elevation-ft", "4120", "--out", str(out)]
+        assert main(arguments) == WRONG_USE
+        assert "never written to" in capsys.readouterr().err
+    assert main(["compute", str(field.folder / "none.csv"), "--out", str(field.observations)]) == WRONG_USE
+    assert "no such file" in capsys.readouterr().err
+    assert main(["snapshot", "--airfield", str(field.profile), "--out", str(field.observations)]) == WRONG_USE
+    assert "no PNG picture" in capsys.readouterr().err
+    assert field.observations.read_bytes() == before
+
+
 def test_schemas_are_printed(capsys: pytest.CaptureFixture[str]) -> None:
     for name in ("profile", "fleet"):
         assert main(["schema", name]) == DONE
