@@ -11,10 +11,13 @@ from collections.abc import Callable, Iterable, Iterator, Sequence
 from contextlib import contextmanager, suppress
 from datetime import UTC, datetime
 from pathlib import Path
-from typing import TextIO
+from typing import TYPE_CHECKING, TextIO
 
 from airfield_board import __version__
 from airfield_board.errors import UserError
+
+if TYPE_CHECKING:
+    from airfield_board.session.replaying import Replay
 
 DONE, NO, WRONG_USE = 0, 1, 2
 _PNG = b"\x89PNG\r\n\x1a\n"
@@ -234,6 +237,7 @@ def _replay(options: argparse.Namespace) -> int:
         raise UserError(f"{options.history} exists; a replay records into a new history only")
     progress = _progress("rows judged", len(read.table))
     outcome = replay(profile, fleet, read, now, history_path=options.history, progress=progress)
+    _say_unused(options.file, outcome)
     if options.json:
         from airfield_board.session.board_json import change_json, episode_json
 
@@ -244,6 +248,17 @@ def _replay(options: argparse.Namespace) -> int:
 
         _print(text_replay(outcome, profile, fleet))
     return DONE
+
+
+def _say_unused(path: Path, outcome: "Replay") -> None:
+    from airfield_board.clock import iso_utc
+    from airfield_board.observations.observation import Verdict
+
+    for when, why in outcome.unused:
+        _say([f"{path}: row of {'no readable time' if when is None else iso_utc(when)}: {why}"])
+    more = outcome.rows - outcome.counts[Verdict.VALID] - len(outcome.unused)
+    if more:
+        _say([f"{path}: and {more:,} more rows not used; airfield-board compute gives the reason of each"])
 
 
 # -- check, schema

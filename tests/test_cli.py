@@ -145,6 +145,27 @@ def test_a_replay_into_a_history_is_proved_and_judged_anew(field: Field, capsys:
     assert main(["verify", str(field.profile)]) == WRONG_USE
 
 
+def test_replay_says_why_rows_were_not_used(field: Field, capsys: pytest.CaptureFixture[str]) -> None:
+    field.append(field.row(15, 61.0), "rubbish\n", field.row(20, 40.0), field.row(10, 25.9))
+    assert main(["replay", str(field.observations), "--airfield", str(field.profile), "--json"]) == DONE
+    said = capsys.readouterr()
+    lines = said.err.splitlines()
+    assert len(lines) == 4
+    for words in (
+        "row of no readable time: rejected: incomplete",
+        "row of 2026-07-14T18:10:00Z: superseded: corrected by a later row",
+        "row of 2026-07-14T18:15:00Z: rejected: range: temperature 61.0 °C",
+        "row of 2026-07-14T18:20:00Z: suspect: step: temperature",
+    ):
+        assert any(words in line for line in lines)
+    assert _json_lines(said.out)[-1]["rows"] == 7
+    field.append(*(field.row(25 + minutes, 61.0) for minutes in range(30)))
+    assert main(["replay", str(field.observations), "--airfield", str(field.profile), "--json"]) == DONE
+    lines = capsys.readouterr().err.splitlines()
+    assert len(lines) == 21
+    assert "14 more rows not used" in lines[-1]
+
+
 def test_compute_keeps_every_row_in_its_place(field: Field, capsys: pytest.CaptureFixture[str]) -> None:
     field.observations.write_text(
         "time,altimeter_inhg,temperature_f,dewpoint_c,remark\n"

@@ -3,6 +3,7 @@
 from collections.abc import Callable, Iterator
 from dataclasses import dataclass
 from datetime import datetime
+from itertools import islice
 from pathlib import Path
 
 import numpy as np
@@ -15,7 +16,7 @@ from airfield_board.history.records import Json, Record, RecordKind
 from airfield_board.history.store import History
 from airfield_board.limits.rules import Episode, LimitChange
 from airfield_board.observations.formats.reading import ReadResult
-from airfield_board.observations.observation import NO_TIME_US, ObservationTable, Verdict
+from airfield_board.observations.observation import NO_TIME_US, CheckedTable, ObservationTable, Verdict
 from airfield_board.observations.quality_judgement import FUTURE_US
 from airfield_board.session.judge import Judge, Judged
 from airfield_board.session.records import change_records, configuration_records, observation_records
@@ -23,6 +24,7 @@ from airfield_board.session.status import RowStates
 
 _RECORDED_BATCH_ROWS = 5_000
 _UNRECORDED_BATCH_ROWS = 250_000
+_UNUSED_TOLD = 20
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -39,12 +41,15 @@ class Replay:
         How many were read.
     counts
         Rows by verdict.
+    unused
+        The first rows that were not used, in order of time: when, as far as it can be read, and why not.
     """
 
     changes: tuple[LimitChange, ...]
     episodes: tuple[Episode, ...]
     rows: int
     counts: dict[Verdict, int]
+    unused: tuple[tuple[datetime | None, str], ...] = ()
 
     def summary(self) -> dict[str, Json]:
         """Return the last line of a replay."""
@@ -95,7 +100,15 @@ def replay(
         episodes=tuple(episodes),
         rows=len(read.table),
         counts={verdict: sum(int((step.checked.verdict == verdict).sum()) for step in steps) for verdict in Verdict},
+        unused=tuple(islice((row for step in steps for row in _unused(step.checked)), _UNUSED_TOLD)),
     )
+
+
+def _unused(checked: CheckedTable) -> Iterator[tuple[datetime | None, str]]:
+    for row in np.flatnonzero(checked.verdict != Verdict.VALID).tolist():
+        time_us = int(checked.rows.time_us[row])
+        when = None if time_us == NO_TIME_US else time_from_us(time_us)
+        yield when, f"{Verdict(int(checked.verdict[row])).name.lower()}: {checked.reason.get(row, '')}"
 
 
 def _judged(
