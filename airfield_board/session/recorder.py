@@ -82,7 +82,7 @@ class Recorder:
         """Go on where the history ends."""
         history = self._recording.history
         self._settings_since = now
-        kept = settings_from_history(history)
+        kept = settings_from_history(history, airfield)
         start = restored(history, airfield if kept is None else kept.in_force, now)
         self._settings, new_version = settings_at_start(kept, airfield, now)
         self._judge: Judge = start.judge
@@ -122,6 +122,7 @@ class Recorder:
         clock: Clock,
         mode: Mode,
         history_path: Path | None = None,
+        loaded: Airfield | None = None,
         watch_settings: bool = True,
     ) -> "Recorder":
         """Open an airfield's profile, its fleet and its history.
@@ -132,13 +133,15 @@ class Recorder:
         ----------
         history_path
             Of the history, instead of the profile's.
+        loaded
+            Profile and fleet, where they have been read a moment ago.
 
         Raises
         ------
         FileFaults
             Where profile or fleet are not valid.
         """
-        airfield = load_airfield(profile_path)
+        airfield = loaded or load_airfield(profile_path)
         path = history_path or place_of_history(
             airfield[0].history, Path(platformdirs.user_data_dir("airfield-board")), airfield[0].name
         )

@@ -65,11 +65,18 @@ class JudgedAnew:
 
 
 class SettingsReader:
-    """Follows the versions of the settings in a history's records."""
+    """Follows the versions of the settings in a history's records.
 
-    def __init__(self) -> None:
+    Parameters
+    ----------
+    known
+        A version that has been read already: where the history has the same texts they are not read again.
+    """
+
+    def __init__(self, known: Airfield | None = None) -> None:
         self.settings: Settings | None = None
         self._profile: StoredRecord | None = None
+        self._known = known
 
     def take(self, record: StoredRecord) -> bool:
         """Take a record; return whether it has changed what is in force.
@@ -90,20 +97,22 @@ class SettingsReader:
             return False
         if self._profile is None:
             return False
-        airfield = _airfield(self._profile, record)
+        airfield = self._airfield(self._profile, record)
         if self.settings is None:
             self.settings = Settings(airfield)
         else:
             self.settings.take(airfield, record.at)
         return True
 
-
-def _airfield(profile_record: StoredRecord, fleet_record: StoredRecord) -> Airfield:
-    profile = profile_from_text(str(profile_record.body["text"]), Path(str(profile_record.body["name"])))
-    fleet = fleet_from_text(
-        str(fleet_record.body["text"]), Path(str(fleet_record.body["name"])), acceptance=profile.acceptance
-    )
-    return profile, fleet
+    def _airfield(self, profile_record: StoredRecord, fleet_record: StoredRecord) -> Airfield:
+        hashes = (profile_record.body["sha256"], fleet_record.body["sha256"])
+        if self._known is not None and hashes == tuple(each.sha256 for each in self._known):
+            return self._known
+        profile = profile_from_text(str(profile_record.body["text"]), Path(str(profile_record.body["name"])))
+        fleet = fleet_from_text(
+            str(fleet_record.body["text"]), Path(str(fleet_record.body["name"])), acceptance=profile.acceptance
+        )
+        return profile, fleet
 
 
 class _Anew:

@@ -50,17 +50,21 @@ class Start:
     doubt: str
 
 
-def settings_from_history(history: History | None, until: datetime | None = None) -> Settings | None:
+def settings_from_history(
+    history: History | None, known: Airfield | None = None, until: datetime | None = None
+) -> Settings | None:
     """Return the settings as the last recorder left them, or as of a time; None where the history cannot tell.
 
     Parameters
     ----------
+    known
+        The files as they were read just now, if they were.
     until
         The time; None: the end.
     """
     if history is None:
         return None
-    reader = SettingsReader()
+    reader = SettingsReader(known)
     versions = tuple(
         record
         for record in history.records(kinds=(RecordKind.CONFIGURATION, RecordKind.SETTINGS_ACCEPTED))

@@ -81,7 +81,7 @@ def _history(profile: Profile, notes: list[str]) -> History | None:
 
 
 def _present(airfield: Airfield, table: ObservationTable, history: History | None, now: datetime) -> BoardState:
-    kept = settings_from_history(history)
+    kept = settings_from_history(history, airfield)
     start = restored(history, airfield if kept is None else kept.in_force, now)
     in_force = settings_at_start(kept, airfield, now)[0].in_force
     now_us = us_from_time(now)
@@ -110,7 +110,7 @@ def _past(airfield: Airfield, table: ObservationTable, history: History | None, 
 
 def _in_force(airfield: Airfield, history: History, at: datetime) -> Airfield:
     """Return the settings that were in force at a time."""
-    kept = settings_from_history(history, at)
+    kept = settings_from_history(history, airfield, at)
     if kept is None:
         return airfield
     if any(record.at >= at for record in history.records(from_seq=history.count)):

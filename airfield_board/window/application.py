@@ -51,7 +51,7 @@ def run_window(profile_path: Path, *, scheme: str = "system") -> int:
     UserError
         Where the files are wrong, a system library is missing, or there is no display.
     """
-    load_airfield(profile_path)
+    airfield = load_airfield(profile_path)
     screen = choose_screen(find_screens(os.environ), os.environ)
 
     def start_feed() -> "Feed":
@@ -61,7 +61,7 @@ def run_window(profile_path: Path, *, scheme: str = "system") -> int:
         clock = SystemClock()
         return Feed(
             clock=clock,
-            worker=Worker(lambda: Recorder.open(profile_path, clock=clock, mode=Mode.LIVE)),
+            worker=Worker(lambda: Recorder.open(profile_path, clock=clock, mode=Mode.LIVE, loaded=airfield)),
         )
 
     return _run(screen, start_feed, scheme=scheme, replayable=False)
