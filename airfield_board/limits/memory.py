@@ -1,7 +1,7 @@
 """What the rules take in, tell, and remember of one limit."""
 
 from collections.abc import Mapping
-from dataclasses import asdict, dataclass, fields
+from dataclasses import dataclass, fields
 
 import numpy as np
 from numpy.typing import NDArray
@@ -130,7 +130,7 @@ class LimitMemory:
 
     def to_json(self) -> dict[str, object]:
         """Plain values that `from_json` turns back without loss."""
-        return asdict(self)
+        return {name: getattr(self, name) for name in _REMEMBERED}
 
     @classmethod
     def from_json(cls, value: Mapping[str, object]) -> "LimitMemory":
@@ -141,8 +141,11 @@ class LimitMemory:
         KeyError, ValueError
             If they are not such values.
         """
-        known = {field.name: value[field.name] for field in fields(cls)}
+        known = {name: value[name] for name in _REMEMBERED}
         for name in ("state", "was"):
             if known[name] is not None:
                 known[name] = State(str(known[name]))
         return cls(**known)  # type: ignore[arg-type] # the values are those that to_json wrote
+
+
+_REMEMBERED = tuple(field.name for field in fields(LimitMemory))

@@ -295,7 +295,8 @@ class FileSource:
         except UserError as error:
             reading = replace(facts, messages=tuple(str(error).splitlines()))
             return _Look(reading=reading, imprint=imprint, since_us=NO_TIME_US, settled=False)
-        if not self._holds_still(file, before, start, content):
+        still = self._was_appended(file, before, last, result) or self._holds_still(file, before, start, content)
+        if not still:
             return self._trouble("is being written; it is read at the next poll", settled=False)
         messages = []
         if result.unfinished:
@@ -344,6 +345,19 @@ class FileSource:
             if not start or wanted >= self._most_bytes or _reaches(result, since_us):
                 return result, start, content
             wanted *= _GROWTH
+
+    def _was_appended(self, file: BinaryIO, before: stat_result, last: _Look | None, result: ReadResult) -> bool:
+        """Whether whole rows were put behind what stood there at the last look, and nothing else happened.
+
+        An appending writer's unfinished row has no line end, so what is complete needs no second look.
+        """
+        if last is None or last.imprint is None or result.unfinished or result.format == "json":
+            return False
+        known = last.imprint
+        if (known.inode, known.device) != (before.st_ino, before.st_dev) or before.st_size <= known.size:
+            return False
+        stood = _read_at(file, max(known.size - FIRST_BLOCK_BYTES, 0), known.size)
+        return hashlib.blake2b(stood).digest() == known.end_digest and _same(before, fstat(file.fileno()))
 
     def _holds_still(self, file: BinaryIO, before: stat_result, start: int, content: bytes) -> bool:
         """Whether what was read still stands there a moment later; a file that only grew meanwhile holds still.

@@ -61,6 +61,43 @@ def test_a_file_that_stays_as_it_is_is_not_read_anew(watched: Watched) -> None:
     assert second.file_time == first.file_time
 
 
+def _second_looks(watched: Watched, monkeypatch: pytest.MonkeyPatch) -> list[int]:
+    """Return a list that grows with each second look."""
+    looks: list[int] = []
+
+    def look_again(file: BinaryIO, before: os.stat_result, start: int, content: bytes) -> bool:
+        del file, before, content
+        looks.append(start)
+        return True
+
+    monkeypatch.setattr(watched.source, "_holds_still", look_again)
+    return looks
+
+
+def test_rows_put_behind_need_no_second_look(watched: Watched, monkeypatch: pytest.MonkeyPatch) -> None:
+    watched.look()
+    looks = _second_looks(watched, monkeypatch)
+    watched.append(row(2))
+    assert watched.rows() == [row(1), row(2)]
+    assert not looks
+
+
+@pytest.mark.parametrize("how", ["replaced", "rewritten", "begun anew"])
+def test_whatever_else_was_done_to_the_file_needs_one(
+    watched: Watched, monkeypatch: pytest.MonkeyPatch, how: str
+) -> None:
+    watched.look()
+    looks = _second_looks(watched, monkeypatch)
+    if how == "replaced":
+        watched.replace(HEADER + row(1) + row(2))
+    elif how == "rewritten":
+        watched.path.write_text(HEADER + row(1, 25.0) + row(2))
+    else:
+        watched.path.write_text(HEADER)
+    assert watched.look().fresh
+    assert looks
+
+
 def test_rows_from_further_back_are_read_when_they_are_asked_for(tmp_path: Path) -> None:
     path = tmp_path / "observations.csv"
     lines = [
