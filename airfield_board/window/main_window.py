@@ -233,7 +233,7 @@ class MainWindow(QMainWindow):
             self._feed.worker.ask(
                 Request(
                     what="accept the settings",
-                    run=lambda recorder: recorder.accept_settings(name),
+                    run=lambda recorder: recorder.accept_settings(name, seen=waiting),
                     still_seen=lambda newest: newest.waiting == waiting,
                 )
             )

@@ -16,7 +16,7 @@ from typing import Protocol, TypeVar
 from PySide6.QtCore import QObject, Qt, QTimer, Signal
 
 from airfield_board.errors import UserError
-from airfield_board.session.board_state import BoardState
+from airfield_board.session.board_state import BoardState, SettingChange
 
 _logger = logging.getLogger(__name__)
 _LEAST_WATCHDOG_S = 10.0
@@ -52,8 +52,8 @@ class BoardRecorder(Protocol):
     ) -> BoardState:
         """Judge and record an observation entered by hand."""
 
-    def accept_settings(self, name: str) -> BoardState:
-        """Put the waiting settings in force."""
+    def accept_settings(self, name: str, *, seen: Sequence[SettingChange] | None = None) -> BoardState:
+        """Put the waiting settings in force, if they are those that the person saw."""
 
     def close(self) -> None:
         """Record the stop and close the history."""

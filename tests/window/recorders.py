@@ -4,7 +4,7 @@ import threading
 from collections.abc import Sequence
 from datetime import datetime
 
-from airfield_board.session.board_state import BoardState
+from airfield_board.session.board_state import BoardState, SettingChange
 
 
 class FakeRecorder:
@@ -66,8 +66,8 @@ class FakeRecorder:
             raise self.refusal
         return self.state
 
-    def accept_settings(self, name: str) -> BoardState:
-        return self._note("accept_settings", name)
+    def accept_settings(self, name: str, *, seen: Sequence[SettingChange] | None = None) -> BoardState:
+        return self._note("accept_settings", name, seen)
 
     def close(self) -> None:
         self.threads.add(threading.get_ident())
