@@ -93,8 +93,9 @@ class SettingsFiles:
     def look(self) -> SettingsReading:
         """Read the files if their content has changed since the last look."""
         contents = self._read(self._fleet_path)
-        if contents == self._contents:
-            return SettingsReading(airfield=None, refused=self._refused)
+        # What was refused is looked at again: it may have been read while it was being written.
+        if contents == self._contents and not self._refused:
+            return SettingsReading(airfield=None, refused="")
         try:
             profile, fleet = load_airfield(self._profile_path)
         except FileFaults as faults:
