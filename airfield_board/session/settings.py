@@ -103,8 +103,9 @@ class SettingsFiles:
             self._refused = str(faults)
             return SettingsReading(airfield=None, refused=self._refused)
         self._refused = ""
+        # What was compared before reading, never what stands there after: a change in between is seen at the next look.
+        self._contents = contents if profile.fleet_path == self._fleet_path else (None, None)
         self._fleet_path = profile.fleet_path
-        self._contents = self._read(self._fleet_path)
         seen = (profile.sha256, fleet.sha256)
         if seen == self._seen:
             return SettingsReading(airfield=None, refused="")
