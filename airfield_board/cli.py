@@ -137,6 +137,7 @@ def _add_assess(commands: "argparse._SubParsersAction[argparse.ArgumentParser]")
 
 def _assess(options: argparse.Namespace) -> int:
     from airfield_board.configuration.profile import load_airfield
+    from airfield_board.session.board_state import Mode
     from airfield_board.session.records import empty_table
     from airfield_board.session.whole_files import assess, read_for
 
@@ -151,7 +152,7 @@ def _assess(options: argparse.Namespace) -> int:
         # The board is given all the same: without observations every state is NO DATA.
         trouble, table = error, empty_table()
     at = options.at or datetime.now(UTC)
-    state = assess(profile, fleet, table, at, exact=options.at is not None)
+    state = assess(profile, fleet, table, at, Mode.LIVE if options.at is None else Mode.PAST)
     if options.json:
         from airfield_board.session.board_json import board_json
 

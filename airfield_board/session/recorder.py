@@ -393,7 +393,13 @@ class Recorder:
         if self._doubt:
             found.append(Message(topic="recording", weight=Weight.WARNING, text=self._doubt))
         if self._refused:
-            found.append(Message(topic="settings", weight=Weight.ALARM, text=self._refused, time=self._settings_since))
+            found.append(
+                Message(
+                    topic="settings",
+                    weight=Weight.ALARM,
+                    text=f"A changed file is not valid; the last valid one stays in force.\n{self._refused}",
+                )
+            )
         for time_us, text in self._warnings[-1:]:
             found.append(
                 Message(topic="observation", weight=Weight.WARNING, text=text, time=time_from_us(time_us)),

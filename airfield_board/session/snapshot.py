@@ -96,7 +96,7 @@ def _present(airfield: Airfield, table: ObservationTable, history: History | Non
 
 def _past(airfield: Airfield, table: ObservationTable, history: History | None, at: datetime) -> BoardState:
     if history is None:
-        return assess(*airfield, table, at, exact=True)
+        return assess(*airfield, table, at, Mode.PAST)
     airfield = _in_force(airfield, history, at)
     at_us = us_from_time(at)
     records = history.observation_records(us_from_time(at - _PAST_READ_BACK), at_us + 1)
@@ -104,7 +104,7 @@ def _past(airfield: Airfield, table: ObservationTable, history: History | None, 
     known = frozenset(recorded.raw)
     fresh = [row for row in range(len(table)) if table.raw[row] not in known]
     together = _joined(recorded, table.take(np.array(fresh, dtype=np.int64)))
-    state = assess(*airfield, together, at, exact=True)
+    state = assess(*airfield, together, at, Mode.PAST)
     return _with_changes(state, restored(history, airfield, at), airfield[0], at)
 
 

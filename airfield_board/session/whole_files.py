@@ -51,7 +51,7 @@ def read_for(profile: Profile, path: Path, *, finished: bool) -> ReadResult:
     return read_file(path, time_zone=settings.time_zone, station=settings.station, finished=finished)
 
 
-def assess(profile: Profile, fleet: Fleet, table: ObservationTable, at: datetime, *, exact: bool) -> BoardState:
+def assess(profile: Profile, fleet: Fleet, table: ObservationTable, at: datetime, mode: Mode) -> BoardState:
     """Return the board at a time, from a file's rows alone.
 
     Parameters
@@ -59,15 +59,14 @@ def assess(profile: Profile, fleet: Fleet, table: ObservationTable, at: datetime
     table
         The file's rows.
     at
-        The time the board is of.
-    exact
-        True: rows of a later time are not known yet. False: ``at`` is now, and the checks decide as they do live.
+        The time the board is of: rows of a later time are not known yet.
+    mode
+        What the board is said to be.
     """
     at_us = us_from_time(at)
-    if exact:
-        table = table.take(np.flatnonzero(table.time_us <= at_us))
+    table = table.take(np.flatnonzero(table.time_us <= at_us))
     judge, day = Judge(profile, fleet), DayRecord()
     judged = judge.advance(table, at_us, pass_to_us=at_us)
     day.add_rows(judged.checked, judged.conditions.density_altitude_ft, judged.conditions.uncertainty_ft, at_us)
     day.add_changes(judged.changes)
-    return board_state(judge, day, Mode.PAST if exact else Mode.LIVE, at)
+    return board_state(judge, day, mode, at)

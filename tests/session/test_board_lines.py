@@ -8,7 +8,7 @@ import pytest
 from airfield_board.configuration.profile import load_airfield
 from airfield_board.limits.states import State
 from airfield_board.session.board_json import board_json
-from airfield_board.session.board_state import BoardState, LimitLine
+from airfield_board.session.board_state import BoardState, LimitLine, Mode
 from airfield_board.session.whole_files import assess, read_for
 from tests.session.fields import PROFILE, Field, make_field
 
@@ -54,7 +54,7 @@ def field(tmp_path: Path) -> Field:
 def _board(field: Field, minutes: float) -> BoardState:
     profile, fleet = load_airfield(field.profile)
     table = read_for(profile, field.observations, finished=True).table
-    return assess(profile, fleet, table, field.at(minutes), exact=False)
+    return assess(profile, fleet, table, field.at(minutes), Mode.LIVE)
 
 
 def _limits(state: BoardState) -> dict[tuple[str, str], LimitLine]:

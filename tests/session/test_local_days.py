@@ -5,7 +5,7 @@ from pathlib import Path
 
 from airfield_board.configuration.profile import load_airfield
 from airfield_board.limits.states import State
-from airfield_board.session.board_state import BoardState
+from airfield_board.session.board_state import BoardState, Mode
 from airfield_board.session.whole_files import assess, read_for
 from tests.session.fields import Field, make_field, row_of
 
@@ -59,7 +59,7 @@ def _field(folder: Path, *more: tuple[int, float]) -> Field:
 def _board(field: Field, day: int, hour: int, minute: int) -> BoardState:
     profile, fleet = load_airfield(field.profile)
     table = read_for(profile, field.observations, finished=True).table
-    return assess(profile, fleet, table, datetime(2026, 7, day, hour, minute, tzinfo=UTC), exact=True)
+    return assess(profile, fleet, table, datetime(2026, 7, day, hour, minute, tzinfo=UTC), Mode.PAST)
 
 
 def _states(board: BoardState) -> dict[str, State]:

@@ -277,6 +277,10 @@ def test_an_invalid_file_leaves_the_last_valid_one_in_force(field: Field) -> Non
     field.fleet.write_text(FLEET.replace("max_density", "max_densty"), encoding="utf-8")
     state = recorder.poll()
     assert "max_densty" in state.settings_refused
+    (message,) = (message for message in state.messages if message.topic == "settings")
+    assert message.weight is Weight.ALARM
+    assert "the last valid one stays in force" in message.text
+    assert state.settings_refused in message.text
     assert row_of(state, "trainer").state is not State.NO_DATA
     field.fleet.write_text(FLEET, encoding="utf-8")
     assert recorder.poll().settings_refused == ""
