@@ -267,7 +267,7 @@ class MessagesDialog(QDialog):
 
     def show_state(self, state: BoardState) -> None:
         """List a newer board's messages; where nothing has changed, a selection stays."""
-        new = (state.messages, state.settings_refused, state.unused, state.not_recording)
+        new = (state.messages, state.unused, state.not_recording)
         if new == self._shown:
             return
         self._shown = new
@@ -284,10 +284,6 @@ def messages_text(state: BoardState, zone: ZoneInfo) -> str:
     parts = []
     if not state.recording:
         parts.append(f"NOT RECORDING: {state.not_recording}")
-    if state.settings_refused:
-        parts.append(
-            f"A changed settings file is not valid; the last valid one stays in force.\n{state.settings_refused}"
-        )
     weights = ("alarm", "warning", "note")
     for message in sorted(state.messages, key=lambda each: weights.index(each.weight.value)):
         when = f"{formatting.clock(message.time, zone)} " if message.time is not None else ""

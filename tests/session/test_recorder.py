@@ -8,7 +8,7 @@ from airfield_board.errors import FileFaults, UserError
 from airfield_board.history.records import RecordKind
 from airfield_board.history.store import History
 from airfield_board.limits.states import State
-from airfield_board.session.board_state import Freshness
+from airfield_board.session.board_state import Freshness, Weight
 from airfield_board.session.rejudge import judge_anew
 from airfield_board.session.verifying import verify_history
 from tests.session.fields import FLEET, PROFILE, Field, make_field, row_of

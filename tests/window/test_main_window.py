@@ -308,9 +308,8 @@ def test_messages_and_unused_rows_are_listed_as_plain_text_and_go_on_with_the_bo
     desk.show(
         replace(
             listed,
-            messages=(),
+            messages=(Message(topic="settings", weight=Weight.ALARM, text="fleet.yaml:3: no"),),
             unused=(),
-            settings_refused="fleet.yaml:3: no",
             recording=False,
             not_recording="disk full",
         )
