@@ -41,11 +41,6 @@ def pa_from_hpa(value_hpa: Number) -> Number:
     return value_hpa * HECTOPASCAL_PA
 
 
-def hpa_from_pa(value_pa: Number) -> Number:
-    """Hectopascals from pascals."""
-    return value_pa / HECTOPASCAL_PA
-
-
 def hpa_from_inhg(value_inhg: Number) -> Number:
     """Hectopascals from inches of mercury."""
     return value_inhg * INCH_OF_MERCURY_PA / HECTOPASCAL_PA

@@ -38,47 +38,6 @@ _ENHANCEMENT_RISE: Final = 3.15e-6
 _ENHANCEMENT_LOSS: Final = 0.074
 
 
-def saturation_vapour_pressure(temperature_k: Number | float, pressure_pa: Number | float) -> Number:
-    """Vapour pressure of moist air saturated over water.
-
-    Parameters
-    ----------
-    temperature_k
-        Temperature [K], 173.15 to 373.15, else NaN; the dew point gives the vapour pressure of the air itself.
-    pressure_pa
-        Pressure of the moist air [Pa]; it raises the vapour pressure by some 0.4 %.
-
-    Returns
-    -------
-    float or ndarray
-        Vapour pressure [Pa].
-    """
-    return evaluated(_saturation_vapour_pressure, temperature_k, pressure_pa)
-
-
-def virtual_temperature(
-    temperature_k: Number | float, pressure_pa: Number | float, dewpoint_k: Number | float
-) -> Number:
-    """Temperature at which dry air of the same pressure has the density of the moist air.
-
-    Parameters
-    ----------
-    temperature_k
-        Temperature [K].
-    pressure_pa
-        Pressure [Pa].
-    dewpoint_k
-        Dew point over water [K], 173.15 to 373.15, else NaN. Nothing is said of one above the temperature: the formula
-        is followed.
-
-    Returns
-    -------
-    float or ndarray
-        Virtual temperature [K]; NaN where the vapour alone would exceed the pressure.
-    """
-    return evaluated(_virtual_temperature, temperature_k, pressure_pa, dewpoint_k)
-
-
 def density(
     pressure_pa: Number | float, temperature_k: Number | float, dewpoint_k: Number | float | None = None
 ) -> Number:
@@ -142,11 +101,6 @@ def moist_to_dry_slopes(
     return by_pressure, by_dewpoint
 
 
-def _saturation_vapour_pressure(temperature_k: FloatArray, pressure_pa: FloatArray) -> FloatArray:
-    pressure_hpa = positive(pressure_pa) * (1.0 / HECTOPASCAL_PA)
-    return positive(_pure_vapour_pressure(temperature_k) * (HECTOPASCAL_PA * _enhancement_factor(pressure_hpa)))
-
-
 def _pure_vapour_pressure(temperature_k: FloatArray) -> FloatArray:
     """Saturation vapour pressure without air [hPa]; steps are written over one another, as in `standard`."""
     temperature_k = within(temperature_k, LOWEST_DEWPOINT_K, HIGHEST_DEWPOINT_K)
@@ -164,10 +118,6 @@ def _pure_vapour_pressure(temperature_k: FloatArray) -> FloatArray:
 
 def _enhancement_factor(pressure_hpa: FloatArray) -> FloatArray:
     return _ENHANCEMENT + _ENHANCEMENT_RISE * pressure_hpa - _ENHANCEMENT_LOSS / pressure_hpa
-
-
-def _virtual_temperature(temperature_k: FloatArray, pressure_pa: FloatArray, dewpoint_k: FloatArray) -> FloatArray:
-    return positive(temperature_k) / _moist_to_dry_density(pressure_pa, dewpoint_k)
 
 
 def _density(pressure_pa: FloatArray, temperature_k: FloatArray, dewpoint_k: FloatArray | None) -> FloatArray:

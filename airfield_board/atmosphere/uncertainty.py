@@ -151,8 +151,8 @@ def field_air_uncertainties(
     Returns
     -------
     density_altitude, pressure_altitude, isa_deviation
-        [m, m, K]: what `density_altitude_uncertainty`, `pressure_altitude_uncertainty` and
-        `isa_deviation_uncertainty` give for the same air.
+        [m, m, K]: the first and the last as `density_altitude_uncertainty` and `isa_deviation_uncertainty` give
+        them for the same air; the elevation, being exact, adds nothing to the second.
     """
     with np.errstate(all="ignore"):
         by_altimeter_m = _pressure_altitude_by_altimeter(air.altimeter_pa, air.pressure_altitude_m - air.elevation_m)
@@ -164,24 +164,6 @@ def field_air_uncertainties(
                 air.pressure_altitude_m, by_altimeter_m, altimeter_uncertainty_pa, temperature_uncertainty_k
             ),
         )
-
-
-def pressure_altitude_uncertainty(altimeter_pa: Number | float, altimeter_uncertainty_pa: Number | float) -> Number:
-    """Return the expanded uncertainty (k = 2) of pressure altitude; the elevation, being exact, does not change it.
-
-    Parameters
-    ----------
-    altimeter_pa
-        Altimeter setting [Pa].
-    altimeter_uncertainty_pa
-        Its standard uncertainty [Pa].
-
-    Returns
-    -------
-    float or ndarray
-        [m].
-    """
-    return evaluated(_pressure_altitude_uncertainty, altimeter_pa, altimeter_uncertainty_pa)
 
 
 def isa_deviation_uncertainty(
@@ -290,11 +272,6 @@ def _combined(
     variance = variance + (by_temperature * temperature_uncertainty_k) ** 2
     variance = variance + (by_dewpoint * dewpoint_uncertainty_k) ** 2
     return COVERAGE_FACTOR * np.sqrt(variance)
-
-
-def _pressure_altitude_uncertainty(altimeter_pa: FloatArray, altimeter_uncertainty_pa: FloatArray) -> FloatArray:
-    by_altimeter_m = _pressure_altitude_by_altimeter(altimeter_pa, standard.altitude_from_pressure(altimeter_pa))
-    return COVERAGE_FACTOR * np.abs(by_altimeter_m * altimeter_uncertainty_pa)
 
 
 def _isa_deviation_uncertainty(

@@ -6,7 +6,7 @@ from datetime import datetime, timedelta
 import numpy as np
 from numpy.typing import NDArray
 
-from airfield_board.clock import time_from_us, us_from_time
+from airfield_board.clock import us_from_time
 from airfield_board.limits.states import State
 from airfield_board.session.board_state import DayCurve, Span
 from airfield_board.window.axes import AltitudeAxis, HourMark, TimeAxis
@@ -109,8 +109,3 @@ def _kept(px: NDArray[np.float64], value: NDArray[np.float64]) -> NDArray[np.int
         piece = value[start:end]
         kept.update((start, start + int(piece.argmin()), start + int(piece.argmax()), end - 1))
     return np.array(sorted(kept), dtype=np.int64)
-
-
-def last_time(curve: DayCurve) -> datetime | None:
-    """Return the time of a curve's last point; None where it has none."""
-    return time_from_us(int(curve.time_us[-1])) if len(curve.time_us) else None

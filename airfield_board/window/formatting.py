@@ -16,7 +16,6 @@ from airfield_board.session.board_state import (
     CurrentObservation,
     Freshness,
     LimitLine,
-    Mode,
     OperationLine,
 )
 from airfield_board.units import f_from_c, ft_from_m, inhg_from_hpa, m_from_ft
@@ -42,7 +41,6 @@ STATE_WORDS: dict[State, str] = {
     State.HOLD: "HOLD",
     State.NO_DATA: "NO DATA",
 }
-MODE_WORDS: dict[Mode, str] = {Mode.LIVE: "LIVE", Mode.DEMO: "DEMO", Mode.TRAINING: "TRAINING", Mode.PAST: "PAST DAY"}
 _DAYS = ("Mon", "Tue", "Wed", "Thu", "Fri", "Sat", "Sun")
 _MONTHS = ("Jan", "Feb", "Mar", "Apr", "May", "Jun", "Jul", "Aug", "Sep", "Oct", "Nov", "Dec")
 

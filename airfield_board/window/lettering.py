@@ -4,7 +4,7 @@ from dataclasses import dataclass, field
 from functools import lru_cache
 from typing import Literal
 
-from PySide6.QtCore import QPointF, QRectF
+from PySide6.QtCore import QPointF
 from PySide6.QtGui import QColor, QFont, QFontMetricsF, QPainter
 
 from airfield_board.window.fonts import REGULAR, font
@@ -146,8 +146,3 @@ class Lettering:
         self.painter.setFont(face)
         self.painter.setPen(QColor(colour))
         self.painter.drawText(QPointF(left, baseline), text)
-
-
-def ink_rect(painted: PaintedText) -> QRectF:
-    """Return the rectangle that a text's ink fills."""
-    return QRectF(painted.left, painted.top, painted.width, painted.height)

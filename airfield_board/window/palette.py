@@ -32,10 +32,10 @@ class Palette:
         Behind the cards, of the cards, and of an unlit cell or a tinted item.
     ink, soft_ink, line, hairline
         Text, secondary text, lines and outlines (3:1 or better on the card), and separators that carry nothing.
-    water, water_ahead
-        Under the observed curve and beside the rows below the level; under what is expected.
-    accent, on_accent, accent_band
-        Curve, level, focus and action; words on it; the curve's uncertainty.
+    water
+        Under the observed curve, and beside the rows below the level.
+    accent, on_accent
+        Curve, level, focus and action; words on it.
     hold_block, on_hold, hold_line
         The HOLD block, its word, and HOLD's leaders and spans.
     near_block, on_near, near_line
@@ -60,10 +60,8 @@ class Palette:
     line: str
     hairline: str
     water: str
-    water_ahead: str
     accent: str
     on_accent: str
-    accent_band: str
     hold_block: str
     on_hold: str
     hold_line: str
@@ -96,10 +94,8 @@ LIGHT = Palette(
     line="#73818E",
     hairline="#D5DCE3",
     water="#E3ECF7",
-    water_ahead="#F0F5FB",
     accent="#1A4FA0",
     on_accent="#FFFFFF",
-    accent_band="#B9CBE6",
     hold_block="#A50F1F",
     on_hold="#FFFFFF",
     hold_line="#B01425",
@@ -132,10 +128,8 @@ DARK = Palette(
     line="#778695",
     hairline="#2A3541",
     water="#1A2C42",
-    water_ahead="#172431",
     accent="#8FBCFF",
     on_accent="#0B1117",
-    accent_band="#35506F",
     hold_block="#FF6B61",
     on_hold="#1A0203",
     hold_line="#FF6B61",
@@ -168,10 +162,8 @@ GREY_LIGHT = Palette(
     line="#73818E",
     hairline="#D5DCE3",
     water="#E3E6E9",
-    water_ahead="#F1F2F4",
     accent="#13202C",
     on_accent="#FFFFFF",
-    accent_band="#B4BCC4",
     hold_block="#3F4D5A",
     on_hold="#FFFFFF",
     hold_line="#3F4D5A",
@@ -204,10 +196,8 @@ GREY_DARK = Palette(
     line="#778695",
     hairline="#2A3541",
     water="#222A32",
-    water_ahead="#1B232B",
     accent="#EAF0F5",
     on_accent="#0B1117",
-    accent_band="#47525E",
     hold_block="#B4C0CB",
     on_hold="#0B1117",
     hold_line="#B4C0CB",

@@ -63,19 +63,6 @@ def save_page(
         raise OSError(f"cannot write the picture {path}: {writer.errorString()}")
 
 
-def paint_to_file(state: BoardState, path: Path, *, size_px: tuple[int, int], scheme: str) -> None:
-    """Paint the Board as of the state's own time to a PNG file, making the application if there is none.
-
-    Raises
-    ------
-    OSError
-        Where the file cannot be written.
-    """
-    application = offscreen_application()
-    save_page(path, state, state.assessed_at, page=PageName.BOARD, size_px=size_px, scheme=scheme)
-    application.processEvents()
-
-
 def offscreen_application() -> QApplication:
     """Return the running application; the caller has set the platform ``offscreen`` before Qt was loaded."""
     running = QApplication.instance()

@@ -75,10 +75,16 @@ def test_the_altimeter_setting_acts_twice_on_moist_density_altitude() -> None:
     assert moist.by_altimeter < dry.by_altimeter * 1.01
 
 
+def pressure_altitude_uncertainty(altimeter_pa: float, elevation_m: float, u_altimeter_pa: float) -> float:
+    one = np.ones(1)
+    air = uncertainty._air(altimeter_pa * one, elevation_m * one, 300.0 * one, None)
+    return float(uncertainty.field_air_uncertainties(air, u_altimeter_pa, 0.2 * one, 0.5 * one)[1][0])
+
+
 @pytest.mark.parametrize(("altimeter_pa", "elevation_m"), [(101325.0, 0.0), (98000.0, 4000.0), (105000.0, -300.0)])
 def test_uncertainty_of_pressure_altitude_is_exact(altimeter_pa: float, elevation_m: float) -> None:
     by_altimeter = slope(lambda x: altimetry.pressure_altitude(x, elevation_m), altimeter_pa, 50.0)
-    found_m = uncertainty.pressure_altitude_uncertainty(altimeter_pa, 34.0)
+    found_m = pressure_altitude_uncertainty(altimeter_pa, elevation_m, 34.0)
     assert found_m == pytest.approx(2 * 34.0 * abs(by_altimeter), rel=1e-8)
 
 
@@ -129,7 +135,7 @@ def test_propagation_agrees_with_a_monte_carlo(
     assert found_m == pytest.approx(drawn_m, rel=0.01)
 
     altitudes_m = altimetry.pressure_altitude(altimeters_pa, elevation_m)
-    found_m = uncertainty.pressure_altitude_uncertainty(altimeter_pa, u_altimeter_pa)
+    found_m = pressure_altitude_uncertainty(altimeter_pa, elevation_m, u_altimeter_pa)
     assert found_m == pytest.approx(2 * float(np.std(altitudes_m)), rel=0.01)
 
     drawn_k = 2 * float(np.std(altimetry.isa_deviation(altitudes_m, temperatures_k)))

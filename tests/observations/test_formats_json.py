@@ -50,7 +50,6 @@ def test_lines_and_arrays_are_read(text: str) -> None:
     assert list(table.raw) == [ROW, LATER]
     content = text.encode()
     assert table.position.tolist() == [content.index(raw.encode()) for raw in table.raw]
-    assert result.line_number(1) == content[: table.position[1]].count(b"\n") + 1
 
 
 @pytest.mark.parametrize("indent", [None, 2])

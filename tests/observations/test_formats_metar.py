@@ -158,7 +158,6 @@ def test_a_report_is_a_line() -> None:
     text = "METAR ZZCM 141653Z 29/10 Q1013\n\nMETAR ZZCM 141753Z 30/10 Q1013\r\n"
     result = read(text)
     assert temperatures(text) == [29.0, 30.0]
-    assert [result.line_number(row) for row in range(2)] == [1, 3]
     assert result.table.raw[1] == "METAR ZZCM 141753Z 30/10 Q1013"
 
 

@@ -16,7 +16,7 @@ from airfield_board.session.board_state import BoardState, Message, Mode, Weight
 from airfield_board.window.board_view import BoardView, PageName
 from airfield_board.window.frame_overlay import BAND_PX
 from airfield_board.window.palette import DARK, LIGHT
-from airfield_board.window.picture import image_of, paint_page, paint_to_file, void_after
+from airfield_board.window.picture import image_of, paint_page, save_page, void_after
 from airfield_board.window.reading import Frame
 from tests.window import states
 from tests.window.painting import Placed, pixels, shown_view, texts_of
@@ -320,8 +320,16 @@ def test_pictures_have_the_size_asked_for(qapp: object, page: PageName) -> None:
 
 
 def test_a_picture_that_cannot_be_written_is_said(qapp: object, tmp_path: Path) -> None:
+    state = states.board()
     with pytest.raises(OSError, match="cannot write the picture"):
-        paint_to_file(states.board(), tmp_path / "no folder" / "board.png", size_px=(1200, 760), scheme="light")
+        save_page(
+            tmp_path / "no folder" / "board.png",
+            state,
+            state.assessed_at,
+            page=PageName.BOARD,
+            size_px=(1200, 760),
+            scheme="light",
+        )
 
 
 def test_parts_have_names_for_screen_readers(qtbot: QtBot) -> None:

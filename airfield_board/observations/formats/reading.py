@@ -169,10 +169,6 @@ class ReadResult:
         except csv.Error:
             return (text,)
 
-    def line_number(self, row: int) -> int:
-        """Return the line of the file on which a row begins, from 1; only where the whole file was read."""
-        return 1 + self.section.content.count(b"\n", 0, int(self.table.position[row]) - self.section.start)
-
 
 class RawRows(Sequence[str]):
     """The rows' own text, cut out of the file's bytes only when asked for.
