@@ -7,8 +7,8 @@ from datetime import UTC, datetime
 from pathlib import Path
 
 import numpy as np
-from airfield_board.configuration.profile import load_airfield
 
+from airfield_board.configuration.profile import load_airfield
 from airfield_board.session.replaying import replay
 from airfield_board.session.whole_files import read_for
 from tests.benchmarks.invented import OPERATIONS, write_field, write_record
