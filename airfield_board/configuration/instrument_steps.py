@@ -3,12 +3,13 @@
 from collections.abc import Iterator
 from dataclasses import dataclass, field
 
-from airfield_board.configuration.differences import difference_in_unit
+from airfield_board.configuration.differences import base_unit, difference_in_unit
 from airfield_board.configuration.fleet_checks import LIMIT_KEYS
 from airfield_board.configuration.model import Fleet, Limit, Profile, Quantity, Unit
 from airfield_board.configuration.yaml_nodes import Mapping
 from airfield_board.configuration.yaml_reader import read_document
 from airfield_board.errors import Fault
+from airfield_board.units import UNIT_WORDS
 
 # Derivatives of the standard atmosphere (ISO 2533: T0 288.15 K, L 0.0065 K/m, g0/(R L) = 5.25588, p0 1013.25 hPa) at
 # sea level, rounded up. Density altitude goes with density to the power 1/4.25588: (T0/L) / 4.25588 / T0 = 118.6 ft/K,
@@ -22,7 +23,6 @@ _PRESSURE_ALTITUDE_FT_PER_HPA = 27.4
 _STANDARD_TEMPERATURE_C_PER_FT = 0.0019812
 
 _METAR_STEP_C = 1.0
-_SHOWN_UNITS: dict[Unit, str] = {"ft": "ft", "m": "m", "c": "°C", "f": "°F"}
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -64,11 +64,10 @@ def warnings_of(profile: Profile, fleet: Fleet) -> tuple[Fault, ...]:
             group.labels.append(label)
     warnings: list[Fault] = []
     for (quantity, unit, deadband), group in groups.items():
-        base: Unit = "ft" if unit in ("ft", "m") else "c"
         for step in _steps(profile, quantity):
-            effect = difference_in_unit(step.effect, base, unit)
+            effect = difference_in_unit(step.effect, base_unit(unit), unit)
             if effect > deadband:
-                message = _message(step.reading, effect, deadband, _SHOWN_UNITS[unit], group.labels)
+                message = _message(step.reading, effect, deadband, UNIT_WORDS[unit], group.labels)
                 warnings.append(Fault(file=str(fleet.path), line=group.line, message=message))
     return tuple(sorted(warnings))
 

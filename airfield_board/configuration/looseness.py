@@ -7,12 +7,9 @@ from enum import StrEnum
 
 import numpy as np
 
-from airfield_board.configuration.differences import difference_in_unit, limit_in_unit
+from airfield_board.configuration.differences import base_unit, difference_in_unit, limit_in_unit
 from airfield_board.configuration.model import Limit, PressureAltitudeTable, Unit, WeightTable
-from airfield_board.units import kg_from_lb
-
-EQUAL = 1e-6
-"""A difference under this, in the limit's unit, counts as equal."""
+from airfield_board.units import EQUAL, kg_from_lb
 
 _SOME_DAY = date(2000, 1, 1)
 _DAY = timedelta(days=1)
@@ -230,11 +227,11 @@ def ruling(limits: Sequence[Limit]) -> tuple[Limit, ...]:
 
 # Bands are compared in feet and degrees Celsius, so that a change of unit alone is no change.
 def _in_base_unit(band: float, unit: Unit) -> float:
-    return difference_in_unit(band, unit, "ft" if unit in ("ft", "m") else "c")
+    return difference_in_unit(band, unit, base_unit(unit))
 
 
 def _from_base_unit(band: float, unit: Unit) -> float:
-    return difference_in_unit(band, "ft" if unit in ("ft", "m") else "c", unit)
+    return difference_in_unit(band, base_unit(unit), unit)
 
 
 def _near_band(limit: Limit) -> float:

@@ -6,12 +6,10 @@ from dataclasses import fields, replace
 from airfield_board.configuration.model import Humidity, Instruments, ObservationSettings, Profile
 from airfield_board.configuration.setting_changes import ChangeNotes
 from airfield_board.configuration.setting_texts import number_text
-from airfield_board.units import ft_from_m
+from airfield_board.units import UNIT_WORDS, ft_from_m
 
 _HUMIDITY_RANK: dict[Humidity, int] = {"dry": 0, "auto": 1, "moist": 2}
 """Humid air is thinner, so what counts more of it never gives a lower density altitude."""
-
-_INSTRUMENT_UNITS = {"hpa": "hPa", "c": "°C"}
 
 
 def merge_profiles(old: Profile, new: Profile, notes: ChangeNotes) -> Profile:
@@ -105,7 +103,7 @@ def _merge_instruments(old: Instruments, new: Instruments, notes: ChangeNotes) -
         words, unit = field.name.rsplit("_", 1)
 
         def text(value: float, unit: str = unit) -> str:
-            return f"{number_text(value)} {_INSTRUMENT_UNITS[unit]}"
+            return f"{number_text(value)} {UNIT_WORDS[unit]}"
 
         merged[field.name] = notes.number(
             words.replace("_", " ").replace("dewpoint", "dew point"),

@@ -2,10 +2,9 @@
 
 from collections.abc import Iterable, Sequence
 
-from airfield_board.configuration.looseness import EQUAL, Aspect, nowhere_above
-from airfield_board.configuration.model import Limit, PressureAltitudeTable, Unit, WeightTable
-
-_UNITS: dict[Unit, str] = {"ft": "ft", "m": "m", "c": "°C", "f": "°F"}
+from airfield_board.configuration.looseness import Aspect, nowhere_above
+from airfield_board.configuration.model import Limit, PressureAltitudeTable, WeightTable
+from airfield_board.units import EQUAL, UNIT_WORDS
 
 NONE = "none"
 TAKEN_OUT = "taken out"
@@ -34,9 +33,9 @@ def aspect_text(limits: Sequence[Limit], aspect: Aspect) -> str:
         case Aspect.LIMIT:
             return "; ".join(_once(_limit_text(limit) + _dates_text(limit) for limit in telling))
         case Aspect.NEAR_BAND:
-            return _apart(telling, [f"{number_text(limit.near_band)} {_UNITS[limit.unit]}" for limit in telling])
+            return _apart(telling, [f"{number_text(limit.near_band)} {UNIT_WORDS[limit.unit]}" for limit in telling])
         case Aspect.DEADBAND:
-            return _apart(telling, [f"{number_text(limit.deadband)} {_UNITS[limit.unit]}" for limit in telling])
+            return _apart(telling, [f"{number_text(limit.deadband)} {UNIT_WORDS[limit.unit]}" for limit in telling])
         case Aspect.OFF_DELAY:
             return _apart(telling, [f"{number_text(limit.off_delay_min)} min" for limit in telling])
     return _apart(telling, ["guarded" if limit.guarded else "simple" for limit in telling])
@@ -69,7 +68,7 @@ def _apart(limits: Sequence[Limit], texts: Sequence[str]) -> str:
 
 
 def _limit_text(limit: Limit) -> str:
-    unit = _UNITS[limit.unit]
+    unit = UNIT_WORDS[limit.unit]
     match limit.value:
         case WeightTable() as table:
             points = zip(table.limits, table.weights, strict=True)

@@ -5,10 +5,11 @@ from dataclasses import dataclass
 import numpy as np
 from numpy.typing import NDArray
 
-from airfield_board.limits.in_force import EQUAL, Standing
+from airfield_board.limits.in_force import Standing
 from airfield_board.limits.kinds import KINDS
 from airfield_board.limits.states import State
 from airfield_board.observations.conditions import ConditionsTable
+from airfield_board.units import EQUAL
 
 _FEW_ROWS = 8
 """Below this many rows looking ahead with arrays costs more than it saves."""

@@ -22,12 +22,9 @@ from airfield_board.configuration.model import (
     Unit,
     WeightTable,
 )
-from airfield_board.units import MINUTE_US, lb_from_kg
+from airfield_board.units import EQUAL, MINUTE_US, lb_from_kg
 
 WeightUnit: TypeAlias = Literal["lb", "kg"]
-
-EQUAL = 1e-6
-"""A difference smaller than this, in the limit's unit, counts as equal."""
 
 
 @dataclass(frozen=True, slots=True, kw_only=True, order=True)

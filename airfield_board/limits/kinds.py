@@ -16,7 +16,7 @@ from airfield_board.observations.conditions import (
     hold_temperature_for_isa_deviation,
     hold_temperature_for_temperature,
 )
-from airfield_board.units import c_from_f, f_from_c, ft_from_m, m_from_ft
+from airfield_board.units import c_difference_from_f, c_from_f, f_difference_from_c, f_from_c, ft_from_m, m_from_ft
 
 Array = NDArray[np.float64]
 
@@ -94,7 +94,7 @@ class TemperatureKind:
     def values(self, conditions: ConditionsTable, unit: Unit) -> tuple[Array, Array]:
         """Value and expanded uncertainty [°C or °F], each of shape (n,)."""
         if unit == "f":
-            return f_from_c(conditions.temperature_c), conditions.temperature_uncertainty_c * 1.8
+            return f_from_c(conditions.temperature_c), f_difference_from_c(conditions.temperature_uncertainty_c)
         return conditions.temperature_c, conditions.temperature_uncertainty_c
 
     def hold_temperature_c(self, limits: Array, unit: Unit, air: Air) -> Array:
@@ -107,12 +107,16 @@ class IsaDeviationKind:
 
     def values(self, conditions: ConditionsTable, unit: Unit) -> tuple[Array, Array]:
         """Value and expanded uncertainty [°C, or °F as a difference], each of shape (n,)."""
-        scale = 1.8 if unit == "f" else 1.0
-        return conditions.isa_deviation_c * scale, conditions.isa_deviation_uncertainty_c * scale
+        if unit == "f":
+            return (
+                f_difference_from_c(conditions.isa_deviation_c),
+                f_difference_from_c(conditions.isa_deviation_uncertainty_c),
+            )
+        return conditions.isa_deviation_c, conditions.isa_deviation_uncertainty_c
 
     def hold_temperature_c(self, limits: Array, unit: Unit, air: Air) -> Array:
         """Temperatures above which limits would be exceeded [°C], shape (n,)."""
-        limits_c = limits / 1.8 if unit == "f" else limits
+        limits_c = c_difference_from_f(limits) if unit == "f" else limits
         return hold_temperature_for_isa_deviation(limits_c, air.altimeter_hpa, air.elevation_m, air.guard)
 
 

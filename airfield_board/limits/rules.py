@@ -23,11 +23,11 @@ from airfield_board.limits.comparison import (
     single,
     stays,
 )
-from airfield_board.limits.in_force import EQUAL, Schedule, Standing
+from airfield_board.limits.in_force import Schedule, Standing
 from airfield_board.limits.memory import Episode, JudgedRows, LimitChange, LimitMemory
 from airfield_board.limits.states import State
 from airfield_board.observations.conditions import ConditionsTable
-from airfield_board.units import HOUR_US, MINUTE_US
+from airfield_board.units import EQUAL, HOUR_US, MINUTE_US
 
 __all__ = ["Episode", "JudgedRows", "LimitChange", "LimitJudge", "LimitMemory", "compared"]
 

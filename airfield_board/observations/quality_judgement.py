@@ -10,7 +10,7 @@ from typing import Literal, NamedTuple
 
 from airfield_board.observations.observation import NO_TIME_US, DewpointUse, Verdict
 from airfield_board.observations.quality_memory import LONGEST_GAP_US, Dewpoint, Past, QualityMemory, Reading
-from airfield_board.units import HOUR_US, MINUTE_US
+from airfield_board.units import EQUAL, HOUR_US, MINUTE_US
 
 LOWEST_ALTIMETER_HPA, HIGHEST_ALTIMETER_HPA = 850.0, 1085.0
 LOWEST_TEMPERATURE_C, HIGHEST_TEMPERATURE_C = -60.0, 60.0
@@ -28,8 +28,6 @@ CONFIRMATION_US = MINUTE_US
 
 _NO_DEWPOINT = "no dew point: none in this row and none observed in the 24 h before"
 _SAME_FOR = "temperature and altimeter setting the same to the last digit for"
-_EQUAL = 0.000001
-"""A difference under it counts as none, so that a decimal fraction's binary rounding decides nothing."""
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -160,7 +158,7 @@ def judge_late(past: Past, row: Row, rules: QualityRules, now_us: int) -> Judgem
 
 
 def _over(value: float, greatest: float) -> bool:
-    return value - greatest >= _EQUAL
+    return value - greatest >= EQUAL
 
 
 def _outside(value: float, lowest: float, highest: float) -> bool:

@@ -5,12 +5,10 @@ from dataclasses import dataclass, replace
 from typing import NamedTuple
 
 from airfield_board.observations.observation import NO_TIME_US
-from airfield_board.units import HOUR_US
+from airfield_board.units import DAY_US, HOUR_US
 
 LONGEST_GAP_US = 3 * HOUR_US
 """Beyond it a reading is not compared with, a dew point not carried, a count of same values starts anew."""
-
-DAY_US = 24 * HOUR_US
 
 
 class Reading(NamedTuple):

@@ -26,7 +26,8 @@ from airfield_board.observations.quality_judgement import (
     TEMPERATURE_STEP_C,
     QualityRules,
 )
-from airfield_board.observations.quality_memory import DAY_US, LONGEST_GAP_US, Dewpoint, Past, Reading
+from airfield_board.observations.quality_memory import LONGEST_GAP_US, Dewpoint, Past, Reading
+from airfield_board.units import DAY_US
 
 Places = NDArray[np.int64]
 Flags = NDArray[np.bool_]

@@ -8,6 +8,7 @@ from typing import Any, NamedTuple, TypeAlias
 import numpy as np
 
 from airfield_board.clock import time_from_us
+from airfield_board.configuration.differences import difference_in_unit
 from airfield_board.configuration.model import Aircraft, Operation, Quantity, Unit
 from airfield_board.limits.in_force import LimitKey, Standing, weight_in_lb
 from airfield_board.limits.kinds import KINDS, Air, axis_ft
@@ -16,7 +17,7 @@ from airfield_board.limits.states import State
 from airfield_board.observations.conditions import ConditionsTable, StandardUncertainties
 from airfield_board.session.board_state import Clearing, LimitLine, Span
 from airfield_board.session.judge import CurrentRow, Judge
-from airfield_board.units import HOUR_US, MINUTE_US, ft_from_m
+from airfield_board.units import HOUR_US, MINUTE_US
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -163,7 +164,7 @@ class LimitLines:
 def _place_ft(standing: Standing, air: TrustedAir, place: _Place, margin: float) -> float | None:
     if place.axis_ft is not None or standing.quantity is not Quantity.PRESSURE_ALTITUDE:
         return place.axis_ft
-    return float(air.conditions.density_altitude_ft[0]) + (margin if standing.unit == "ft" else ft_from_m(margin))
+    return float(air.conditions.density_altitude_ft[0]) + difference_in_unit(margin, standing.unit, "ft")
 
 
 def _group(standing: Standing) -> _Group:
@@ -244,7 +245,7 @@ def _gone_by(standing: Standing, air: TrustedAir, margin: float) -> datetime | N
     """When the present rate will have used up the margin, where that is before the reading goes stale."""
     if standing.quantity is not Quantity.DENSITY_ALTITUDE or air.rate_ft_per_h is None or air.rate_ft_per_h <= 0:
         return None
-    margin_ft = margin if standing.unit == "ft" else ft_from_m(margin)
+    margin_ft = difference_in_unit(margin, standing.unit, "ft")
     if margin_ft < 0:
         return None
     at_us = air.row.time_us + margin_ft / air.rate_ft_per_h * HOUR_US

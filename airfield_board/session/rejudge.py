@@ -10,7 +10,6 @@ from airfield_board.configuration.fleet import fleet_from_text
 from airfield_board.configuration.profile import profile_from_text
 from airfield_board.errors import FileFaults
 from airfield_board.history.records import Json, RecordKind, StoredRecord
-from airfield_board.limits.in_force import EQUAL
 from airfield_board.limits.rules import Episode, LimitChange
 from airfield_board.observations.observation import Verdict
 from airfield_board.session.judge import Judge
@@ -23,6 +22,7 @@ from airfield_board.session.records import (
 )
 from airfield_board.session.settings import Airfield, Settings
 from airfield_board.session.status import CURRENT, PAST
+from airfield_board.units import EQUAL
 
 _MOST_DIFFERENCES = 100
 

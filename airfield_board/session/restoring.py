@@ -22,9 +22,9 @@ from airfield_board.session.records import TYPED_IN
 from airfield_board.session.rejudge import SettingsReader, judge_anew
 from airfield_board.session.settings import Airfield, Settings
 from airfield_board.session.status import CURRENT, PAST, STATUS_KEPT_US, RowChange, StatusLog
-from airfield_board.units import HOUR_US
+from airfield_board.units import DAY_US
 
-_LONGEST_READ_BACK_US = 31 * 24 * HOUR_US
+_LONGEST_READ_BACK_US = 31 * DAY_US
 _UNUSED = (Verdict.SUSPECT, Verdict.REJECTED, Verdict.SUPERSEDED)
 
 

@@ -10,6 +10,7 @@ from airfield_board.clock import local_day
 from airfield_board.configuration.model import Fleet, Profile
 from airfield_board.configuration.profile import load_airfield
 from airfield_board.configuration.reload import compare_and_merge
+from airfield_board.configuration.yaml_reader import LARGEST_FILE_BYTES
 from airfield_board.errors import FileFaults
 from airfield_board.session.board_state import SettingChange
 
@@ -117,9 +118,6 @@ def _content(path: Path) -> bytes | None:
     """Return a settings file's bytes, as far as they are worth comparing; None where it cannot be read."""
     try:
         with path.open("rb") as file:
-            return file.read(_LARGEST + 1)
+            return file.read(LARGEST_FILE_BYTES + 1)
     except OSError:
         return None
-
-
-_LARGEST = 4 * 1024 * 1024

@@ -13,7 +13,7 @@ from airfield_board.limits.rules import LimitChange
 from airfield_board.limits.states import State, worst
 from airfield_board.session.board_state import StatusChange
 from airfield_board.session.judge import Judge
-from airfield_board.units import HOUR_US
+from airfield_board.units import DAY_US
 
 RowKey: TypeAlias = tuple[str, str]
 """Aircraft and operation."""
@@ -21,7 +21,7 @@ RowKey: TypeAlias = tuple[str, str]
 CURRENT, PAST = "operation", "past"
 """Scopes of a change of a row: one that somebody may have to acknowledge, and one that later rows had overtaken."""
 
-STATUS_KEPT_US = 24 * HOUR_US
+STATUS_KEPT_US = DAY_US
 """How much longer changes are kept than they are shown: the clock, or the airfield's time zone, may be set back."""
 
 _ASKING = (State.HOLD, State.NO_DATA)

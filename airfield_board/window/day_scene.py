@@ -1,18 +1,16 @@
 """What the day plot shows, in a form that any painter can take; no pyqtgraph here, so that the rows need not wait."""
 
 from dataclasses import dataclass
-from datetime import datetime, timedelta
+from datetime import datetime
 
 import numpy as np
 from numpy.typing import NDArray
 
 from airfield_board.clock import us_from_time
 from airfield_board.limits.states import State
+from airfield_board.observations.quality_memory import LONGEST_GAP_US
 from airfield_board.session.board_state import DayCurve, Span
 from airfield_board.window.axes import AltitudeAxis, HourMark, TimeAxis
-
-GAP_FROM = timedelta(hours=3)
-"""A pause longer than this breaks the curve (contract, section 4: runs start anew after so long)."""
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -82,7 +80,7 @@ def stretches_of(curve: DayCurve, axis: TimeAxis) -> list[Stretch]:
         return []
     value, spread = curve.density_altitude_ft[usable], curve.uncertainty_ft[usable]
     seconds = (time_us - us_from_time(axis.start)) / 1e6
-    breaks = np.flatnonzero(np.diff(seconds) > GAP_FROM.total_seconds()) + 1
+    breaks = np.flatnonzero(np.diff(time_us) > LONGEST_GAP_US) + 1
     px_per_s = (axis.right_px - axis.left_px) / (axis.end - axis.start).total_seconds()
     parts = []
     for piece in np.split(np.arange(len(seconds)), breaks):

@@ -9,9 +9,9 @@ from datetime import UTC, datetime, timedelta
 from typing import Literal
 from zoneinfo import ZoneInfo
 
+from airfield_board.observations.formats.values import plain_number
 from airfield_board.observations.quality_judgement import (
     DEWPOINT_EXCESS_C,
-    FUTURE_US,
     HIGHEST_ALTIMETER_HPA,
     HIGHEST_DEWPOINT_C,
     HIGHEST_TEMPERATURE_C,
@@ -22,12 +22,11 @@ from airfield_board.observations.quality_judgement import (
 from airfield_board.session.board_state import AirfieldLine
 from airfield_board.units import c_from_f, hpa_from_inhg
 from airfield_board.window import formatting
+from airfield_board.window.reading import FUTURE_TOLERANCE
 
-_PLAIN_NUMBER = re.compile(r"[+-]?[0-9]{1,6}(\.[0-9]{1,6})?")
 _TIME_FORM = "%Y-%m-%d %H:%M"
 _PRESSURES = ("hpa", "inhg")
 _INITIALS = re.compile(r"[^\W_][\w .'-]{0,19}")
-_FUTURE_TOLERANCE = timedelta(microseconds=FUTURE_US)
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -120,10 +119,10 @@ def _read_number(what: str, text: str, unit: Literal["inhg", "hpa", "c", "f"], p
     if not plain:
         problems.append(f"The {what} is missing ({words}).")
         return None
-    if not _PLAIN_NUMBER.fullmatch(plain):
+    value = plain_number(plain)
+    if value is None:
         problems.append(f"The {what} must be a plain number in {words}, with a point before decimals: not “{text}”.")
         return None
-    value = float(plain)
     if unit == "inhg":
         return hpa_from_inhg(value)
     return c_from_f(value) if unit == "f" else value
@@ -161,7 +160,7 @@ def _read_time(text: str, zone: ZoneInfo, opened: datetime, now: datetime, probl
     if when.astimezone(zone).replace(tzinfo=None) != local.replace(tzinfo=None):
         problems.append("The clock change skips this local time.")
         return None
-    if when - now > _FUTURE_TOLERANCE:
+    if when - now > FUTURE_TOLERANCE:
         problems.append("The time lies in the future.")
         return None
     return when

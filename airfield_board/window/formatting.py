@@ -18,19 +18,17 @@ from airfield_board.session.board_state import (
     LimitLine,
     OperationLine,
 )
-from airfield_board.units import f_from_c, ft_from_m, inhg_from_hpa, m_from_ft
+from airfield_board.units import EQUAL, f_difference_from_c, f_from_c, ft_from_m, inhg_from_hpa, m_from_ft
+from airfield_board.units import UNIT_WORDS as UNIT_WORDS
 from airfield_board.window.reading import Cause
 
 MINUS = "\N{MINUS SIGN}"
 DASH = "\N{EM DASH}"
 CAUTION = "Limits of the air only: not runway, wind, load or surface. HOLD: do not begin."
 UNIVERSAL = ZoneInfo("UTC")
-EQUAL = Decimal("0.000001")
-"""A difference under this counts as none (contract, section 2)."""
-
-UNIT_WORDS: dict[str, str] = {"ft": "ft", "m": "m", "c": "°C", "f": "°F", "hpa": "hPa", "inhg": "inHg"}
+_EQUAL = Decimal(str(EQUAL))
 STEP: dict[str, Decimal] = {"ft": Decimal(10), "m": Decimal(5), "c": Decimal("0.1"), "f": Decimal("0.1")}
-"""Steps of rounding on screens: 10 ft (contract, section 2); a metre's 5 and a degree's tenth are our choice."""
+"""Steps of rounding on screens; those of metres and degrees are about as fine as 10 ft."""
 WEIGHT_STEP: dict[str, Decimal] = {"lb": Decimal(10), "kg": Decimal(5), "": Decimal(10)}
 STEADY_FT_PER_H = 50.0
 
@@ -52,13 +50,13 @@ def _steps(value: float, step: Decimal, rounding: str) -> Decimal:
 def rounded_up(value: float, step: Decimal) -> Decimal:
     """Round toward plus infinity to whole steps; what lies under `EQUAL` above a step counts as the step."""
     nearest = _steps(value, step, ROUND_HALF_EVEN)
-    return nearest if abs(Decimal(value) - nearest) < EQUAL else _steps(value, step, ROUND_CEILING)
+    return nearest if abs(Decimal(value) - nearest) < _EQUAL else _steps(value, step, ROUND_CEILING)
 
 
 def rounded_down(value: float, step: Decimal) -> Decimal:
     """Round toward minus infinity to whole steps; what lies under `EQUAL` below a step counts as the step."""
     nearest = _steps(value, step, ROUND_HALF_EVEN)
-    return nearest if abs(Decimal(value) - nearest) < EQUAL else _steps(value, step, ROUND_FLOOR)
+    return nearest if abs(Decimal(value) - nearest) < _EQUAL else _steps(value, step, ROUND_FLOOR)
 
 
 def number(value: Decimal | float, decimals: int = 0, *, sign: bool = False) -> str:
@@ -114,7 +112,7 @@ def temperature(value_c: float, unit: str) -> str:
 
 def deviation(value_c: float, unit: str) -> str:
     """Return a temperature difference to the nearest tenth, signed."""
-    return number(value_c if unit == "c" else value_c * 1.8, 1, sign=True)
+    return number(value_c if unit == "c" else f_difference_from_c(value_c), 1, sign=True)
 
 
 def hold_temperature(value_c: float, unit: str) -> str:

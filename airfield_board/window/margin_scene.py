@@ -8,14 +8,13 @@ import numpy as np
 from numpy.typing import NDArray
 
 from airfield_board.clock import us_from_time
+from airfield_board.configuration.differences import difference_in_unit, limit_in_unit
 from airfield_board.configuration.model import Quantity
 from airfield_board.limits.states import State
 from airfield_board.session.board_state import DayCurve, LimitLine, OperationLine
-from airfield_board.units import ft_from_m
-from airfield_board.window.axes import AltitudeAxis, HourMark, TimeAxis
+from airfield_board.window.axes import STEP_FT, AltitudeAxis, HourMark, TimeAxis
 from airfield_board.window.day_scene import Stretch
 
-STEP_FT = 500.0
 CHOSEN_AT_MOST = 8
 CHOSEN_FIRST = 6
 
@@ -73,12 +72,12 @@ def limit_ft(line: LimitLine) -> float | None:
     """Return the limit in feet; None where it is no altitude or not known."""
     if line.limit is None or line.unit not in ("ft", "m"):
         return None
-    return line.limit if line.unit == "ft" else ft_from_m(line.limit)
+    return limit_in_unit(line.limit, line.quantity, line.unit, "ft")
 
 
 def near_band_ft(line: LimitLine) -> float:
     """Return the near band in feet."""
-    return line.near_band if line.unit == "ft" else ft_from_m(line.near_band)
+    return difference_in_unit(line.near_band, line.unit, "ft")
 
 
 def line_of(row: OperationLine, stretches: Sequence[Stretch], axis: TimeAxis, now_ft: float | None) -> MarginLine:

@@ -10,10 +10,11 @@ from enum import Enum
 from zoneinfo import ZoneInfo
 
 from airfield_board.limits.states import State
+from airfield_board.observations.quality_judgement import FUTURE_US
 from airfield_board.session.board_state import BoardState, Conditions, Freshness, Mode, OperationLine
 
-FUTURE_TOLERANCE = timedelta(minutes=5)
-"""An observation may be so far ahead of the clock (contract, section 4)."""
+FUTURE_TOLERANCE = timedelta(microseconds=FUTURE_US)
+"""An observation may be so far ahead of the clock."""
 
 
 class Cause(Enum):

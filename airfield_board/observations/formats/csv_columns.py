@@ -11,7 +11,7 @@ import numpy as np
 from numpy.typing import NDArray
 
 from airfield_board.observations.formats.values import FIRST_YEAR, LAST_YEAR, LATEST_OFFSET_MIN
-from airfield_board.units import HOUR_US, MINUTE_US
+from airfield_board.units import DAY_US, HOUR_US, MINUTE_US, SECOND_US
 
 Bytes = NDArray[np.uint8]
 Places = NDArray[np.int64]
@@ -25,8 +25,6 @@ _NEWLINE, _RETURN, _NUL, _QUOTE, _COMMA, _SPACE = b'\n\r\0", '
 _PLUS, _MINUS, _POINT, _ZERO = b"+-.0"
 _MOST_SPACES = 3
 
-_DAY_US = 24 * HOUR_US
-_SECOND_US = 1_000_000
 _YEARS = np.arange(FIRST_YEAR, LAST_YEAR + 1)
 _LEAP = (_YEARS % 4 == 0) & ((_YEARS % 100 != 0) | (_YEARS % 400 == 0))
 _DAY_OF_YEAR_START = (np.datetime64("1900-01-01") + np.cumsum(np.append(0, 365 + _LEAP[:-1]))).astype(np.int64)
@@ -247,11 +245,11 @@ def _wall_times(signs: Bytes, *, has_seconds: bool) -> tuple[NDArray[np.int64], 
     leap = _LEAP[year].astype(np.intp)
     good &= (day >= 1) & (day <= _MONTH_DAYS[leap, month])
     days = _DAY_OF_YEAR_START[year] + _DAY_OF_MONTH_START[leap, month] + day - 1
-    time_us = days * _DAY_US + hour.astype(np.int64) * HOUR_US + minute.astype(np.int64) * MINUTE_US
+    time_us = days * DAY_US + hour.astype(np.int64) * HOUR_US + minute.astype(np.int64) * MINUTE_US
     if has_seconds:
         second = _two(digits, 17)
         good &= (digits[:, _SECONDS] <= 9).all(axis=1) & (signs[:, 16] == ord(":")) & (second <= 59)
-        time_us += second.astype(np.int64) * _SECOND_US
+        time_us += second.astype(np.int64) * SECOND_US
     return time_us, good
 
 

@@ -2,6 +2,7 @@
 
 import json
 import re
+from codecs import BOM_UTF8
 from collections.abc import Mapping
 
 from airfield_board.errors import FileFaults
@@ -17,7 +18,6 @@ from airfield_board.observations.formats.reading import (
 )
 from airfield_board.observations.observation import NO_TIME_US
 
-_BYTE_ORDER_MARK = b"\xef\xbb\xbf"
 _WHITE = re.compile(r"[ \t\r\n]*")
 
 
@@ -109,7 +109,7 @@ def is_array(head: bytes) -> bool:
 
 
 def _mark(content: bytes) -> bytes:
-    return _BYTE_ORDER_MARK if content.startswith(_BYTE_ORDER_MARK) else b""
+    return BOM_UTF8 if content.startswith(BOM_UTF8) else b""
 
 
 def _value(content: bytes) -> object:

@@ -10,10 +10,8 @@ from numpy.typing import NDArray
 
 from airfield_board.clock import time_from_us, us_from_time
 from airfield_board.observations.observation import NO_TIME_US
-from airfield_board.units import HOUR_US
+from airfield_board.units import DAY_US, HOUR_US, SECOND_US
 
-_SECOND_US = 1_000_000
-_DAY_US = 24 * HOUR_US
 _PROBE_US = 6 * HOUR_US
 
 
@@ -109,8 +107,8 @@ def _settle_double(
 
 def _offsets(wall_us: NDArray[np.int64], zone: ZoneInfo) -> tuple[NDArray[np.int64], NDArray[np.int64]]:
     """Return when stretches of one offset start, in UTC, and the offsets [us], around the given times."""
-    days = np.unique(wall_us // _DAY_US)
-    probes = np.unique((days[:, None] * _DAY_US + np.arange(-_DAY_US, 2 * _DAY_US + 1, _PROBE_US)).ravel()).tolist()
+    days = np.unique(wall_us // DAY_US)
+    probes = np.unique((days[:, None] * DAY_US + np.arange(-DAY_US, 2 * DAY_US + 1, _PROBE_US)).ravel()).tolist()
     found = [_offset_us(probe, zone) for probe in probes]
     starts = [probes[0]]
     offsets = [found[0]]
@@ -125,8 +123,8 @@ def _offsets(wall_us: NDArray[np.int64], zone: ZoneInfo) -> tuple[NDArray[np.int
 def _change_us(before_us: int, after_us: int, zone: ZoneInfo) -> int:
     """Find the clock change between two moments, to the second."""
     offset = _offset_us(before_us, zone)
-    while after_us - before_us > _SECOND_US:
-        middle = before_us + (after_us - before_us) // (2 * _SECOND_US) * _SECOND_US
+    while after_us - before_us > SECOND_US:
+        middle = before_us + (after_us - before_us) // (2 * SECOND_US) * SECOND_US
         if _offset_us(middle, zone) == offset:
             before_us = middle
         else:

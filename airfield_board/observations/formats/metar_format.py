@@ -7,6 +7,7 @@ FMH-1, Surface Weather Observations and Reports, chapter 12 (altimeter setting i
 """
 
 import re
+from codecs import BOM_UTF8
 from collections.abc import Iterator, Sequence
 from dataclasses import dataclass
 from datetime import UTC, date, datetime, timedelta
@@ -26,17 +27,15 @@ from airfield_board.observations.formats.reading import (
     shown,
 )
 from airfield_board.observations.observation import NO_TIME_US
-from airfield_board.units import HOUR_US, hpa_from_inhg
+from airfield_board.units import DAY_US, EQUAL, hpa_from_inhg
 
 AHEAD_OF_FILE = timedelta(hours=1)
 """A report may bear a time this much later than its file's and is still of this month: clocks differ, and reports are
 stamped with the hour they are issued for."""
 
 _MOST_APART_HPA = 1.5
-_SAME = 1e-6
 _WHOLE_DEGREE_C = 1.0
-_MONTH_APART_US = 15 * 24 * HOUR_US
-_BYTE_ORDER_MARK = b"\xef\xbb\xbf"
+_MONTH_APART_US = 15 * DAY_US
 
 _HEAD = re.compile(r"\s*(?:(?:METAR|SPECI)\s+)?(?:COR\s+)?([A-Z][A-Z0-9]{3})\s+([0-9]{6}Z)(?![^\s])")
 _NAMED_HEAD = re.compile(r"\s*(?:METAR|SPECI)\s+(?:COR\s+)?([A-Z][A-Z0-9]{3})(?![^\s])")
@@ -122,7 +121,7 @@ def read_metar(section: Section, rules: ReadingRules) -> ReadResult:
 def _pieces(section: Section) -> Iterator[_Piece]:
     """Cut a text at line ends and equals signs; the last piece, which may be empty, has neither."""
     content = section.content
-    at = len(_BYTE_ORDER_MARK) if not section.start and content.startswith(_BYTE_ORDER_MARK) else 0
+    at = len(BOM_UTF8) if not section.start and content.startswith(BOM_UTF8) else 0
     for mark in _END_OF_PIECE.finditer(content, at):
         yield _piece(content, at, mark.start(), ended=mark[0] == b"=")
         at = mark.end()
@@ -245,7 +244,7 @@ def _altimeter(groups: Sequence[str]) -> tuple[float, str]:
     both = by_inches + by_hectopascals
     if not both:
         return np.nan, "no altimeter setting"
-    if len(both) == 2 and abs(both[0] - both[1]) > _MOST_APART_HPA + _SAME:
+    if len(both) == 2 and abs(both[0] - both[1]) >= _MOST_APART_HPA + EQUAL:
         return np.nan, f"A{inches.pop()} and Q{hectopascals.pop()} are over {_MOST_APART_HPA} hPa apart"
     return both[0], ""
 
@@ -261,7 +260,7 @@ def _tenths(remarks: Sequence[str], temperature_c: float, dewpoint_c: float) -> 
     for group, match in found.items():
         finer_c = _in_tenths(match[1], match[2]), _in_tenths(match[3], match[4])
         if any(
-            abs(fine - whole) > _WHOLE_DEGREE_C + _SAME
+            abs(fine - whole) >= _WHOLE_DEGREE_C + EQUAL
             for fine, whole in zip(finer_c, (temperature_c, dewpoint_c), strict=True)
         ):
             return (np.nan, np.nan), f"{group} does not fit the temperature and dew point in whole degrees"

@@ -1,6 +1,7 @@
 """Which format a file is in, and reading it."""
 
 import csv
+from codecs import BOM_UTF8, BOM_UTF16_BE, BOM_UTF16_LE
 from collections.abc import Callable, Mapping
 
 from airfield_board.observations.formats.csv_format import read_csv
@@ -19,8 +20,7 @@ READERS: Mapping[Format, Callable[[Section, ReadingRules], ReadResult]] = {
 HEAD_BYTES = 65_536
 """How much of the beginning of a file tells its format."""
 
-_UTF_16_MARKS = (b"\xff\xfe", b"\xfe\xff")
-_UTF_8_MARK = b"\xef\xbb\xbf"
+_UTF_16_MARKS = (BOM_UTF16_LE, BOM_UTF16_BE)
 _FIRST_SIGNS = 4
 _SEPARATORS = ",;\t"
 
@@ -67,7 +67,7 @@ def recognise(head: bytes, rules: ReadingRules) -> Format:
     head = head[:HEAD_BYTES]
     if head.startswith(_UTF_16_MARKS):
         raise rules.fault("it is UTF-16 text; expected UTF-8, so save it as UTF-8")
-    text = head.removeprefix(_UTF_8_MARK).lstrip()
+    text = head.removeprefix(BOM_UTF8).lstrip()
     if not text:
         raise rules.fault("it is empty")
     first_line = text.partition(b"\n")[0].rstrip()

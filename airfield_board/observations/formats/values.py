@@ -3,7 +3,7 @@
 import re
 from datetime import date
 
-from airfield_board.units import HOUR_US, MINUTE_US
+from airfield_board.units import DAY_US, HOUR_US, MINUTE_US, SECOND_US
 
 FIRST_YEAR = 1900
 LAST_YEAR = 2199
@@ -12,8 +12,6 @@ LATEST_OFFSET_MIN = 14 * 60
 
 _LONGEST_NUMBER = 40
 _PLAIN_NUMBER = re.compile(r"[+-]?[0-9]+(?:\.[0-9]+)?")
-_DAY_US = 24 * HOUR_US
-_SECOND_US = 1_000_000
 _EPOCH_DAY = date(1970, 1, 1).toordinal()
 
 _FRACTION = r"(?:[.,](?P<fraction>[0-9]+))?"
@@ -67,7 +65,7 @@ def iso_time(text: str) -> tuple[int, bool] | None:
         days = date(year, month, day).toordinal() - _EPOCH_DAY
     except ValueError:
         return None
-    time_us = days * _DAY_US + hour * HOUR_US + minute * MINUTE_US + second * _SECOND_US + microsecond
+    time_us = days * DAY_US + hour * HOUR_US + minute * MINUTE_US + second * SECOND_US + microsecond
     if match["zone"] is None:
         return time_us, True
     if match["sign"] is None:
