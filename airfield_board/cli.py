@@ -191,8 +191,8 @@ def _compute(options: argparse.Namespace) -> int:
             raise UserError(f"--elevation-ft {options.elevation_ft:g}: no elevation of an airfield")
         elevation_m = m_from_ft(options.elevation_ft)
     read = read_file(options.file, time_zone="UTC", station=options.station, finished=True)
-    if options.out is not None and options.out.exists() and options.out.samefile(options.file):
-        raise UserError(f"{options.out}: these are the observations themselves; they are never written to")
+    if options.out is not None:
+        _require_not_observations(options.out, options.file)
     _say(f"{options.file}: {note}" for note in read.notes)
     computed = compute(read, elevation_m, us_from_time(datetime.now(UTC)))
     progress = _progress("rows written", len(computed.table))
@@ -202,6 +202,12 @@ def _compute(options: argparse.Namespace) -> int:
     else:
         _write_file(options.out, lambda out: write_csv(computed, out, progress))
     return DONE
+
+
+def _require_not_observations(out: Path, observations: Path) -> None:
+    same = out.resolve() == observations.resolve()
+    if same or (out.exists() and observations.exists() and out.samefile(observations)):
+        raise UserError(f"{out}: these are the observations themselves; they are never written to")
 
 
 def _write_file(path: Path, write: Callable[[TextIO], None]) -> None:
@@ -316,9 +322,12 @@ def _add_snapshot(commands: "argparse._SubParsersAction[argparse.ArgumentParser]
 
 
 def _snapshot(options: argparse.Namespace) -> int:
+    from airfield_board.configuration.profile import load_airfield
     from airfield_board.session.snapshot import snapshot_state
     from airfield_board.window.preflight import require_libraries
 
+    profile, _ = load_airfield(options.airfield)
+    _require_not_observations(options.out, profile.observations.file)
     _require_free_or_png(options.out)
     state, notes = snapshot_state(options.airfield, options.at, datetime.now(UTC))
     _say(notes)
@@ -338,7 +347,7 @@ def _snapshot(options: argparse.Namespace) -> int:
 
 
 def _require_free_or_png(path: Path) -> None:
-    """Refuse to paint over a file that is no picture: it could be the observations."""
+    """Refuse to paint over a file that is no picture: it could be the settings or another record."""
     try:
         with path.open("rb") as file:
             begins = file.read(len(_PNG))

@@ -258,8 +258,23 @@ def test_observations_are_never_written_over(field: Field, capsys: pytest.Captur
     assert main(["compute", str(field.folder / "none.csv"), "--out", str(field.observations)]) == WRONG_USE
     assert "no such file" in capsys.readouterr().err
     assert main(["snapshot", "--airfield", str(field.profile), "--out", str(field.observations)]) == WRONG_USE
+    assert "never written to" in capsys.readouterr().err
+    assert main(["snapshot", "--airfield", str(field.profile), "--out", str(field.fleet)]) == WRONG_USE
     assert "no PNG picture" in capsys.readouterr().err
     assert field.observations.read_bytes() == before
+
+
+def test_no_picture_takes_the_place_of_observations_that_are_yet_to_come(
+    field: Field, capsys: pytest.CaptureFixture[str]
+) -> None:
+    snapshot = ["snapshot", "--airfield", str(field.profile), "--out", str(field.observations)]
+    field.observations.write_bytes(b"")
+    assert main(snapshot) == WRONG_USE
+    assert field.observations.read_bytes() == b""
+    field.observations.unlink()
+    assert main(snapshot) == WRONG_USE
+    assert not field.observations.exists()
+    assert capsys.readouterr().err.count("never written to") == 2
 
 
 def test_schemas_are_printed(capsys: pytest.CaptureFixture[str]) -> None:
