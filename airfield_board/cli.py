@@ -13,8 +13,8 @@ from datetime import UTC, datetime
 from pathlib import Path
 from typing import TYPE_CHECKING, TextIO
 
-from airfield_board import __version__
-from airfield_board.errors import UserError
+from airfield_board import ADVISES, __version__
+from airfield_board.errors import UserError, reason_of
 
 if TYPE_CHECKING:
     from airfield_board.session.replaying import Replay
@@ -22,7 +22,6 @@ if TYPE_CHECKING:
 DONE, NO, WRONG_USE = 0, 1, 2
 _PNG = b"\x89PNG\r\n\x1a\n"
 """How every PNG file begins (ISO/IEC 15948, 5.2)."""
-_ADVISES = "Airfield Board advises; the flight manual, local orders and the licensed people on duty decide."
 
 
 def main(arguments: Sequence[str] | None = None) -> int:
@@ -58,7 +57,7 @@ def _parser() -> argparse.ArgumentParser:
     parser = argparse.ArgumentParser(
         prog="airfield-board",
         description="Which types may depart now, by density altitude. Without a command it opens the window.",
-        epilog=_ADVISES,
+        epilog=ADVISES,
         allow_abbrev=False,
     )
     parser.add_argument("--version", action="version", version=f"Airfield Board {__version__}")
@@ -84,7 +83,7 @@ def _command(
     run: Callable[[argparse.Namespace], int],
     tells: str,
 ) -> argparse.ArgumentParser:
-    parser = commands.add_parser(name, help=tells, description=tells, epilog=_ADVISES, allow_abbrev=False)
+    parser = commands.add_parser(name, help=tells, description=tells, epilog=ADVISES, allow_abbrev=False)
     parser.set_defaults(run=run)
     return parser
 
@@ -215,7 +214,7 @@ def _write_file(path: Path, write: Callable[[TextIO], None]) -> None:
         with path.open("w", encoding="utf-8", newline="") as out:
             write(out)
     except OSError as error:
-        raise UserError(f"{path}: {error.strerror or error}") from error
+        raise UserError(f"{path}: {reason_of(error)}") from error
 
 
 # -- replay
@@ -341,7 +340,7 @@ def _snapshot(options: argparse.Namespace) -> int:
     try:
         save_page(options.out, state, state.assessed_at, page=page, size_px=options.size, scheme=options.scheme)
     except OSError as error:
-        raise UserError(f"{options.out}: {error.strerror or error}") from error
+        raise UserError(f"{options.out}: {reason_of(error)}") from error
     application.processEvents()
     return DONE
 
@@ -414,7 +413,7 @@ def _output() -> Iterator[TextIO]:
             os.dup2(os.open(os.devnull, os.O_WRONLY), sys.stdout.fileno())
         if isinstance(error, BrokenPipeError):
             raise
-        raise UserError(f"The output cannot be written: {error.strerror or error}") from error
+        raise UserError(f"The output cannot be written: {reason_of(error)}") from error
 
 
 def _progress(words: str, of: int | None) -> Callable[[int], None] | None:

@@ -12,7 +12,8 @@ from zoneinfo import ZoneInfo, ZoneInfoNotFoundError, available_timezones
 
 from pydantic import AfterValidator, BaseModel, ConfigDict, Field, WithJsonSchema
 
-from airfield_board.configuration.wording import shown, suggestion
+from airfield_board.configuration.wording import suggestion
+from airfield_board.errors import shown
 
 _INVISIBLE = {"Cc", "Cf", "Cs", "Zl", "Zp"}
 

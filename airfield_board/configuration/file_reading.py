@@ -8,7 +8,7 @@ from pathlib import Path
 
 from airfield_board.configuration.yaml_nodes import Document, Mapping, Scalar
 from airfield_board.configuration.yaml_reader import LARGEST_FILE_BYTES
-from airfield_board.errors import Fault, FileFaults
+from airfield_board.errors import Fault, FileFaults, reason_of
 
 _TRIES = 3
 
@@ -47,7 +47,7 @@ def read_settings_file(path: Path) -> bytes:
     except PermissionError as error:
         raise _unreadable(path, "this user may not read the file") from error
     except (OSError, ValueError) as error:
-        reason = error.strerror if isinstance(error, OSError) and error.strerror else str(error)
+        reason = reason_of(error) if isinstance(error, OSError) else str(error)
         raise _unreadable(path, f"the file cannot be read ({reason})") from error
     raise _unreadable(path, "the file is being written just now; it can be read once that is done")
 

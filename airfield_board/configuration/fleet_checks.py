@@ -7,9 +7,9 @@ from itertools import pairwise
 from airfield_board.configuration.fields import HEAVIEST, PRESSURE_ALTITUDES_FT
 from airfield_board.configuration.file_reading import given_twice, number_under, section_under, text_under
 from airfield_board.configuration.model import Quantity, Unit
-from airfield_board.configuration.wording import listed, shown
+from airfield_board.configuration.wording import listed
 from airfield_board.configuration.yaml_nodes import Document, Entry, Mapping, Scalar, Sequence, plain_number
-from airfield_board.errors import Fault
+from airfield_board.errors import Fault, shown
 
 LIMIT_KEYS: dict[str, tuple[Quantity, Unit]] = {
     "max_density_altitude_ft": (Quantity.DENSITY_ALTITUDE, "ft"),

@@ -7,9 +7,9 @@ from typing import Any, TypeVar, get_args
 from pydantic import BaseModel, ValidationError
 
 from airfield_board.configuration.file_models import NUMBER_TAG, TABLE_TAG
-from airfield_board.configuration.wording import listed, shown, suggestion
+from airfield_board.configuration.wording import listed, suggestion
 from airfield_board.configuration.yaml_nodes import Document, Node, NodePath, Refused, Scalar, Sequence
-from airfield_board.errors import Fault
+from airfield_board.errors import Fault, shown
 
 FileModel = TypeVar("FileModel", bound=BaseModel)
 

@@ -1,31 +1,9 @@
-"""Words for what is wrong in a settings file: values made safe to print, and suggestions for misspelt ones."""
+"""Words for what is wrong in a settings file: suggestions for what is misspelt, and lists."""
 
 import difflib
-import unicodedata
 from collections.abc import Iterable
 
 _LONGEST = 60
-
-
-def shown(text: str) -> str:
-    """Return a text from a file as a message may show it.
-
-    Parameters
-    ----------
-    text
-        Any text.
-
-    Returns
-    -------
-    str
-        In quotes, at most 60 characters of it, control characters and invisible ones as their codes.
-    """
-    cut = text[:_LONGEST]
-    safe = "".join(
-        f"<U+{ord(character):04X}>" if unicodedata.category(character)[0] in "CZ" and character != " " else character
-        for character in cut
-    )
-    return f"'{safe}…'" if len(text) > _LONGEST else f"'{safe}'"
 
 
 def suggestion(written: str, known: Iterable[str]) -> str:

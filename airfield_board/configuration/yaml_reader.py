@@ -11,9 +11,8 @@ from typing import Any
 
 import yaml
 
-from airfield_board.configuration.wording import shown
 from airfield_board.configuration.yaml_nodes import Document, Entry, Mapping, Node, Refused, Scalar, Sequence
-from airfield_board.errors import Fault
+from airfield_board.errors import Fault, shown
 
 LARGEST_FILE_BYTES = 1024 * 1024
 _DEEPEST = 20

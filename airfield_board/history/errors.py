@@ -2,7 +2,7 @@
 
 import sqlite3
 
-from airfield_board.errors import UserError
+from airfield_board.errors import UserError, reason_of
 
 
 class NotAHistory(UserError):
@@ -51,7 +51,7 @@ def plain_reason(error: Exception) -> str:
     if isinstance(error, UnicodeDecodeError):
         return "the file is damaged"
     if isinstance(error, OSError):
-        return error.strerror or str(error)
+        return reason_of(error)
     code = primary_code(error) if isinstance(error, sqlite3.Error) else None
     plain = None if code is None else _PLAIN_REASONS.get(code)
     return f"{plain} ({error})" if plain else str(error)

@@ -14,7 +14,7 @@ from datetime import datetime
 from pathlib import Path
 
 from airfield_board.clock import iso_utc
-from airfield_board.errors import UserError
+from airfield_board.errors import UserError, reason_of
 from airfield_board.history.errors import HistoryLocked
 
 if sys.platform == "win32":
@@ -116,7 +116,7 @@ class RecorderLock:
         try:
             handle = os.open(lock_path(history), os.O_RDWR | os.O_CREAT, 0o666)
         except OSError as error:
-            raise UserError(f"{history}: cannot record here: {error.strerror}: {lock_path(history)}") from error
+            raise UserError(f"{history}: cannot record here: {reason_of(error)}: {lock_path(history)}") from error
         # A reader that looks whether anybody records holds the lock for a moment: that is no recorder.
         for _ in range(_ATTEMPTS):
             if _try_lock(handle):

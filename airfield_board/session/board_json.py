@@ -3,6 +3,7 @@
 from collections.abc import Mapping
 from datetime import datetime
 
+from airfield_board import ADVISES
 from airfield_board.clock import iso_utc, time_from_us
 from airfield_board.history.records import Json
 from airfield_board.limits.rules import Episode, LimitChange
@@ -35,7 +36,7 @@ def board_json(state: BoardState) -> dict[str, Json]:
         "observation": _observation(state.observation),
         "conditions": None if state.conditions is None else _conditions(state.conditions),
         "aircraft": [_aircraft(aircraft) for aircraft in state.aircraft],
-        "advice": "The flight manual, local orders and the licensed people on duty decide.",
+        "advice": ADVISES,
     }
 
 

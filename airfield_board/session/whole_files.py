@@ -7,7 +7,7 @@ import numpy as np
 
 from airfield_board.clock import us_from_time
 from airfield_board.configuration.model import Fleet, Profile
-from airfield_board.errors import UserError
+from airfield_board.errors import UserError, reason_of
 from airfield_board.observations.formats.reading import ReadingRules, ReadResult
 from airfield_board.observations.formats.recognise import read_table
 from airfield_board.observations.observation import ObservationTable
@@ -40,7 +40,7 @@ def read_file(path: Path, *, time_zone: str, station: str, finished: bool) -> Re
         content = path.read_bytes()
         changed = datetime.fromtimestamp(path.stat().st_mtime, tz=UTC)
     except OSError as error:
-        raise UserError(f"{path}: {error.strerror or error}") from error
+        raise UserError(f"{path}: {reason_of(error)}") from error
     rules = ReadingRules(time_zone=time_zone, file_time=changed, finished=finished, station=station, name=str(path))
     return read_table(content, rules)
 

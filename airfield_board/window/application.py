@@ -11,6 +11,7 @@ from types import TracebackType
 from typing import TYPE_CHECKING, TextIO
 from zoneinfo import ZoneInfo
 
+from airfield_board import ADVISES
 from airfield_board.clock import SystemClock
 from airfield_board.configuration.profile import load_airfield
 from airfield_board.errors import UserError
@@ -19,7 +20,6 @@ from airfield_board.session.recorder import Recorder
 from airfield_board.training.demo import DEMO_POLL_S, DEMO_SPEED, DemoDay, running_clock, stepped_day
 from airfield_board.window import formatting
 from airfield_board.window.preflight import Screen, choose_screen, find_screens, no_display_message, require_libraries
-from airfield_board.window.text_board import ADVISES
 
 if TYPE_CHECKING:
     from airfield_board.window.main_window import Feed, MainWindow

@@ -3,6 +3,7 @@
 from collections.abc import Sequence
 from zoneinfo import ZoneInfo
 
+from airfield_board import ADVISES as ADVISES
 from airfield_board.clock import time_from_us
 from airfield_board.configuration.model import Fleet, Profile
 from airfield_board.limits.rules import Episode, LimitChange
@@ -13,7 +14,6 @@ from airfield_board.session.replaying import Replay
 from airfield_board.session.status import labels_of
 from airfield_board.window import formatting
 
-ADVISES = "The program advises; the flight manual, local orders and the licensed people on duty decide."
 _UNUSED_SHOWN = 5
 
 

@@ -6,23 +6,8 @@ from airfield_board.configuration.fields import FileSection
 from airfield_board.configuration.looseness import Aspect
 from airfield_board.configuration.setting_texts import aspect_text, number_text
 from airfield_board.configuration.validation import validate
-from airfield_board.configuration.wording import listed, shown, suggestion
+from airfield_board.configuration.wording import listed, suggestion
 from airfield_board.configuration.yaml_reader import read_document
-
-
-@pytest.mark.parametrize(
-    ("text", "expected"),
-    [
-        ("plain", "'plain'"),
-        ("two words", "'two words'"),
-        ("a\nb\x1b\u202e\ud800", "'a<U+000A>b<U+001B><U+202E><U+D800>'"),
-        ("x" * 60, f"'{'x' * 60}'"),
-        ("x" * 61, f"'{'x' * 60}…'"),
-        ("", "''"),
-    ],
-)
-def test_a_text_from_a_file_is_safe_to_print(text: str, expected: str) -> None:
-    assert shown(text) == expected
 
 
 def test_the_nearest_known_word_is_suggested() -> None:

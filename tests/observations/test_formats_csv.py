@@ -69,27 +69,27 @@ def test_a_file_without_a_dew_point_column_gives_none() -> None:
         ("2026-07-14T17:23Z,29.92,20.0", "too few fields: 3, where the header has 4"),
         ("2026-07-14T17:23Z,29.92,20.0,10.0,1", "too many fields: 5, where the header has 4"),
         ("2026-07-14T17:23Z,29.92,20.0,10.0,", "too many fields: 5, where the header has 4"),
-        ("yesterday,29.92", 'too few fields: 2, where the header has 4; the time "yesterday" cannot be read; expected'),
+        ("yesterday,29.92", "too few fields: 2, where the header has 4; the time 'yesterday' cannot be read; expected"),
         ("2026-07-14T17:23Z,,20.0,10.0", "no altimeter setting"),
         ("2026-07-14T17:23Z,29.92,,10.0", "no temperature"),
         ("2026-07-14T17:23Z, ,\t,10.0", "no altimeter setting; no temperature"),
         (",29.92,20.0,10.0", "no time"),
-        ("2026-07-14T25:00Z,29.92,20.0,10.0", 'the time "2026-07-14T25:00Z" cannot be read; expected one like'),
-        ("2026-07-14T17:23Z,29.,20.0,10.0", 'the altimeter setting "29." is no plain decimal number'),
-        ("2026-07-14T17:23Z,.5,20.0,10.0", 'the altimeter setting ".5" is no plain decimal number'),
-        ("2026-07-14T17:23Z,2_9.92,20.0,10.0", 'the altimeter setting "2_9.92" is no plain decimal number'),
-        ("2026-07-14T17:23Z,29.92,nan,10.0", 'the temperature "nan" is no plain decimal number'),
-        ("2026-07-14T17:23Z,29.92,1e999,10.0", 'the temperature "1e999" is no plain decimal number'),
-        ("2026-07-14T17:23Z,29.92,２０.0,10.0", 'the temperature "２０.0" is no plain decimal number'),
-        ("2026-07-14T17:23Z,29.92,20.0,M05", 'the dew point "M05" is no plain decimal number'),
-        ("2026-07-14T17:23Z,29.92,20.0,-", 'the dew point "-" is no plain decimal number'),
-        ("2026-07-14T17:23Z,29.92,20.0.0,null", 'the temperature "20.0.0" is no plain decimal number; the dew point'),
+        ("2026-07-14T25:00Z,29.92,20.0,10.0", "the time '2026-07-14T25:00Z' cannot be read; expected one like"),
+        ("2026-07-14T17:23Z,29.,20.0,10.0", "the altimeter setting '29.' is no plain decimal number"),
+        ("2026-07-14T17:23Z,.5,20.0,10.0", "the altimeter setting '.5' is no plain decimal number"),
+        ("2026-07-14T17:23Z,2_9.92,20.0,10.0", "the altimeter setting '2_9.92' is no plain decimal number"),
+        ("2026-07-14T17:23Z,29.92,nan,10.0", "the temperature 'nan' is no plain decimal number"),
+        ("2026-07-14T17:23Z,29.92,1e999,10.0", "the temperature '1e999' is no plain decimal number"),
+        ("2026-07-14T17:23Z,29.92,２０.0,10.0", "the temperature '２０.0' is no plain decimal number"),
+        ("2026-07-14T17:23Z,29.92,20.0,M05", "the dew point 'M05' is no plain decimal number"),
+        ("2026-07-14T17:23Z,29.92,20.0,-", "the dew point '-' is no plain decimal number"),
+        ("2026-07-14T17:23Z,29.92,20.0.0,null", "the temperature '20.0.0' is no plain decimal number; the dew point"),
         ("2026-07-14T17:23Z,29.92,2\0.0,10.0", "the row contains NUL bytes"),
         ("\0\0\0\0", "the row contains NUL bytes"),
         ("2026-07-14T17:23Z,29.92\r,20.0,10.0", "a carriage return stands in the middle of the row"),
         ('2026-07-14T17:23Z,29.92,"20.0,10.0', "quotes do not match, or a field is too long"),
         ('2026-07-14T17:23Z,29.92,"20.0"1,10.0', "quotes do not match, or a field is too long"),
-        ('2026-07-14T17:23Z,29.92,2"0.0,10.0', 'the temperature "2"0.0" is no plain decimal number'),
+        ('2026-07-14T17:23Z,29.92,2"0.0,10.0', "the temperature '2\"0.0' is no plain decimal number"),
         ("time,altimeter_inhg,temperature_c,dewpoint_c", "the header again"),
     ],
 )
@@ -162,10 +162,10 @@ def test_a_header_alone_gives_no_rows() -> None:
 
 def test_unknown_columns_are_named_once() -> None:
     result = read("time,altimeter_hpa,temperature_c,wind_kt,,wind_kt\n2026-07-14T17:23Z,1013,20,5,,5\n")
-    assert result.notes == ('columns not known and ignored: "wind_kt", one without a name',)
+    assert result.notes == ("columns not known and ignored: 'wind_kt', one without a name",)
     assert result.table.faults == {}
     many = ",".join(f"extra_{number}" for number in range(25))
-    assert read(f"time,altimeter_hpa,temperature_c,{many}\n").notes[0].endswith('"extra_19" and 5 more')
+    assert read(f"time,altimeter_hpa,temperature_c,{many}\n").notes[0].endswith("'extra_19' and 5 more")
 
 
 @pytest.mark.parametrize(
@@ -184,13 +184,13 @@ def test_unknown_columns_are_named_once() -> None:
     ],
 )
 def test_a_misspelt_quantity_is_an_error_with_a_suggestion(name: str, suggestion: str) -> None:
-    expected = f'observations.txt:1: "{name.strip()}" is not a known name; did you mean {suggestion}?'
+    expected = f"observations.txt:1: '{name.strip()}' is not a known name; did you mean {suggestion}?"
     assert file_fault(f"time,altimeter_hpa,temperature_c,{name}\n") == expected
 
 
 @pytest.mark.parametrize("name", ["air_temperature_c", "setpoint_c", "station_pressure_hpa", "times", "wind_temp"])
 def test_a_column_that_only_resembles_a_quantity_is_ignored(name: str) -> None:
-    assert read(f"time,altimeter_hpa,temperature_c,{name}\n").notes == (f'columns not known and ignored: "{name}"',)
+    assert read(f"time,altimeter_hpa,temperature_c,{name}\n").notes == (f"columns not known and ignored: '{name}'",)
 
 
 @pytest.mark.parametrize(

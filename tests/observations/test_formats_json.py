@@ -67,7 +67,7 @@ def test_an_array_in_other_scripts_keeps_places() -> None:
     first = ROW.replace("}", ', "remark": "Böe, 風"}')
     result = read(f"[{first}, {LATER}]")
     assert list(result.table.raw) == [first, LATER]
-    assert result.notes == ('keys not known and ignored: "remark"',)
+    assert result.notes == ("keys not known and ignored: 'remark'",)
 
 
 def test_an_empty_array_has_no_rows() -> None:
@@ -95,15 +95,15 @@ def test_an_empty_dew_point_is_no_fault(none: str) -> None:
 @pytest.mark.parametrize(
     ("written", "fault"),
     [
-        ("NaN", 'the temperature "NaN" is no plain decimal number'),
-        ("-Infinity", 'the temperature "-Infinity" is no plain decimal number'),
-        ("1e999", 'the temperature "1e999" is no plain decimal number'),
-        ("3.05e1", 'the temperature "3.05e1" is no plain decimal number'),
-        ("9" * 5000, 'the temperature "99999'),
-        ('"30."', 'the temperature "30." is no plain decimal number'),
-        ("true", 'the temperature "true or false" is no plain decimal number'),
-        ("[30]", 'the temperature "an array" is no plain decimal number'),
-        ('{"value": 30}', 'the temperature "an object" is no plain decimal number'),
+        ("NaN", "the temperature 'NaN' is no plain decimal number"),
+        ("-Infinity", "the temperature '-Infinity' is no plain decimal number"),
+        ("1e999", "the temperature '1e999' is no plain decimal number"),
+        ("3.05e1", "the temperature '3.05e1' is no plain decimal number"),
+        ("9" * 5000, "the temperature '99999"),
+        ('"30."', "the temperature '30.' is no plain decimal number"),
+        ("true", "the temperature 'true or false' is no plain decimal number"),
+        ("[30]", "the temperature 'an array' is no plain decimal number"),
+        ('{"value": 30}', "the temperature 'an object' is no plain decimal number"),
         ("null", "no temperature"),
         ('""', "no temperature"),
         ("30,", "the line is no complete JSON object"),
@@ -115,7 +115,7 @@ def test_an_empty_dew_point_is_no_fault(none: str) -> None:
             '30, "temperature_f": 86',
             "the temperature is given twice in different units: temperature_c and temperature_f",
         ),
-        ('30, "dewpiont_c": 5', '"dewpiont_c" is not a known name; did you mean dewpoint_c?'),
+        ('30, "dewpiont_c": 5', "'dewpiont_c' is not a known name; did you mean dewpoint_c?"),
         ("[" * 100_000, "the line is no complete JSON object"),
         ('{"a":' * 100_000, "the line is no complete JSON object"),
     ],
@@ -135,7 +135,7 @@ def test_a_value_that_cannot_be_used_says_why(written: str, fault: str) -> None:
         ("{}", "no time; no altimeter setting; no temperature"),
         (ROW.replace('"2026-07-14T17:23:00Z"', "1784049780"), "the time is no text"),
         (ROW.replace('"2026-07-14T17:23:00Z"', "null"), "no time"),
-        (ROW.replace("2026-07-14T17:23:00Z", "noon"), 'the time "noon" cannot be read'),
+        (ROW.replace("2026-07-14T17:23:00Z", "noon"), "the time 'noon' cannot be read"),
         (ROW.replace("altimeter_hpa", "qnh"), "no altimeter setting"),
     ],
 )
@@ -153,7 +153,7 @@ def test_a_row_with_keys_that_cannot_be_used_keeps_its_time() -> None:
 
 def test_keys_that_no_object_can_be_read_by_are_an_error_of_the_file() -> None:
     text = f"{ROW}\n{LATER}\n".replace("dewpoint_c", "dewpont_c")
-    assert file_fault(text) == 'observations.txt: "dewpont_c" is not a known name; did you mean dewpoint_c?'
+    assert file_fault(text) == "observations.txt: 'dewpont_c' is not a known name; did you mean dewpoint_c?"
     assert "given twice in different units" in file_fault(f"[{ROW.replace('dewpoint_c', 'temperature_f')}]")
 
 

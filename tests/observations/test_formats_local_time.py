@@ -40,7 +40,7 @@ def test_a_time_that_the_clock_change_skips_is_rejected() -> None:
 
 def test_a_skipped_time_is_said_beside_what_else_is_wrong() -> None:
     result = read(HEADER + "2026-03-08T02:30,29.92,x,\n", time_zone=ZONE)
-    assert result.table.faults[0].startswith('the temperature "x" is no plain decimal number; the clock change skips')
+    assert result.table.faults[0].startswith("the temperature 'x' is no plain decimal number; the clock change skips")
 
 
 def test_doubled_times_are_of_the_second_pass_once_the_clock_ran_back() -> None:

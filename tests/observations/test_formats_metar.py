@@ -174,7 +174,7 @@ def test_several_reports_may_stand_on_a_line() -> None:
 def test_text_that_is_no_report_is_a_faulty_row() -> None:
     text = "ZZCM 141653Z 29/10 Q1013\nRMK T02940098\nZZCM 141753Z 30/10 Q1013=\nhello\n"
     assert temperatures(text) == [29.0, None, 30.0, None]
-    assert read(text).table.faults[1] == 'no METAR or SPECI report: "RMK T02940098"'
+    assert read(text).table.faults[1] == "no METAR or SPECI report: 'RMK T02940098'"
     assert read(text).table.time_us[1] == NO_TIME_US
 
 

@@ -2,7 +2,6 @@ import pytest
 from hypothesis import given
 from hypothesis import strategies as st
 
-from airfield_board.observations.formats.reading import shown
 from airfield_board.observations.formats.values import iso_time, plain_number
 from tests.observations.file_rows import us
 
@@ -101,9 +100,3 @@ def test_an_iso_time_without_an_offset_is_of_the_wall_clock() -> None:
 )
 def test_anything_else_is_no_time(text: str) -> None:
     assert iso_time(text) is None
-
-
-def test_text_for_a_message_is_short_and_harmless() -> None:
-    assert shown("29.9x") == '"29.9x"'
-    assert shown("a\0b\x1b\u202e") == r'"a\x00b\x1b\u202e"'
-    assert len(shown("x" * 500)) == 62

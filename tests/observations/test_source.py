@@ -122,7 +122,7 @@ def test_a_fault_of_the_program_itself_is_not_hidden(path: Path) -> None:
             "observations.csv: its lines end with a carriage return",
         ),
         (HEADER[:20].encode(), "observations.csv:1: the header, its first line, is not complete yet"),
-        (b"time,temprature_c\n", 'observations.csv:1: "temprature_c" is not a known name; did you mean temperature_c?'),
+        (b"time,temprature_c\n", "observations.csv:1: 'temprature_c' is not a known name; did you mean temperature_c?"),
         (b"[" + b" " * 100, "observations.csv:1: the JSON array is broken or not complete"),
         (HEADER.encode(), "observations.csv has no rows yet"),
     ],
@@ -137,7 +137,7 @@ def test_content_that_gives_no_rows_is_said(path: Path, content: bytes, message:
 def test_an_unknown_time_zone_is_said(path: Path) -> None:
     path.write_text(HEADER + ROW.format(1))
     reading = FileSource(path, SourceRules(time_zone="No/Where"), settling_s=0.0, patience_s=60.0).read(NOW)
-    assert reading.messages == ('there is no time zone "No/Where"; expected an IANA name',)
+    assert reading.messages == ("there is no time zone 'No/Where'; expected an IANA name",)
 
 
 # -- what is one
@@ -161,7 +161,7 @@ def test_a_good_file_is_read(path: Path, line_end: str, mark: str) -> None:
 
 def test_notes_come_with_the_rows(path: Path) -> None:
     path.write_text("time,altimeter_hpa,temperature_c,gust_kt\n")
-    assert look(path).notes == ('columns not known and ignored: "gust_kt"',)
+    assert look(path).notes == ("columns not known and ignored: 'gust_kt'",)
 
 
 def test_a_nul_byte_in_a_row_is_a_fault_of_that_row_only(path: Path) -> None:

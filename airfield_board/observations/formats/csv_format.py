@@ -6,6 +6,7 @@ from dataclasses import dataclass
 import numpy as np
 from numpy.typing import NDArray
 
+from airfield_board.errors import shown
 from airfield_board.observations.formats.csv_columns import (
     PADDING,
     CsvLayout,
@@ -35,7 +36,6 @@ from airfield_board.observations.formats.reading import (
     Section,
     joined,
     result_of,
-    shown,
     split_csv,
 )
 from airfield_board.observations.observation import NO_TIME_US

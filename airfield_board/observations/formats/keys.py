@@ -7,7 +7,8 @@ from typing import Literal, NamedTuple, Protocol
 
 import numpy as np
 
-from airfield_board.observations.formats.reading import ReadRow, joined, shown
+from airfield_board.errors import shown
+from airfield_board.observations.formats.reading import ReadRow, joined
 from airfield_board.observations.formats.values import iso_time, plain_number
 from airfield_board.observations.observation import NO_TIME_US
 from airfield_board.units import Number, c_from_f, hpa_from_inhg, m_from_ft

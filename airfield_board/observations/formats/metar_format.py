@@ -16,6 +16,7 @@ from itertools import pairwise
 import numpy as np
 
 from airfield_board.clock import time_from_us, us_from_time
+from airfield_board.errors import shown
 from airfield_board.observations.formats.reading import (
     ReadingRules,
     ReadResult,
@@ -24,7 +25,6 @@ from airfield_board.observations.formats.reading import (
     Section,
     joined,
     result_of,
-    shown,
 )
 from airfield_board.observations.observation import NO_TIME_US
 from airfield_board.units import DAY_US, EQUAL, hpa_from_inhg

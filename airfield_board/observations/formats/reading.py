@@ -10,13 +10,11 @@ from zoneinfo import ZoneInfo, ZoneInfoNotFoundError
 import numpy as np
 from numpy.typing import NDArray
 
-from airfield_board.errors import Fault, FileFaults, UserError
+from airfield_board.errors import Fault, FileFaults, UserError, shown
 from airfield_board.observations.formats.local_time import utc_from_local
 from airfield_board.observations.observation import NO_TIME_US, ObservationTable
 
 Format = Literal["csv", "json", "metar"]
-
-_LONGEST_SHOWN = 60
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -272,12 +270,6 @@ def ordered(faults: Mapping[int, str]) -> dict[int, str]:
 def joined(*faults: str) -> str:
     """Join what is wrong with one row into one sentence."""
     return "; ".join(fault for fault in faults if fault)
-
-
-def shown(text: str) -> str:
-    """Quote text of a file for a message: short, and nothing in it that a screen would not show."""
-    cut = text if len(text) <= _LONGEST_SHOWN else text[: _LONGEST_SHOWN - 1] + "…"
-    return '"' + "".join(sign if sign.isprintable() else ascii(sign)[1:-1] for sign in cut) + '"'
 
 
 def split_csv(text: str) -> list[str]:
