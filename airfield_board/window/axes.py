@@ -11,8 +11,10 @@ import numpy as np
 from airfield_board.clock import local_day, start_of_local_day, time_from_us
 from airfield_board.session.board_state import BoardState
 from airfield_board.units import ft_from_m
+from airfield_board.window import formatting
 
 STEP_FT = 500.0
+TICK_ROOM_PX = 24.0
 REACH_FT = 2000.0
 """How far the axis follows a limit that has been on hold today, beyond what it would show anyway."""
 _HOUR = timedelta(hours=1)
@@ -117,6 +119,29 @@ def board_range(state: BoardState) -> tuple[float, float]:
     held_ft = [line.axis_ft for line in shown if line.axis_ft is not None and line.spans]
     limits_ft = [line.axis_ft for line in shown if line.axis_ft is not None]
     return altitude_range(limits_ft, air_ft, held_ft, ft_from_m(state.airfield.elevation_m))
+
+
+def altitude_marks(axis: AltitudeAxis, unit: str, *, sign: bool = False) -> list[tuple[float, str]]:
+    """Return the named altitudes of an axis, in feet, with their texts; as many as there is room for.
+
+    Parameters
+    ----------
+    unit
+        Of the texts, ``ft`` or ``m``.
+    sign
+        Whether they are differences, and have one.
+    """
+    to_ft = 1.0 if unit == "ft" else ft_from_m(1.0)
+    low, high = axis.low_ft / to_ft, axis.high_ft / to_ft
+    per_unit_px = (axis.bottom_px - axis.top_px) / (high - low)
+    steps = (500.0, 1000.0, 2000.0, 5000.0) if unit == "ft" else (100.0, 200.0, 500.0, 1000.0, 2000.0)
+    step = next((step for step in steps if step * per_unit_px >= TICK_ROOM_PX), steps[-1])
+    marks = []
+    value = math.ceil(low / step - 1e-9) * step
+    while value <= high + 1e-6:
+        marks.append((value * to_ft, formatting.number(value, sign=sign)))
+        value += step
+    return marks
 
 
 def day_bounds(state: BoardState, now: datetime, zone: ZoneInfo) -> tuple[datetime, datetime]:

@@ -1,6 +1,6 @@
 """The Board page: the day plot, its axes, and the rows that hang on it."""
 
-import math
+from dataclasses import dataclass
 from datetime import date, datetime, timedelta
 from typing import TYPE_CHECKING
 
@@ -9,10 +9,9 @@ from PySide6.QtGui import QColor, QPainter, QResizeEvent, QShowEvent
 from PySide6.QtWidgets import QWidget
 
 from airfield_board.clock import local_day
-from airfield_board.session.board_state import BoardState, OperationLine
-from airfield_board.units import ft_from_m
+from airfield_board.session.board_state import BoardState, Freshness, OperationLine
 from airfield_board.window import formatting
-from airfield_board.window.axes import AltitudeAxis, TimeAxis, board_range, day_bounds, hour_marks
+from airfield_board.window.axes import AltitudeAxis, TimeAxis, altitude_marks, board_range, day_bounds, hour_marks
 from airfield_board.window.canvas import Canvas
 from airfield_board.window.day_axis import paint_hours, paint_now
 from airfield_board.window.day_scene import DayScene, Shelf
@@ -21,8 +20,9 @@ from airfield_board.window.lettering import Lettering, baseline_for_middle, widt
 from airfield_board.window.no_data_card import NoDataCard
 from airfield_board.window.palette import Palette
 from airfield_board.window.reading import Cause, View
+from airfield_board.window.row_layout import Density, choose_pitch
 from airfield_board.window.row_painter import GUTTER_PX
-from airfield_board.window.row_panel import Headings, RowPanel
+from airfield_board.window.row_panel import ROWS_BOTTOM_PX, ROWS_TOP_PX, Headings, RowPanel
 from airfield_board.window.row_words import tip_of, words_of
 
 if TYPE_CHECKING:
@@ -31,7 +31,6 @@ if TYPE_CHECKING:
 AXIS_PX = 58
 PLOT_TOP_PX = 44
 TIME_AXIS_PX = 30
-_TICK_ROOM_PX = 24.0
 _HOUR_ROOM_PX = 56.0
 _MARGINS_PX = 32
 """What the window is wider than the page."""
@@ -73,6 +72,11 @@ class BoardPage(Canvas):
         """The plot; None before the first picture stands."""
         return self._plot
 
+    @property
+    def scene(self) -> DayScene | None:
+        """What the plot shows; None before the first state."""
+        return self._scene
+
     def set_colours(self, colours: Palette) -> None:
         """Take other colours, in all parts."""
         super().set_colours(colours)
@@ -90,10 +94,10 @@ class BoardPage(Canvas):
         words = [words_of(row, view) for row in view.rows]
         conditions = view.state.conditions if view.trusted else None
         level_ft = conditions.density_altitude_ft if conditions is not None else None
-        unit = view.state.airfield.altitude_unit
-        level = (level_ft, f"DA now {formatting.altitude(level_ft, unit)} {unit}") if level_ft is not None else None
+        level = (level_ft, _level_label(view, level_ft)) if level_ft is not None else None
         degrees = formatting.UNIT_WORDS[view.state.airfield.temperature_unit]
-        headings = Headings(margin=f"Margin, {unit}", last=f"Hold above {degrees}")
+        change = formatting.change_heading(trusted=view.trusted)
+        headings = Headings(margin=f"Margin, {view.column_unit}", change=change, last=f"Hold above {degrees}")
         tips = [tip_of(row, view) for row in view.rows]
         self.rows.show_rows(words, tips, headings, level=level)
         self.card.show_view(view)
@@ -179,9 +183,11 @@ class BoardPage(Canvas):
     def _place_card(self, plot_width: int) -> None:
         size = self.card.sizeHint()
         now_px = self._scene.time.px(self._scene.now) if self._scene is not None else 0.0
-        right_of_now = now_px + size.width() + 20 <= plot_width
-        left = AXIS_PX + (plot_width - size.width() - 12 if right_of_now else 12)
-        self.card.setGeometry(left, self.height() - TIME_AXIS_PX - size.height() - 12, size.width(), size.height())
+        # Else in the upper left: there the curve is not, for the morning is the coolest of the day.
+        right_of_now = now_px + size.width() + 16 <= plot_width
+        left = AXIS_PX + (plot_width - size.width() - 8 if right_of_now else 12)
+        top = self.height() - TIME_AXIS_PX - size.height() - 12 if right_of_now else PLOT_TOP_PX + 12
+        self.card.setGeometry(left, top, size.width(), size.height())
         self.card.raise_()
 
     def _on_selected(self, key: str) -> None:
@@ -215,19 +221,44 @@ class BoardPage(Canvas):
             letters.text(at, text, colours.soft_ink, 13, side="right")
 
 
-def altitude_marks(axis: AltitudeAxis, unit: str) -> list[tuple[float, str]]:
-    """Return the named altitudes of an axis, in feet, with their texts; as many as there is room for."""
-    to_ft = 1.0 if unit == "ft" else ft_from_m(1.0)
-    low, high = axis.low_ft / to_ft, axis.high_ft / to_ft
-    per_unit_px = (axis.bottom_px - axis.top_px) / (high - low)
-    steps = (500.0, 1000.0, 2000.0, 5000.0) if unit == "ft" else (100.0, 200.0, 500.0, 1000.0, 2000.0)
-    step = next((step for step in steps if step * per_unit_px >= _TICK_ROOM_PX), steps[-1])
-    marks = []
-    value = math.ceil(low / step - 1e-9) * step
-    while value <= high + 1e-6:
-        marks.append((value * to_ft, formatting.number(value)))
-        value += step
-    return marks
+@dataclass(frozen=True, slots=True, kw_only=True)
+class RoomWanted:
+    """All by which the height of the rows is chosen."""
+
+    rows: int
+    extra_lines: int
+    with_level: bool
+    with_foot: bool
+
+
+def room_wanted(view: View) -> RoomWanted:
+    """Return what the rows of a view ask of the page."""
+    shown = [row.shown for row in view.state.operations]
+    return RoomWanted(
+        rows=len(shown),
+        extra_lines=sum(bool(formatting.temporary_phrase(line)) for line in shown),
+        with_level=view.trusted and view.state.conditions is not None,
+        with_foot=any(line is None or line.place_ft is None for line in shown),
+    )
+
+
+def density_of(view: View, page_px: float) -> Density:
+    """Return how much a row could carry on a page of a height."""
+    wanted = room_wanted(view)
+    return choose_pitch(
+        page_px - ROWS_TOP_PX - ROWS_BOTTOM_PX,
+        wanted.rows,
+        with_level=wanted.with_level,
+        extra_lines=wanted.extra_lines,
+        with_foot=wanted.with_foot,
+    ).density
+
+
+def _level_label(view: View, level_ft: float) -> str:
+    observation, unit = view.state.observation, view.state.airfield.altitude_unit
+    ageing = observation is not None and view.reading.freshness is Freshness.AGEING
+    when = observation.time if ageing and observation is not None else None
+    return formatting.level_label(level_ft, when, unit, view.zone)
 
 
 def shelf_of(row: OperationLine, view: View) -> Shelf | None:

@@ -10,7 +10,7 @@ from PySide6.QtWidgets import QStackedWidget, QWidget
 
 from airfield_board.session.board_state import BoardState
 from airfield_board.window import changes_strip, formatting, header, message_line, strip
-from airfield_board.window.board_page import BoardPage
+from airfield_board.window.board_page import BoardPage, density_of, room_wanted
 from airfield_board.window.canvas import Canvas
 from airfield_board.window.changes_strip import ChangesStrip
 from airfield_board.window.fonts import MEDIUM, SEMIBOLD
@@ -21,6 +21,7 @@ from airfield_board.window.margin_page import MarginPage
 from airfield_board.window.message_line import MessageLine, loud_messages
 from airfield_board.window.palette import Palette, Scheme, palette_for
 from airfield_board.window.reading import Frame, View, view_of
+from airfield_board.window.row_layout import Density
 from airfield_board.window.strip import ObservationStrip
 
 SMALLEST_PX = (1200, 760)
@@ -150,6 +151,8 @@ class BoardView(Canvas):
         for page in (self.board, self.margin):
             page.card.set_interactive(False)
         self.margin.search.hide()
+        self.margin.picker.set_interactive(False)
+        self.header.set_picture()
         self.update()
 
     def ensure_plot(self) -> None:
@@ -193,10 +196,19 @@ class BoardView(Canvas):
         self.update()
 
     def _compact(self, height_px: int) -> bool:
-        """Whether the rows need the height of strip and changes."""
-        rows = len(self._view.state.operations) if self._view is not None else 0
-        taken = header.HEIGHT_PX + strip.HEIGHT_PX + changes_strip.HEIGHT_PX + _CAUTION_PX + 3 * _GAP_PX + 54
-        return rows * 14 > height_px - taken
+        """Whether the rows need the height of strip and changes: to be listed at all, or to keep two lines each."""
+        if self._view is None:
+            return False
+        rows = len(self._view.state.operations)
+        taken = header.HEIGHT_PX + strip.HEIGHT_PX + changes_strip.HEIGHT_PX + _CAUTION_PX + 3 * _GAP_PX
+        if loud_messages(self._view.state.messages):
+            taken += message_line.HEIGHT_PX + _GAP_PX - 4
+        page_px = height_px - taken
+        gained_px = (
+            strip.HEIGHT_PX - strip.COMPACT_HEIGHT_PX + changes_strip.HEIGHT_PX - changes_strip.COMPACT_HEIGHT_PX
+        )
+        tight, roomy = (density_of(self._view, px) for px in (page_px, page_px + gained_px))
+        return rows * 14 > page_px - 54 or (tight is not roomy and roomy is Density.COMFORTABLE)
 
     def resizeEvent(self, event: QResizeEvent) -> None:
         """Place all parts anew."""
@@ -223,7 +235,7 @@ class BoardView(Canvas):
 
 def _outline(view: View) -> tuple[object, ...]:
     """All that the places of the parts depend on."""
-    return bool(view.frames), len(view.state.operations), bool(loud_messages(view.state.messages))
+    return bool(view.frames), room_wanted(view), bool(loud_messages(view.state.messages))
 
 
 def _inverse_header(colours: Palette, frame: Frame) -> Palette:

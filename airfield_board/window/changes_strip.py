@@ -16,6 +16,7 @@ HEIGHT_PX = 56
 COMPACT_HEIGHT_PX = 34
 _PADDING_PX = 20.0
 _ITEM_PX = 250.0
+_COMPACT_ITEM_PX = 320.0
 
 
 class ChangesStrip(Canvas):
@@ -91,8 +92,8 @@ class ChangesStrip(Canvas):
         if not view.state.changes:
             letters.text((left, self.height() / 2 + 5), "none today", colours.soft_ink, 13)
             return
-        fitting = max(int((right - 12 - left) // (_ITEM_PX if not compact else 230.0)), 1)
-        width = min((right - 12 - left) / fitting, 330.0)
+        fitting = max(int((right - 12 - left) // (_COMPACT_ITEM_PX if compact else _ITEM_PX)), 1)
+        width = min((right - 12 - left) / fitting, 400.0 if compact else 330.0)
         # What waits comes first: it must not be pushed out by what does not.
         shown = sorted(view.state.changes, key=lambda change: not change.open)[:fitting]
         for index, change in enumerate(shown):

@@ -21,7 +21,7 @@ from PySide6.QtWidgets import (
     QWidget,
 )
 
-from airfield_board.session.board_state import AirfieldLine, BoardState, SettingChange, StatusChange
+from airfield_board.session.board_state import AirfieldLine, BoardState, SettingChange, StatusChange, loudest_first
 from airfield_board.window import formatting
 from airfield_board.window.entry import Entry, Fields, local_text, read_entry, read_name
 
@@ -284,8 +284,7 @@ def messages_text(state: BoardState, zone: ZoneInfo) -> str:
     parts = []
     if not state.recording:
         parts.append(f"NOT RECORDING: {state.not_recording}")
-    weights = ("alarm", "warning", "note")
-    for message in sorted(state.messages, key=lambda each: weights.index(each.weight.value)):
+    for message in loudest_first(state.messages):
         when = f"{formatting.clock(message.time, zone)} " if message.time is not None else ""
         parts.append(f"{when}{message.text}")
     return "\n\n".join(parts) or "There are none."

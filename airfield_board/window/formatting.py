@@ -228,19 +228,24 @@ def limit_phrase(line: LimitLine | None) -> str:
         return "no limit in force"
     if line.limit is None:
         return line.quantity.value
-    value = value_of_limit(line.limit, line.unit)
+    return f"limit {_named(line, line.limit)}{', guarded' if line.guarded else ''}"
+
+
+def _named(line: LimitLine, value: float) -> str:
+    """Write a limit or a value to be at or below, with the quantity where the unit alone would mislead."""
+    text = value_of_limit(value, line.unit)
     if line.quantity is Quantity.PRESSURE_ALTITUDE:
-        value = f"PA {value}"
-    elif line.quantity is Quantity.ISA_DEVIATION:
-        value = f"ISA {'+' if line.limit >= 0 else ''}{value}"
-    return f"limit {value}{', guarded' if line.guarded else ''}"
+        return f"PA {text}"
+    if line.quantity is Quantity.ISA_DEVIATION:
+        return f"ISA {'+' if value >= 0 else ''}{text}"
+    return text
 
 
 def limit_cell(line: LimitLine | None, column_unit: str = "ft") -> str:
-    """Limit as it stands in its own column, with any unit but the column's: ``6,350``, ``42 °C``."""
+    """Limit as it stands in its own column, with any unit but the column's: ``6,350``, ``PA 5,000``, ``42 °C``."""
     if line is None or line.limit is None:
         return DASH
-    return value_of_limit(line.limit, line.unit).removesuffix(f" {column_unit}")
+    return _named(line, line.limit).removesuffix(f" {column_unit}")
 
 
 def margin_cell(line: LimitLine | None, column_unit: str = "ft") -> str:
@@ -298,7 +303,7 @@ def _clearing(line: LimitLine, now: datetime, zone: ZoneInfo) -> tuple[str, str]
     clearing = line.clearing
     if clearing is None:
         return "", f"since {time_near(line.since, now, zone)}" if line.since is not None else ""
-    needs = value_of_limit(clearing.needs, line.unit)
+    needs = _named(line, clearing.needs)
     if clearing.since is None or clearing.earliest is None:
         return f"clears at or below {needs}", f"for {minutes(clearing.for_min)} min"
     if clearing.earliest <= now:
@@ -335,6 +340,17 @@ def no_data_lines(cause: Cause, state: BoardState, now: datetime, zone: ZoneInfo
         Cause.CLOCK: ("The clock is wrong", f"It is behind the last observation, {when}"),
         Cause.NOT_CALCULATED: ("Nothing to trust", f"The reading of {when} cannot be used"),
     }[cause]
+
+
+def change_heading(*, trusted: bool) -> str:
+    """Heading of the column that says since when a row is as it is or what comes next; without data, what it was."""
+    return "Since, or next change" if trusted else "State before"
+
+
+def level_label(value_ft: float, when: datetime | None, unit: str, zone: ZoneInfo) -> str:
+    """Name the level of the air: that of now, or with ``when`` that of a reading that has begun to age."""
+    at = f"at {clock(when, zone)}" if when is not None else "now"
+    return f"DA {at} {altitude(value_ft, unit)} {unit}"
 
 
 def short_stamp(when: datetime, zone: ZoneInfo) -> str:

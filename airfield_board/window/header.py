@@ -3,7 +3,7 @@
 from collections.abc import Sequence
 
 from PySide6.QtCore import QPointF, QRectF, Qt, Signal
-from PySide6.QtGui import QColor, QFocusEvent, QKeyEvent, QMouseEvent, QPainter, QPen
+from PySide6.QtGui import QColor, QKeyEvent, QMouseEvent, QPainter, QPen
 from PySide6.QtWidgets import QWidget
 
 from airfield_board.session.board_state import Mode
@@ -35,6 +35,7 @@ class Header(Canvas):
         self._view: View | None = None
         self._shown: object = None
         self._tabs: list[QRectF] = []
+        self._live_word = "LIVE"
         self.setFocusPolicy(Qt.FocusPolicy.TabFocus)
         self.setAccessibleName("Airfield, pages and time")
 
@@ -44,9 +45,14 @@ class Header(Canvas):
         self._view = view
         if shown != self._shown:
             self._shown = shown
-            chips = ", ".join(frame.value for frame in view.frames) or ("LIVE" if view.live else "not live")
+            chips = ", ".join(frame.value for frame in view.frames) or (self._live_word if view.live else "not live")
             self.setAccessibleDescription(f"{view.state.airfield.name}, {chips}")
             self.update()
+
+    def set_picture(self) -> None:
+        """Make this a picture's header: it was live when it was painted, and is no more when somebody looks at it."""
+        self._live_word = "PICTURE"
+        self.update()
 
     def set_page(self, page: int) -> None:
         """Underline another page's name."""
@@ -77,7 +83,7 @@ class Header(Canvas):
         others = [frame.value for frame in frames[1:]]
         observation = view.state.observation
         if view.live:
-            others = ["LIVE"]
+            others = [self._live_word]
         elif observation is not None and observation.initials:
             others.append("TYPED IN")
         tabs = sum(width_of(page, 15, SEMIBOLD) + 30 for page in self._pages)
@@ -159,13 +165,3 @@ class Header(Canvas):
             self.page_asked.emit(self._page + step)
         else:
             super().keyPressEvent(event)
-
-    def focusInEvent(self, event: QFocusEvent) -> None:
-        """Show the focus ring."""
-        self.update()
-        super().focusInEvent(event)
-
-    def focusOutEvent(self, event: QFocusEvent) -> None:
-        """Take the focus ring away."""
-        self.update()
-        super().focusOutEvent(event)

@@ -26,6 +26,8 @@ class PaintedText:
         Of its ink, in the widget's pixels.
     room_left, room_right
         What it must stay between.
+    colour
+        Of its ink, ``#RRGGBB``.
     """
 
     text: str
@@ -36,6 +38,7 @@ class PaintedText:
     height: float
     room_left: float
     room_right: float
+    colour: str
 
 
 @lru_cache(maxsize=4096)
@@ -138,6 +141,7 @@ class Lettering:
                     height=ink_height,
                     room_left=room_left,
                     room_right=room_left + room,
+                    colour=colour,
                 )
             )
         return left if side == "right" else left + advance

@@ -8,9 +8,10 @@ from PySide6.QtCore import QRectF, QSize, QTimer, Signal
 from PySide6.QtGui import QColor, QPainter, QResizeEvent, QShowEvent
 from PySide6.QtWidgets import QLineEdit, QWidget
 
+from airfield_board.limits.states import State
 from airfield_board.session.board_state import BoardState, OperationLine
 from airfield_board.window import formatting
-from airfield_board.window.axes import AltitudeAxis, TimeAxis, day_bounds, hour_marks
+from airfield_board.window.axes import AltitudeAxis, TimeAxis, altitude_marks, day_bounds, hour_marks
 from airfield_board.window.canvas import Canvas
 from airfield_board.window.day_axis import paint_hours, paint_now
 from airfield_board.window.day_scene import stretches_of
@@ -20,8 +21,8 @@ from airfield_board.window.margin_scene import (
     CHOSEN_AT_MOST,
     MarginScene,
     first_choice,
-    limit_ft,
     line_of,
+    lowest_margin,
     margin_range,
     near_band_ft,
     plottable,
@@ -131,8 +132,8 @@ class MarginPage(Canvas):
         chosen = [row for row in view.rows if row.key in keys]
         self._arrange(view, chosen)
         words = [self._words_of(row, view) for row in chosen]
-        unit = view.state.airfield.altitude_unit
-        headings = Headings(margin=f"Margin, {unit}", last="Lowest today")
+        change = formatting.change_heading(trusted=view.trusted)
+        headings = Headings(margin=f"Margin, {view.column_unit}", change=change, last="Lowest today")
         tips = [tip_of(row, view) for row in chosen]
         self.rows.show_rows(words, tips, headings, level=None)
         self.rows.choose_columns(self._rows_height, self.width() + _MARGINS_PX)
@@ -143,20 +144,17 @@ class MarginPage(Canvas):
     def _words_of(self, row: OperationLine, view: View) -> RowWords:
         """Put a row into words, with the lowest margin of the day in the last column."""
         words = words_of(row, view)
-        line, conditions = row.shown, view.state.conditions
-        lowest = below = ""
-        axis_ft = None
-        if line is not None and view.trusted and conditions is not None:
-            limit = limit_ft(line)
-            if limit is not None and plottable(row):
-                lowest = formatting.margin(limit - conditions.peak_ft, "ft")
-                below = f"at {formatting.clock(conditions.peak_time, view.zone)}"
+        lowest = lowest_margin(row, view.state.curve) if view.trusted else None
+        last, below = formatting.DASH, ""
+        if lowest is not None and row.shown is not None:
+            last = formatting.margin_cell(replace(row.shown, margin=lowest[0]), view.column_unit)
+            below = f"at {formatting.clock(lowest[1], view.zone)}"
         scene = self._scene
+        place_ft = None
         if scene is not None:
-            axis_ft = next((drawn.now_ft for drawn in scene.lines if drawn.key == row.key), None)
-        return replace(
-            words, last=lowest or formatting.DASH, last_below=below, axis_ft=axis_ft, place_ft=axis_ft, temporary=""
-        )
+            place_ft = next((drawn.now_ft for drawn in scene.lines if drawn.key == row.key), None)
+        axis_ft = place_ft if row.state is not State.NO_DATA else None
+        return replace(words, last=last, last_below=below, axis_ft=axis_ft, place_ft=place_ft, temporary="")
 
     def _show_choices(self, view: View) -> None:
         keys, needle = self.keys, self.search.text().strip().casefold()
@@ -165,7 +163,7 @@ class MarginPage(Canvas):
             text = formatting.full_name(row)
             if needle and needle not in text.casefold():
                 continue
-            margin = formatting.margin_cell(row.shown, view.state.airfield.altitude_unit)
+            margin = formatting.margin_cell(row.shown, view.column_unit)
             drawable = plottable(row)
             reason = row.shown.reason if row.shown is not None else "no limit in force"
             note = "" if drawable else reason or margin
@@ -226,6 +224,7 @@ class MarginPage(Canvas):
             observed=view.state.observation.time if view.state.observation is not None else None,
             now=view.now.replace(second=0, microsecond=0),
             gap=not view.trusted,
+            unit=view.column_unit,
         )
         self._scene = scene
         if self._plot is not None:
@@ -286,20 +285,15 @@ class MarginPage(Canvas):
         view, scene, colours = self._view, self._scene, self.colours
         if view is None or scene is None:
             return
-        title = f"Margin to own limit, {view.state.airfield.altitude_unit}"
+        title = f"Margin to own limit, {scene.unit}"
         letters.text((14, 23), title, colours.soft_ink, 13, MEDIUM)
         axis = scene.margin
-        steps = round((axis.high_ft - axis.low_ft) / 500.0)
-        every = 500.0 if (axis.bottom_px / max(steps, 1)) >= 24 else 1000.0
-        value = -(-axis.low_ft // every) * every
-        while value <= axis.high_ft:
-            y = PLOT_TOP_PX + axis.px(value)
+        for value_ft, text in altitude_marks(axis, scene.unit, sign=True):
+            y = PLOT_TOP_PX + axis.px(value_ft)
             painter.fillRect(QRectF(AXIS_PX - 6, round(y), 6, 1), QColor(colours.line))
-            weight = SEMIBOLD if value == 0 else 400
-            ink = colours.ink if value == 0 else colours.soft_ink
-            text = formatting.number(value, sign=True)
+            weight = SEMIBOLD if value_ft == 0 else 400
+            ink = colours.ink if value_ft == 0 else colours.soft_ink
             letters.text((AXIS_PX - 10, baseline_for_middle(y, 13)), text, ink, 13, weight, side="right")
-            value += every
         bottom = PLOT_TOP_PX + axis.bottom_px
         painter.fillRect(QRectF(AXIS_PX, bottom, scene.time.right_px, 1), QColor(colours.line))
         right = self.rows.x() + 24.0

@@ -8,6 +8,7 @@ from PySide6.QtGui import QColor, QPainter, QPen
 from PySide6.QtWidgets import QWidget
 
 from airfield_board.limits.states import State
+from airfield_board.units import m_from_ft
 from airfield_board.window.fonts import MEDIUM
 from airfield_board.window.formatting import number
 from airfield_board.window.lettering import Lettering, width_of
@@ -28,7 +29,6 @@ class MarginPlot(PixelPlot):
         self._colours = LIGHT
         self._scene_shown: MarginScene | None = None
         self._chosen = ""
-        self._unit = "ft"
         self._items: list[pg.PlotCurveItem] = []
 
     def show_scene(self, scene: MarginScene, colours: Palette, chosen: str) -> None:
@@ -119,7 +119,10 @@ class MarginPlot(PixelPlot):
         near = scene.near_ft
         if near is not None and zero - scene.margin.px(near) > 20:
             top = scene.margin.px(near)
-            self._name(painter, letters, top + 18.0, f"near limit, to {number(near)} ft", colours.tint_near)
+            in_unit = near if scene.unit == "ft" else m_from_ft(near)
+            self._name(
+                painter, letters, top + 18.0, f"near limit, to {number(in_unit)} {scene.unit}", colours.tint_near
+            )
 
     def _name(self, painter: QPainter, letters: Lettering, baseline: float, text: str, ground: str) -> None:
         """Write the name of a side where no lines are: ahead of now, late in the day at the left."""
@@ -133,7 +136,7 @@ class MarginPlot(PixelPlot):
     def _paint_now(self, painter: QPainter, scene: MarginScene, x: float) -> None:
         colours = self._colours
         for line in scene.lines:
-            if line.now_ft is None:
+            if line.now_ft is None or line.state is State.NO_DATA:
                 continue
             y = scene.margin.px(line.now_ft)
             colour = QColor(self._line_colour(line.state))

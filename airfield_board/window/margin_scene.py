@@ -7,7 +7,7 @@ from datetime import datetime
 import numpy as np
 from numpy.typing import NDArray
 
-from airfield_board.clock import us_from_time
+from airfield_board.clock import time_from_us, us_from_time
 from airfield_board.configuration.differences import difference_in_unit, limit_in_unit
 from airfield_board.configuration.model import Quantity
 from airfield_board.limits.states import State
@@ -50,7 +50,15 @@ class MarginLine:
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class MarginScene:
-    """The plot of the Margin page; ``near_ft`` None where the chosen operations have different near bands."""
+    """The plot of the Margin page.
+
+    Attributes
+    ----------
+    near_ft
+        None where the chosen operations have different near bands.
+    unit
+        In which its margins are written, ``ft`` or ``m``.
+    """
 
     margin: AltitudeAxis
     time: TimeAxis
@@ -60,6 +68,7 @@ class MarginScene:
     observed: datetime | None
     now: datetime
     gap: bool
+    unit: str
 
 
 def plottable(row: OperationLine) -> bool:
@@ -109,6 +118,20 @@ def line_of(row: OperationLine, stretches: Sequence[Stretch], axis: TimeAxis, no
         stretches=tuple(parts),
         now_ft=limit - now_ft if now_ft is not None else None,
     )
+
+
+def lowest_margin(row: OperationLine, curve: DayCurve) -> tuple[float, datetime] | None:
+    """Return a row's lowest margin of the day, in the limit's unit, and when; None where it cannot be told."""
+    line = row.shown
+    limit = limit_ft(line) if line is not None and plottable(row) else None
+    if line is None or limit is None:
+        return None
+    compared_ft = curve.density_altitude_ft + (curve.uncertainty_ft if line.guarded else 0.0)
+    if not np.isfinite(compared_ft).any():
+        return None
+    worst = int(np.nanargmax(compared_ft))
+    margin_ft = limit - float(compared_ft[worst])
+    return difference_in_unit(margin_ft, "ft", line.unit), time_from_us(int(curve.time_us[worst]))
 
 
 def margin_range(lines: Sequence[MarginLine], near_ft: float) -> tuple[float, float]:

@@ -1,17 +1,16 @@
 """A line for what the user should know: a file that cannot be read, settings that were refused, a doubtful sensor."""
 
 from PySide6.QtCore import QRectF, Qt, Signal
-from PySide6.QtGui import QColor, QFocusEvent, QKeyEvent, QMouseEvent, QPainter, QPen
+from PySide6.QtGui import QColor, QKeyEvent, QMouseEvent, QPainter, QPen
 from PySide6.QtWidgets import QWidget
 
-from airfield_board.session.board_state import Message, Weight
+from airfield_board.session.board_state import Message, Weight, loudest_first
 from airfield_board.window.canvas import CARD_RADIUS_PX, Canvas
 from airfield_board.window.fonts import MEDIUM, SEMIBOLD
 from airfield_board.window.lettering import Lettering, baseline_for_middle
 from airfield_board.window.reading import View
 
 HEIGHT_PX = 28
-_LOUD = (Weight.NOTE, Weight.WARNING, Weight.ALARM)
 
 
 class MessageLine(Canvas):
@@ -77,18 +76,7 @@ class MessageLine(Canvas):
         else:
             super().keyPressEvent(event)
 
-    def focusInEvent(self, event: QFocusEvent) -> None:
-        """Show the focus ring."""
-        self.update()
-        super().focusInEvent(event)
-
-    def focusOutEvent(self, event: QFocusEvent) -> None:
-        """Take the focus ring away."""
-        self.update()
-        super().focusOutEvent(event)
-
 
 def loud_messages(messages: tuple[Message, ...]) -> tuple[Message, ...]:
     """Return the warnings and alarms, the loudest first."""
-    loud = [message for message in messages if message.weight is not Weight.NOTE]
-    return tuple(sorted(loud, key=lambda message: -_LOUD.index(message.weight)))
+    return loudest_first(message for message in messages if message.weight is not Weight.NOTE)

@@ -1,7 +1,7 @@
 """The card that stands in the plot when there is no current observation: why, and the two ways out of it."""
 
 from PySide6.QtCore import QPointF, QRectF, QSize, Qt, Signal
-from PySide6.QtGui import QColor, QFocusEvent, QKeyEvent, QMouseEvent, QPainter, QPen
+from PySide6.QtGui import QColor, QKeyEvent, QMouseEvent, QPainter, QPen
 from PySide6.QtWidgets import QWidget
 
 from airfield_board.window import formatting
@@ -112,13 +112,3 @@ class NoDataCard(Canvas):
             self._press(self._focused)
         else:
             super().keyPressEvent(event)
-
-    def focusInEvent(self, event: QFocusEvent) -> None:
-        """Show the focus ring."""
-        self.update()
-        super().focusInEvent(event)
-
-    def focusOutEvent(self, event: QFocusEvent) -> None:
-        """Take the focus ring away."""
-        self.update()
-        super().focusOutEvent(event)

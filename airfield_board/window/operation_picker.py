@@ -3,7 +3,7 @@
 from dataclasses import dataclass
 
 from PySide6.QtCore import QPointF, QRectF, Qt, Signal
-from PySide6.QtGui import QColor, QFocusEvent, QKeyEvent, QMouseEvent, QPainter, QPen, QPolygonF, QWheelEvent
+from PySide6.QtGui import QColor, QKeyEvent, QMouseEvent, QPainter, QPen, QPolygonF, QWheelEvent
 from PySide6.QtWidgets import QWidget
 
 from airfield_board.limits.states import State
@@ -45,9 +45,15 @@ class OperationPicker(Canvas):
         self._choices: tuple[Choice, ...] = ()
         self._first_line = 0
         self._focused = 0
+        self._interactive = True
         self._boxes: list[tuple[QRectF, Choice]] = []
         self.setFocusPolicy(Qt.FocusPolicy.StrongFocus)
         self.setAccessibleName("Operations shown")
+
+    def set_interactive(self, interactive: bool) -> None:
+        """Say nothing of scrolling in a picture, where nobody can."""
+        self._interactive = interactive
+        self.update()
 
     def show_choices(self, choices: tuple[Choice, ...]) -> None:
         """Show other operations."""
@@ -98,7 +104,7 @@ class OperationPicker(Canvas):
                 shown += 1
         if hidden:
             rest = len(self._choices) - shown
-            text = f"{rest} more: scroll, or find by name"
+            text = f"{rest} more: scroll, or find by name" if self._interactive else f"{rest} more are not listed"
             letters.text((0, self.height() - 6), text, colours.soft_ink, 12)
 
     def _paint_choice(self, painter: QPainter, letters: Lettering, cell: QRectF, place: int) -> None:
@@ -174,13 +180,3 @@ class OperationPicker(Canvas):
         self.update()
         if self._focused < len(self._choices) and not self._choices[self._focused].note:
             self.toggled.emit(self._choices[self._focused].key)
-
-    def focusInEvent(self, event: QFocusEvent) -> None:
-        """Show the focus ring."""
-        self.update()
-        super().focusInEvent(event)
-
-    def focusOutEvent(self, event: QFocusEvent) -> None:
-        """Take the focus ring away."""
-        self.update()
-        super().focusOutEvent(event)

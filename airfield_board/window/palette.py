@@ -3,7 +3,7 @@
 Red stands for HOLD only, amber for NEAR LIMIT and REDUCED only; the grey schemes have neither, and no green.
 """
 
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from enum import StrEnum
 
 
@@ -153,19 +153,11 @@ DARK = Palette(
     notice_band=Band(ground="#9FADBA", ink="#0B1117"),
 )
 
-GREY_LIGHT = Palette(
-    page="#E9EDF1",
-    card="#FFFFFF",
-    cell="#E6EBF0",
-    ink="#13202C",
-    soft_ink="#3F4D5A",
-    line="#73818E",
-    hairline="#D5DCE3",
+GREY_LIGHT = replace(
+    LIGHT,
     water="#E3E6E9",
     accent="#13202C",
-    on_accent="#FFFFFF",
     hold_block="#3F4D5A",
-    on_hold="#FFFFFF",
     hold_line="#3F4D5A",
     near_block="#FFFFFF",
     on_near="#13202C",
@@ -173,31 +165,19 @@ GREY_LIGHT = Palette(
     reduced_block="#FFFFFF",
     on_reduced="#13202C",
     go="#3F4D5A",
-    no_data="#3F4D5A",
     header="#13202C",
     on_header="#FFFFFF",
     soft_on_header="#D5DCE3",
     hatch_hold="#CDD4DB",
     tint_hold="#EEF1F4",
     tint_near="#F6F8FA",
-    no_data_band=Band(ground="#13202C", ink="#FFFFFF"),
-    not_recording_band=Band(ground="#13202C", ink="#FFFFFF"),
-    training_band=Band(ground="#5A2A91", ink="#FFFFFF"),
     demo_band=Band(ground="#13202C", ink="#FFFFFF"),
-    notice_band=Band(ground="#4A5866", ink="#FFFFFF"),
 )
 
-GREY_DARK = Palette(
-    page="#0B1117",
-    card="#141C24",
-    cell="#202B36",
-    ink="#EAF0F5",
-    soft_ink="#B4C0CB",
-    line="#778695",
-    hairline="#2A3541",
+GREY_DARK = replace(
+    DARK,
     water="#222A32",
     accent="#EAF0F5",
-    on_accent="#0B1117",
     hold_block="#B4C0CB",
     on_hold="#0B1117",
     hold_line="#B4C0CB",
@@ -205,20 +185,14 @@ GREY_DARK = Palette(
     on_near="#EAF0F5",
     near_line="#B4C0CB",
     reduced_block="#141C24",
-    on_reduced="#EAF0F5",
     go="#B4C0CB",
-    no_data="#B4C0CB",
     header="#EAF0F5",
     on_header="#0B1117",
     soft_on_header="#2A3541",
     hatch_hold="#35414D",
     tint_hold="#1B242D",
     tint_near="#182028",
-    no_data_band=Band(ground="#EAF0F5", ink="#0B1117"),
-    not_recording_band=Band(ground="#EAF0F5", ink="#0B1117"),
-    training_band=Band(ground="#C7A5FF", ink="#1B0B33"),
     demo_band=Band(ground="#EAF0F5", ink="#0B1117"),
-    notice_band=Band(ground="#9FADBA", ink="#0B1117"),
 )
 
 

@@ -190,9 +190,11 @@ class DayPlot(PixelPlot):
         }
         for above in beyond:
             y, dip = (1.0, 7.0) if above else (self.height() - 1.0, -7.0)
-            path = QPainterPath(QPointF(x - 12, y + dip))
-            path.lineTo(x - 6, y)
-            path.lineTo(x, y + dip)
+            path = QPainterPath(QPointF(x - 18, y + dip))
+            path.lineTo(x - 12, y)
+            path.lineTo(x - 6, y + dip)
+            path.moveTo(x - 12, y)
+            path.lineTo(x, y)
             painter.drawPath(path)
 
     def _paint_callout(self, painter: QPainter, scene: DayScene, shelf: Shelf) -> None:

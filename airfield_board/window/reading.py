@@ -140,6 +140,13 @@ class View:
         return tuple(frame for frame in Frame if wanted.get(frame, modes.get(state.mode) is frame))
 
     @property
+    def column_unit(self) -> str:
+        """Unit of the columns of limits and margins: the airfield's, unless all limits are in the other."""
+        own = self.state.airfield.altitude_unit
+        used = {row.shown.unit for row in self.state.operations if row.shown is not None} & {"ft", "m"}
+        return own if own in used or not used else used.pop()
+
+    @property
     def live(self) -> bool:
         """Whether all is live, trusted, recorded, and from the file."""
         observation = self.state.observation

@@ -16,6 +16,8 @@ from airfield_board.window.row_words import RowWords
 
 GUTTER_PX = 58
 RIGHT_PX = 12
+EASY_FROM_PX = 33
+"""Rows of two lines lower than this have a smaller second line."""
 HOLD_COLUMN_FROM_PX = 1320
 """Window width below which the column of hold temperatures goes."""
 
@@ -52,21 +54,36 @@ def columns_for(density: Density, window_px: int) -> Columns:
             block_px=144,
             name=158,
             limit_right=None,
-            margin_right=406,
-            change=424,
-            change_right=640,
-            hold_right=698 if with_hold else None,
+            margin_right=424,
+            change=441,
+            change_right=656,
+            hold_right=708 if with_hold else None,
         )
     block_px = 116 if density is Density.STANDARD else 100
     return Columns(
         block_px=block_px,
         name=block_px + 12,
-        limit_right=450,
-        margin_right=516,
-        change=531,
-        change_right=732,
-        hold_right=776 if with_hold else None,
+        limit_right=436,
+        margin_right=502,
+        change=517,
+        change_right=755,
+        hold_right=800 if with_hold else None,
     )
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Lines:
+    """The lines within a row of two: their distance, and the size of the lower one."""
+
+    step_px: float
+    lower_size_px: int
+
+
+def lines_for(pitch_px: float) -> Lines:
+    """Choose the lines for a height of the rows: nearer to each other than to those of the next row."""
+    if pitch_px < EASY_FROM_PX:
+        return Lines(step_px=14.8, lower_size_px=12)
+    return Lines(step_px=min(max(pitch_px * 0.45, 15.3), 16.0), lower_size_px=13)
 
 
 @dataclass(slots=True, kw_only=True)
@@ -81,8 +98,8 @@ class RowPainter:
     def paint_row(self, box: RowBox, row: RowWords, plan: RowPlan) -> None:
         """Paint a row in the place that the plan gives it."""
         if plan.pitch.density is Density.COMFORTABLE:
-            self._paint_block(box, row, size_px=17, height_px=min(box.height_px - 6, 29.0))
-            self._paint_comfortable(box, row)
+            self._paint_block(box, row, size_px=17, height_px=min(plan.pitch.px - 5, 29.0))
+            self._paint_comfortable(box, row, lines_for(plan.pitch.px))
             return
         pitch = plan.pitch.px
         if plan.pitch.density is Density.STANDARD:
@@ -126,21 +143,20 @@ class RowPainter:
         word = formatting.STATE_WORDS[row.state]
         self.letters.text((word_left, baseline_for_middle(box.middle_px, size_px)), word, ink, size_px, BOLD)
 
-    def _paint_comfortable(self, box: RowBox, row: RowWords) -> None:
+    def _paint_comfortable(self, box: RowBox, row: RowWords, lines: Lines) -> None:
         colours, columns, left = self.colours, self.columns, float(GUTTER_PX)
-        lines = 3 if row.temporary else 2
-        step = min(16.0, box.height_px / lines)
-        first = box.middle_px - step * (lines - 1) / 2
+        step, small_px = lines.step_px, lines.lower_size_px
+        first = box.middle_px - step * (2 if row.temporary else 1) / 2
         name, margin_px = left + columns.name, 20 if row.margin[-1:].isdigit() else 17
         margin_left = left + columns.margin_right - width_of(row.margin, margin_px, SEMIBOLD)
         room = margin_left - name - 8
         self.letters.text((name, baseline_for_middle(first, 15)), row.name, colours.ink, 15, SEMIBOLD, room_px=room)
-        second = baseline_for_middle(first + step, 13)
-        self.letters.text((name, second), row.details, colours.soft_ink, 13, room_px=room)
+        second = baseline_for_middle(first + step, small_px)
+        self.letters.text((name, second), row.details, colours.soft_ink, small_px, room_px=room)
         if row.temporary:
-            self.letters.text(
-                (name, baseline_for_middle(first + 2 * step, 13)), row.temporary, colours.soft_ink, 13, room_px=room
-            )
+            # The third line runs below the margin, so it has the margin's room as well.
+            third, room = baseline_for_middle(first + 2 * step, small_px), columns.change - columns.name - 8
+            self.letters.text((name, third), row.temporary, colours.soft_ink, small_px, room_px=room)
         dashes = row.margin == formatting.DASH
         self.letters.text(
             (left + columns.margin_right, baseline_for_middle(box.middle_px, margin_px)),
@@ -150,16 +166,20 @@ class RowPainter:
             REGULAR if dashes else SEMIBOLD,
             side="right",
         )
-        self._paint_change_in_two(box, row)
+        self._paint_change_in_two(box, row, lines)
         self._paint_last(box, row, 14)
 
-    def _paint_change_in_two(self, box: RowBox, row: RowWords) -> None:
+    def _paint_change_in_two(self, box: RowBox, row: RowWords, lines: Lines) -> None:
         colours, columns, left = self.colours, self.columns, float(GUTTER_PX)
         change, room = left + columns.change, columns.change_right - columns.change
         if row.loud and row.quiet:
-            upper, lower = box.middle_px - 8, box.middle_px + 8
-            self.letters.text((change, baseline_for_middle(upper, 14)), row.loud, colours.ink, 14, MEDIUM, room_px=room)
-            self.letters.text((change, baseline_for_middle(lower, 13)), row.quiet, colours.soft_ink, 13, room_px=room)
+            upper, lower = box.middle_px - lines.step_px / 2, box.middle_px + lines.step_px / 2
+            # What a row was before it had no data must not look like what it is.
+            ink = colours.soft_ink if row.state is State.NO_DATA else colours.ink
+            self.letters.text((change, baseline_for_middle(upper, 14)), row.loud, ink, 14, MEDIUM, room_px=room)
+            small_px = lines.lower_size_px
+            baseline = baseline_for_middle(lower, small_px)
+            self.letters.text((change, baseline), row.quiet, colours.soft_ink, small_px, room_px=room)
             return
         text, ink, weight = (row.loud, colours.ink, MEDIUM) if row.loud else (row.quiet, colours.soft_ink, REGULAR)
         if row.state is State.NO_DATA:

@@ -25,6 +25,7 @@ from airfield_board.window.lettering import Lettering, baseline_for_middle, widt
 from airfield_board.window.marks import mark_colour
 from airfield_board.window.row_layout import (
     FOLDED_PITCH_PX,
+    FOLDED_SMALLEST_PX,
     PITCH_SMALLEST_PX,
     Density,
     RowBox,
@@ -34,11 +35,12 @@ from airfield_board.window.row_layout import (
     rows_that_fit,
 )
 from airfield_board.window.row_painter import GUTTER_PX, HOLD_COLUMN_FROM_PX, Columns, RowPainter, columns_for
-from airfield_board.window.row_words import RowWords, folded, wish_of
+from airfield_board.window.row_words import RowWords, folded, is_folded, wish_of
 
-PLOT_MIDDLE_PX = 90
+EMPTY_WORDS_PX = 90
 UNFOLDED_ROWS = 40
 """So many rows are always listed one by one; of more, some are counted in one line where they get too low to read."""
+_LOUD = (State.NEAR, State.REDUCED, State.HOLD)
 ROWS_TOP_PX = 32
 ROWS_BOTTOM_PX = 7
 
@@ -48,6 +50,7 @@ class Headings:
     """Headings of the columns whose unit or content changes."""
 
     margin: str
+    change: str
     last: str
 
 
@@ -68,7 +71,7 @@ class RowPanel(Canvas):
         self._tips: dict[str, str] = {}
         self._axis: AltitudeAxis | None = None
         self._level: tuple[float, str] | None = None
-        self._headings = Headings(margin="", last="")
+        self._headings = Headings(margin="", change="", last="")
         self._columns = columns_for(Density.COMFORTABLE, HOLD_COLUMN_FROM_PX)
         self._plan: RowPlan | None = None
         self._all: tuple[RowWords, ...] = ()
@@ -89,6 +92,11 @@ class RowPanel(Canvas):
     def axis(self) -> AltitudeAxis | None:
         """The plot's altitude axis, in this widget's pixels; None before it was given."""
         return self._axis
+
+    @property
+    def words(self) -> tuple[RowWords, ...]:
+        """The lines as listed, some of which may stand for several rows."""
+        return self._words
 
     @property
     def plan(self) -> RowPlan | None:
@@ -149,9 +157,13 @@ class RowPanel(Canvas):
     def _fitting(self, bottom_px: float) -> tuple[RowWords, ...]:
         with_foot = any(row.place_ft is None for row in self._all)
         room_px = bottom_px - ROWS_TOP_PX
-        smallest_px = PITCH_SMALLEST_PX if len(self._all) <= UNFOLDED_ROWS else FOLDED_PITCH_PX
-        most = rows_that_fit(room_px, smallest_px, with_level=self._level is not None, with_foot=with_foot)
-        return folded(self._all, most)
+        words = self._all
+        for pitch_px in (FOLDED_PITCH_PX, FOLDED_SMALLEST_PX) if len(words) > UNFOLDED_ROWS else (PITCH_SMALLEST_PX,):
+            most = rows_that_fit(room_px, pitch_px, with_level=self._level is not None, with_foot=with_foot)
+            words = folded(self._all, most)
+            if not any(is_folded(row, _LOUD) for row in words):
+                break
+        return words
 
     def choose(self, key: str) -> None:
         """Pin a row, as Enter does."""
@@ -180,8 +192,10 @@ class RowPanel(Canvas):
             return
         bottom_px = self.height() - ROWS_BOTTOM_PX if self._room_bottom_px is None else self._room_bottom_px
         self._words = self._fitting(bottom_px)
-        wishes = [wish_of(row, axis.px(row.place_ft) if row.place_ft is not None else None) for row in self._words]
         level_px = axis.px(self._level[0]) if self._level is not None else None
+        wishes = [
+            wish_of(row, axis.px(row.place_ft) if row.place_ft is not None else None, level_px) for row in self._words
+        ]
         self._plan = plan_rows(wishes, level_px, ROWS_TOP_PX, bottom_px)
         self.update()
 
@@ -199,7 +213,8 @@ class RowPanel(Canvas):
         self._paint_water(painter, plan)
         self._paint_leaders(painter, plan, axis)
         if not self._words:
-            at = (GUTTER_PX + self._columns.name, PLOT_MIDDLE_PX)
+            beside_level = plan.level_px is not None and abs(plan.level_px - EMPTY_WORDS_PX) < 30
+            at = (GUTTER_PX + self._columns.name, EMPTY_WORDS_PX + (60 if beside_level else 0))
             letters.text(at, self._empty_words, self.colours.soft_ink, 15, MEDIUM)
         rows = RowPainter(painter=painter, letters=letters, colours=self.colours, columns=self._columns)
         for box in plan.boxes:
@@ -219,7 +234,7 @@ class RowPanel(Canvas):
         if columns.limit_right is not None:
             letters.text((left + columns.limit_right, 23), "Limit", ink, small, MEDIUM, side="right")
         letters.text((left + columns.margin_right, 23), self._headings.margin, ink, small, MEDIUM, side="right")
-        letters.text((left + columns.change, 23), "Next change", ink, small, MEDIUM)
+        letters.text((left + columns.change, 23), self._headings.change, ink, small, MEDIUM)
         if columns.hold_right is not None:
             letters.text((left + columns.hold_right, 23), self._headings.last, ink, small, MEDIUM, side="right")
 

@@ -70,7 +70,7 @@ def words_of(row: OperationLine, view: View) -> RowWords:
     unit = view.state.airfield.temperature_unit
     above = line.hold_above_c if line is not None else None
     short = formatting.temporary_short(line)
-    column_unit = view.state.airfield.altitude_unit
+    column_unit = view.column_unit
     return RowWords(
         key=row.key,
         state=row.state,
@@ -90,14 +90,14 @@ def words_of(row: OperationLine, view: View) -> RowWords:
     )
 
 
-_FOLD_FIRST = (State.GO, State.HOLD, State.NO_DATA, State.NEAR, State.REDUCED)
+_FOLD_FIRST = (State.GO, State.NO_DATA, State.NEAR, State.REDUCED, State.HOLD)
 
 
 def folded(words: Sequence[RowWords], most: int) -> tuple[RowWords, ...]:
     """Fold rows that do not fit into one line a state: ``22 more GO``.
 
-    First the GO rows farthest from their limit, then the HOLD rows farthest beyond it, then others; a row that is
-    not shown is always counted, by its state.
+    First the GO rows farthest from their limit, then those in NO DATA, then cautions; a HOLD only where the others
+    do not suffice, those farthest beyond their limit. A row that is not shown is always counted, by its state.
 
     Parameters
     ----------
@@ -141,9 +141,16 @@ def _fold_line(state: State, rows: Sequence[RowWords]) -> RowWords:
     )
 
 
-def wish_of(words: RowWords, target_px: float | None) -> Wish:
-    """Say where a row would stand."""
+def is_folded(words: RowWords, states: Sequence[State]) -> bool:
+    """Whether a line stands for several rows in one of these states."""
+    return words.key.startswith(FOLDED) and words.state in states
+
+
+def wish_of(words: RowWords, target_px: float | None, level_px: float | None) -> Wish:
+    """Say where a row would stand; one without data stays on the side of the level on which its limit lies."""
     below = words.state in (State.HOLD, State.REDUCED)
+    if words.state is State.NO_DATA and target_px is not None and level_px is not None:
+        below = target_px > level_px
     return Wish(target_px=target_px, below=below, extra_lines=words.extra_lines)
 
 

@@ -308,10 +308,10 @@ class ObservationStrip(Canvas):
             if content.last_known and box.bottom() + 6 < below:
                 letters.text((left, below + 4), content.last_known, colours.soft_ink, sizes.label_px)
             return
-        loud_px = min(sizes.loud_px, int((self.height() - label - 12) / 0.727 * 0.92))
+        loud_px = min(sizes.loud_px, int((self.height() - label - 12) / 0.727 * 0.88))
         baseline = self.height() - (18.0 if self.height() >= HEIGHT_PX else 12.0)
         if content.compared:
-            loud_px, baseline = min(loud_px, 42), below - 17
+            loud_px, baseline = min(loud_px, 42 if self.height() >= HEIGHT_PX else 34), below - 17
             letters.text((left, below + 4), content.compared, colours.ink, sizes.label_px, SEMIBOLD)
         right = letters.text((left - 3, baseline), content.density_altitude, colours.ink, loud_px, SEMIBOLD)
         size = sizes.value_px - 2
@@ -349,7 +349,7 @@ class ObservationStrip(Canvas):
             painter.setRenderHint(QPainter.RenderHint.Antialiasing)
             painter.setPen(Qt.PenStyle.NoPen)
             painter.setBrush(QColor(colours.ink))
-            painter.drawRoundedRect(QRectF(left - 9, 5, _AGE_PX + 18, self.height() - 10), 5, 5)
+            painter.drawRoundedRect(QRectF(left - 9, 3, _AGE_PX + 18, self.height() - 6), 5, 5)
             painter.restore()
         compact = self.height() < HEIGHT_PX
         label, value, bar, below = (17.0, 39.0, 46.0, 66.0) if compact else (22.0, 54.0, 66.0, 88.0)

@@ -14,7 +14,7 @@ from airfield_board.units import m_from_ft
 from airfield_board.window.axes import TimeAxis
 from airfield_board.window.day_scene import Stretch, stretches_of
 from airfield_board.window.margin_plot import state_points
-from airfield_board.window.margin_scene import first_choice, line_of, margin_range, plottable
+from airfield_board.window.margin_scene import first_choice, line_of, lowest_margin, margin_range, plottable
 from tests.window import states
 
 AXIS = TimeAxis(start=states.local(6.0), end=states.local(21.0), left_px=0.0, right_px=600.0)
@@ -132,3 +132,21 @@ def test_the_curve_starts_where_the_axis_does() -> None:
     first_us = us_from_time(AXIS.start) + parts[0].seconds[0] * 1e6
     assert first_us >= us_from_time(AXIS.start)
     assert parts[0].seconds[0] < timedelta(minutes=6).total_seconds()
+
+
+def test_the_lowest_margin_of_the_day_is_of_the_compared_value_in_the_limits_unit() -> None:
+    curve = states.board(15).curve
+    # Invented: the highest density altitude comes before the highest compared value.
+    curve = replace(
+        curve,
+        time_us=np.array([us_from_time(states.local(hour)) for hour in (12.0, 13.0)], dtype=np.int64),
+        density_altitude_ft=np.array([6500.0, 6480.0]),
+        uncertainty_ft=np.array([50.0, 100.0]),
+    )
+    assert lowest_margin(row_with(6450.0), curve) == (-50.0, states.local(12.0))
+    assert lowest_margin(row_with(6450.0, guarded=True), curve) == (-130.0, states.local(13.0))
+    found = lowest_margin(row_with(m_from_ft(6450.0), unit="m"), curve)
+    assert found is not None
+    assert found[0] == pytest.approx(-15.24)  # 50 ft of 0.3048 m
+    assert lowest_margin(row_with(31.0, unit="c", quantity=Quantity.TEMPERATURE), curve) is None
+    assert lowest_margin(row_with(6450.0), states.empty_board().curve) is None

@@ -137,8 +137,19 @@ def test_more_rows_than_fit_are_counted_by_their_state(qtbot: QtBot) -> None:
         more = [word for word in words if word.endswith(f" more {STATE_WORDS[kind]}")]
         folded = sum(int(word.split()[0]) - 1 for word in more)
         assert listed + folded == sum(row.state is kind for row in twice)
-    near = [row for row in twice if row.state in (State.NEAR, State.REDUCED)]
-    assert sum(words.count(STATE_WORDS[kind]) for kind in (State.NEAR, State.REDUCED)) == len(near)
+    # All that is on hold is listed one by one, even where cautions must be counted.
+    assert words.count(STATE_WORDS[State.HOLD]) == sum(row.state is State.HOLD for row in twice)
+
+
+def test_go_rows_are_folded_before_cautions_and_no_data_before_those(qtbot: QtBot) -> None:
+    state = states.board(40)
+    twice = tuple(replace(row, aircraft_id=f"{row.aircraft_id}-{copy}") for row in state.operations for copy in "ab")
+    view, _image = shown_view(replace(state, operations=twice), size_px=(1200, 760))
+    qtbot.addWidget(view)
+    words = [one.text.text for one in texts_of(view) if one.part == "RowPanel"]
+    assert [word for word in words if " more " in word] == [f"{sum(row.state is State.GO for row in twice)} more GO"]
+    for kind in (State.NEAR, State.REDUCED, State.HOLD, State.NO_DATA):
+        assert words.count(STATE_WORDS[kind]) == sum(row.state is kind for row in twice)
 
 
 @pytest.mark.parametrize("scheme", ["light", "dark"])
@@ -170,6 +181,6 @@ def test_the_caution_stands_on_every_picture(qtbot: QtBot) -> None:
         for page in PageName:
             view, _image = shown_view(make(15), page=page)
             qtbot.addWidget(view)
-            # Contract, section 6.
+            # What every board bears.
             caution = "Limits of the air only: not runway, wind, load or surface. HOLD: do not begin."
             assert caution in {one.text.text for one in texts_of(view)}
