@@ -92,6 +92,12 @@ def local_day(when: datetime, zone: ZoneInfo) -> date:
     return when.astimezone(zone).date()
 
 
+def local_day_bounds(when: datetime, zone: ZoneInfo) -> tuple[datetime, datetime]:
+    """Return the first moment of the local day of an aware time, and that of the next day, in UTC."""
+    day = local_day(when, zone)
+    return start_of_local_day(day, zone), start_of_local_day(day + timedelta(days=1), zone)
+
+
 def start_of_local_day(day: date, zone: ZoneInfo) -> datetime:
     """First moment of a local calendar day, in UTC.
 

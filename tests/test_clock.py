@@ -88,6 +88,12 @@ def test_start_of_the_local_day(zone: str, day: date, start: str) -> None:
     assert clock.iso_utc(clock.start_of_local_day(day, ZoneInfo(zone))) == start
 
 
+def test_a_local_day_ends_where_the_next_begins() -> None:
+    # Clocks set forward in Los Angeles on 8 March 2026 (IANA time zone database): a day of 23 hours.
+    start, end = clock.local_day_bounds(datetime(2026, 3, 8, 20, 0, tzinfo=UTC), ZoneInfo("America/Los_Angeles"))
+    assert (clock.iso_utc(start), clock.iso_utc(end)) == ("2026-03-08T08:00:00Z", "2026-03-09T07:00:00Z")
+
+
 @given(
     day=st.dates(date(1990, 1, 1), date(2035, 12, 31)),
     zone=st.sampled_from(

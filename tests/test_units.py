@@ -39,6 +39,12 @@ def test_temperature_scales(celsius: float, fahrenheit: float, kelvin: float) ->
     assert units.c_from_k(kelvin) == pytest.approx(celsius, abs=1e-12)
 
 
+def test_a_difference_of_temperatures_has_no_zero_point() -> None:
+    # A degree Celsius is 1.8 degrees Fahrenheit (NIST SP 811, appendix B).
+    assert units.f_difference_from_c(10.0) == 18.0
+    assert units.c_difference_from_f(9.0) == 5.0
+
+
 @given(value=st.floats(-1e5, 1e5))
 def test_each_conversion_and_its_inverse_return_the_value(value: float) -> None:
     assert units.ft_from_m(units.m_from_ft(value)) == pytest.approx(value, rel=1e-14, abs=1e-12)
@@ -60,6 +66,8 @@ def test_arrays_come_out_as_arrays_and_missing_stays_missing() -> None:
         units.c_from_k,
         units.c_from_f,
         units.f_from_c,
+        units.c_difference_from_f,
+        units.f_difference_from_c,
         units.kg_from_lb,
         units.lb_from_kg,
     ):

@@ -6,7 +6,7 @@ from datetime import date
 from airfield_board.configuration.fleet_merge import merge_fleets
 from airfield_board.configuration.model import Fleet, Profile
 from airfield_board.configuration.profile_merge import merge_profiles
-from airfield_board.configuration.setting_changes import ChangeNotes, TightenedChange, WaitingChange
+from airfield_board.configuration.setting_changes import ChangeNotes, SettingChange, TightenedChange
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -26,7 +26,7 @@ class Merge:
     """
 
     effective: tuple[Profile, Fleet]
-    waiting: tuple[WaitingChange, ...]
+    waiting: tuple[SettingChange, ...]
     tightened: tuple[TightenedChange, ...]
 
 

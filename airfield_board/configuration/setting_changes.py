@@ -5,8 +5,8 @@ from dataclasses import dataclass, field
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
-class WaitingChange:
-    """A setting that the files loosen.
+class SettingChange:
+    """A setting that the files loosen, and that waits for acceptance.
 
     Attributes
     ----------
@@ -34,12 +34,12 @@ class TightenedChange:
 class ChangeNotes:
     """Collects what waits and what acts while settings are merged."""
 
-    waiting: list[WaitingChange] = field(default_factory=list)
+    waiting: list[SettingChange] = field(default_factory=list)
     tightened: list[TightenedChange] = field(default_factory=list)
 
     def waits(self, where: str, in_force: str, waiting: str) -> None:
         """Note a loosened setting."""
-        self.waiting.append(WaitingChange(where=where, in_force=in_force, waiting=waiting))
+        self.waiting.append(SettingChange(where=where, in_force=in_force, waiting=waiting))
 
     def acts(self, where: str, was: str, now: str) -> None:
         """Note a tightened setting."""

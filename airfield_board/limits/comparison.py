@@ -66,9 +66,14 @@ def single(standing: Standing, conditions: ConditionsTable, when_us: int) -> Rea
     )
 
 
+def full_limit(standing: Standing, value: float, over: float) -> float:
+    """Return the limit at the greatest weight that a value was compared with, and is ``over`` by."""
+    return value - over if standing.tables or standing.fixed is None else standing.fixed
+
+
 def limit_shown(standing: Standing, state: State, row: Reading) -> float:
     """Return the limit at the greatest weight, in HOLD at the least."""
-    limit = row.value - row.over if standing.tables or standing.fixed is None else standing.fixed
+    limit = full_limit(standing, row.value, row.over)
     return limit + standing.light_gain if state is State.HOLD else limit
 
 

@@ -29,7 +29,7 @@ from airfield_board.limits.states import State
 from airfield_board.observations.conditions import ConditionsTable
 from airfield_board.units import EQUAL, HOUR_US, MINUTE_US
 
-__all__ = ["Episode", "JudgedRows", "LimitChange", "LimitJudge", "LimitMemory", "compared"]
+__all__ = ["Episode", "JudgedRows", "LimitChange", "LimitJudge", "LimitMemory"]
 
 RESTART_OFF_DELAY_US = HOUR_US
 """Least off-delay of a hold that a confirmed step or a gap of over 3 h has passed over."""
@@ -98,7 +98,7 @@ class LimitJudge:
         """Return the row at which a running off-delay is over, not before ``following``; none: the number of rows."""
         if self.memory.run_us is None:
             return len(time_us)
-        end_us = self.memory.run_us + self._delay_us(standing)
+        end_us = self.memory.run_us + self.needed_delay_us(standing)
         return max(following, int(np.searchsorted(time_us, end_us, side="left")))
 
     def _take(
@@ -222,7 +222,7 @@ class LimitJudge:
             memory.run_us = None
         elif memory.run_us is None:
             memory.run_us = row.time_us
-        over_long_enough = memory.run_us is not None and row.time_us >= memory.run_us + self._delay_us(standing)
+        over_long_enough = memory.run_us is not None and row.time_us >= memory.run_us + self.needed_delay_us(standing)
         if over_long_enough and not resumed:
             self._end_episode(row.time_us)
             self._settle(plain(standing, row), standing, row)
@@ -294,7 +294,8 @@ class LimitJudge:
 
     # -- what follows
 
-    def _delay_us(self, standing: Standing) -> int:
+    def needed_delay_us(self, standing: Standing) -> int:
+        """How long the present hold needs at or below its clearing value."""
         return max(standing.off_delay_us, RESTART_OFF_DELAY_US) if self.memory.slow else standing.off_delay_us
 
     def _enter_hold(self, standing: Standing, row: Reading) -> None:
@@ -392,8 +393,4 @@ class LimitJudge:
         """When the rules would end the hold if the present run went on; None without a run."""
         if not self.memory.held or self.memory.run_us is None:
             return None
-        return self.memory.run_us + self._delay_us(standing)
-
-    def needed_delay_us(self, standing: Standing) -> int:
-        """How long the present hold needs at or below its clearing value."""
-        return self._delay_us(standing)
+        return self.memory.run_us + self.needed_delay_us(standing)

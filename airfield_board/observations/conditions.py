@@ -5,7 +5,7 @@ which rows); a row whose altimeter setting, temperature or elevation is NaN or a
 with no limit.
 """
 
-from dataclasses import dataclass
+from dataclasses import dataclass, fields
 from typing import Final, Protocol
 
 import numpy as np
@@ -115,6 +115,10 @@ class ConditionsTable:
 
     def __len__(self) -> int:
         return len(self.temperature_c)
+
+    def take(self, rows: NDArray[np.int64]) -> "ConditionsTable":
+        """Return the rows of the given indices, in the order given."""
+        return ConditionsTable(**{column.name: getattr(self, column.name)[rows] for column in fields(self)})
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)

@@ -1,12 +1,12 @@
 """From the judge's memory to what a page shows; nothing is decided here."""
 
 from collections.abc import Sequence
-from datetime import datetime, timedelta
+from datetime import datetime
 from zoneinfo import ZoneInfo
 
 import numpy as np
 
-from airfield_board.clock import local_day, start_of_local_day, time_from_us, us_from_time
+from airfield_board.clock import local_day_bounds, time_from_us, us_from_time
 from airfield_board.configuration.model import Aircraft, Operation
 from airfield_board.limits.in_force import LimitKey
 from airfield_board.limits.states import State, worst
@@ -52,9 +52,7 @@ def board_state(judge: Judge, record: DayRecord, mode: Mode, now: datetime) -> B
     """
     profile = judge.profile
     zone = ZoneInfo(profile.time_zone)
-    today = local_day(now, zone)
-    day_start_us = us_from_time(start_of_local_day(today, zone))
-    day_end_us = us_from_time(start_of_local_day(today + timedelta(days=1), zone))
+    day_start_us, day_end_us = (us_from_time(bound) for bound in local_day_bounds(now, zone))
     air = _air(judge, record, now)
     curve = record.curve(day_start_us, day_end_us)
 

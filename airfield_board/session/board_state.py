@@ -3,6 +3,7 @@
 Numbers are unrounded and end in their unit; times are aware UTC. Missing is None.
 """
 
+from collections.abc import Iterable
 from dataclasses import dataclass
 from datetime import datetime
 from enum import StrEnum
@@ -12,6 +13,7 @@ import numpy as np
 from numpy.typing import NDArray
 
 from airfield_board.configuration.model import Instruments, Quantity, Unit
+from airfield_board.configuration.setting_changes import SettingChange as SettingChange
 from airfield_board.limits.states import State
 from airfield_board.observations.observation import DewpointUse
 
@@ -301,7 +303,7 @@ class DayCurve:
 
 
 class Weight(StrEnum):
-    """How loud a message is."""
+    """How loud a message is; the louder ones come later."""
 
     NOTE = "note"
     WARNING = "warning"
@@ -326,13 +328,9 @@ class Message:
     time: datetime | None = None
 
 
-@dataclass(frozen=True, slots=True, kw_only=True)
-class SettingChange:
-    """A setting that waits for acceptance, side by side with the one in force."""
-
-    where: str
-    in_force: str
-    waiting: str
+def loudest_first(messages: Iterable[Message]) -> tuple[Message, ...]:
+    """Return messages in the order of their weights, alarms first."""
+    return tuple(sorted(messages, key=lambda message: list(Weight).index(message.weight), reverse=True))
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)

@@ -14,9 +14,7 @@ from airfield_board.errors import UserError
 from airfield_board.observations.conditions import ConditionsTable, conditions_of
 from airfield_board.observations.formats.reading import ReadResult
 from airfield_board.observations.observation import NO_TIME_US, ObservationTable, Verdict
-from airfield_board.observations.quality import check
-from airfield_board.observations.quality_judgement import QualityRules
-from airfield_board.observations.quality_memory import QualityMemory
+from airfield_board.observations.quality import QualityMemory, QualityRules, check
 from airfield_board.units import ft_from_m
 
 READ = ("time", "altimeter_hpa", "temperature_c", "dewpoint_c", "elevation_ft")

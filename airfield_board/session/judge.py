@@ -1,7 +1,7 @@
 """Rows in, verdicts out: quality, conditions and rules as one step, for every use of the program alike."""
 
 from collections.abc import Mapping, Sequence
-from dataclasses import asdict, dataclass, fields, replace
+from dataclasses import asdict, dataclass, fields
 from zoneinfo import ZoneInfo
 
 import numpy as np
@@ -163,7 +163,7 @@ class Judge:
             valid=valid,
             restart=checked.restart[chosen],
             stale_at_us=self._stale_moments(time_us, valid, last_valid_us),
-            conditions=conditions if len(chosen) == len(checked) else _taken(conditions, chosen),
+            conditions=conditions if len(chosen) == len(checked) else conditions.take(chosen),
         )
         for limit in self.limits.values():
             limit.judge(rows)
@@ -321,11 +321,6 @@ def _current_row(checked: CheckedTable, row: int) -> CurrentRow:
         dewpoint_resolution_c=float(rows.dewpoint_resolution_c[row]),
         initials=rows.initials,
     )
-
-
-def _taken(conditions: ConditionsTable, rows: NDArray[np.int64]) -> ConditionsTable:
-    chosen = {field.name: getattr(conditions, field.name)[rows] for field in fields(conditions)}
-    return replace(conditions, **chosen)
 
 
 def _mapping(value: object) -> Mapping[str, object]:

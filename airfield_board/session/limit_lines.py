@@ -10,9 +10,10 @@ import numpy as np
 from airfield_board.clock import time_from_us
 from airfield_board.configuration.differences import difference_in_unit
 from airfield_board.configuration.model import Aircraft, Operation, Quantity, Unit
+from airfield_board.limits.comparison import compared, full_limit
 from airfield_board.limits.in_force import LimitKey, Standing, weight_in_lb
 from airfield_board.limits.kinds import KINDS, Air, axis_ft
-from airfield_board.limits.rules import LimitJudge, compared
+from airfield_board.limits.rules import LimitJudge
 from airfield_board.limits.states import State
 from airfield_board.observations.conditions import ConditionsTable, StandardUncertainties
 from airfield_board.session.board_state import Clearing, LimitLine, Span
@@ -176,7 +177,7 @@ def _numbers_now(standing: Standing, conditions: ConditionsTable) -> _Now | None
     value, over, _ = (float(column[0]) for column in compared(standing, conditions, 0, 1))
     if np.isnan(over):
         return None
-    full = value - over if standing.tables or standing.fixed is None else standing.fixed
+    full = full_limit(standing, value, over)
     return _Now(full, full + standing.light_gain, value)
 
 

@@ -7,7 +7,7 @@ from zoneinfo import ZoneInfo
 
 import numpy as np
 
-from airfield_board.clock import local_day, start_of_local_day, us_from_time
+from airfield_board.clock import local_day_bounds, us_from_time
 from airfield_board.configuration.model import Quantity
 from airfield_board.errors import FileFaults
 from airfield_board.history.records import RecordKind, StoredRecord
@@ -143,7 +143,7 @@ def restored(history: History | None, in_force: Airfield, now: datetime) -> Star
     judge = _judge(history, in_force)
     _fill_day(day, history, judge, now_us)
     zone = ZoneInfo(in_force[0].time_zone)
-    _fill_status(status, history, us_from_time(start_of_local_day(local_day(now, zone), zone)) - STATUS_KEPT_US)
+    _fill_status(status, history, us_from_time(local_day_bounds(now, zone)[0]) - STATUS_KEPT_US)
     read_back_to_us = now_us - KEPT_US
     newest = history.newest(RecordKind.OBSERVATION)
     if newest is not None and isinstance(recorded_us := newest.body.get("time"), int):

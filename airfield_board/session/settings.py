@@ -10,9 +10,9 @@ from airfield_board.clock import local_day
 from airfield_board.configuration.model import Fleet, Profile
 from airfield_board.configuration.profile import load_airfield
 from airfield_board.configuration.reload import compare_and_merge
+from airfield_board.configuration.setting_changes import SettingChange
 from airfield_board.configuration.yaml_reader import LARGEST_FILE_BYTES
 from airfield_board.errors import FileFaults
-from airfield_board.session.board_state import SettingChange
 
 Airfield: TypeAlias = tuple[Profile, Fleet]
 
@@ -45,9 +45,7 @@ class Settings:
         merge = compare_and_merge(self.in_force, read, today=local_day(at, ZoneInfo(self.in_force[0].time_zone)))
         self.in_force = merge.effective
         self.read = read
-        self.waiting = tuple(
-            SettingChange(where=each.where, in_force=each.in_force, waiting=each.waiting) for each in merge.waiting
-        )
+        self.waiting = merge.waiting
 
     def accept(self) -> None:
         """Put the version read last in force as it stands."""

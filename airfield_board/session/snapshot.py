@@ -8,7 +8,7 @@ from zoneinfo import ZoneInfo
 import numpy as np
 import platformdirs
 
-from airfield_board.clock import local_day, start_of_local_day, us_from_time
+from airfield_board.clock import local_day_bounds, us_from_time
 from airfield_board.configuration.model import Profile
 from airfield_board.configuration.profile import load_airfield
 from airfield_board.errors import UserError
@@ -141,6 +141,6 @@ def _joined(one: ObservationTable, other: ObservationTable) -> ObservationTable:
 
 def _with_changes(state: BoardState, start: Start, profile: Profile, when: datetime) -> BoardState:
     zone = ZoneInfo(profile.time_zone)
-    day_start = start_of_local_day(local_day(when, zone), zone)
+    day_start = local_day_bounds(when, zone)[0]
     changes = tuple(change for change in start.status.newest_first(day_start) if change.time <= when)
     return replace(state, changes=changes)

@@ -136,15 +136,15 @@ class StatusLog:
     def __init__(self) -> None:
         self._changes: dict[int, StatusChange] = {}
 
-    def add(self, number: int, body_change: RowChange) -> None:
+    def add(self, number: int, change: RowChange) -> None:
         """Add a change under its record's number."""
         self._changes[number] = StatusChange(
             number=number,
-            time=time_from_us(body_change.time_us),
-            state=body_change.state,
-            was=body_change.was,
-            label=body_change.label,
-            needs_acknowledgement=body_change.scope == CURRENT and body_change.state in _ASKING,
+            time=time_from_us(change.time_us),
+            state=change.state,
+            was=change.was,
+            label=change.label,
+            needs_acknowledgement=change.scope == CURRENT and change.state in _ASKING,
         )
 
     def acknowledge(self, numbers: Iterable[int], initials: str, at: datetime) -> tuple[int, ...]:

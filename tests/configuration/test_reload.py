@@ -5,7 +5,7 @@ import pytest
 
 from airfield_board.configuration.model import Fleet, Limit, Profile
 from airfield_board.configuration.reload import compare_and_merge
-from airfield_board.configuration.setting_changes import TightenedChange, WaitingChange
+from airfield_board.configuration.setting_changes import SettingChange, TightenedChange
 from tests.configuration.examples import FLEET, PROFILE, SHORT_PROFILE, fleet_of, read_fleet, read_profile
 
 Pair = tuple[Profile, Fleet]
@@ -23,8 +23,8 @@ def changed(text: str, *changes: tuple[str, str]) -> str:
     return text
 
 
-def waiting(where: str, in_force: str, to_come: str) -> WaitingChange:
-    return WaitingChange(where=where, in_force=in_force, waiting=to_come)
+def waiting(where: str, in_force: str, to_come: str) -> SettingChange:
+    return SettingChange(where=where, in_force=in_force, waiting=to_come)
 
 
 def tightened(where: str, was: str, now: str) -> TightenedChange:

@@ -334,3 +334,11 @@ def test_hold_temperature_of_a_temperature() -> None:
     # 45 °C less the expanded uncertainty 0.503322 °C.
     assert hold_temperature_for_temperature(45.0, readings) == pytest.approx(44.496678, abs=1e-6)
     np.testing.assert_allclose(hold_temperature_for_temperature(np.array([40.0, 45.0])), [40.0, 45.0])
+
+
+def test_rows_are_taken_in_the_order_given() -> None:
+    three = table_of((1013.0, 20.0, 10.0), (1014.0, 25.0, 11.0), (1015.0, 30.0, 12.0))
+    taken = three.take(np.array([2, 0]))
+    for column in fields(ConditionsTable):
+        whole, part = getattr(three, column.name), getattr(taken, column.name)
+        assert part.tolist() == [whole[2], whole[0]]
