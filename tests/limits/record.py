@@ -81,7 +81,7 @@ def limit_of(
     off_delay_min: float = 10.0,
     guarded: bool = False,
 ) -> Limit:
-    """The limit of the contract's example, with the program's own bands."""
+    """An invented limit, with the program's own bands."""
     return Limit(
         quantity=quantity,
         unit=unit,

@@ -1,4 +1,4 @@
-"""The rules once more, small and slow: one limit, one row at a time, in the words of section 4 of the contract.
+"""The rules once more, small and slow: one limit, one row at a time, in the words in which they were laid down.
 
 Written from the text to be compared with the engine. It knows nothing of arrays, memories or stretches.
 """

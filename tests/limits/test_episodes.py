@@ -1,4 +1,4 @@
-"""Exceedance episodes: from entering hold to leaving it (contract, section 4)."""
+"""Exceedance episodes: from entering hold to leaving it."""
 
 from dataclasses import replace
 from datetime import date

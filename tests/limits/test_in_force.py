@@ -1,4 +1,4 @@
-"""Which entries count when, and as which numbers (contract, section 3, "Fleet")."""
+"""Which entries count when, and as which numbers."""
 
 from dataclasses import replace
 from datetime import date, datetime, timedelta

@@ -1,4 +1,4 @@
-"""The rules of section 4 of the contract, sentence by sentence; the numbers are made by hand.
+"""The rules, sentence by sentence; the numbers are made by hand.
 
 The limit is 6,350 ft unless a test says otherwise, near band 500 ft, deadband 150 ft, off-delay 10 min: GO down from
 5,850 ft, from NEAR LIMIT back to GO at 5,700 ft, off hold at 6,200 ft.
@@ -270,7 +270,7 @@ class TestNearToGo:
 
 
 TABLE = by_weight({1950: 7400, 2200: 6950, 2450: 6550})
-"""The contract's tow plane: 6,550 ft at the greatest weight, 7,400 ft at the least."""
+"""An invented tow plane: 6,550 ft at the greatest weight, 7,400 ft at the least."""
 
 
 class TestLimitByWeight:
@@ -402,7 +402,7 @@ class TestStale:
 
 
 class TestGuardedAcceptance:
-    """Value + expanded uncertainty is compared, and every value and margin is that one (sections 2 and 3)."""
+    """Value + expanded uncertainty is compared, and every value and margin is that one."""
 
     LIMIT = limit_of(guarded=True)
 

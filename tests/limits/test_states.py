@@ -1,4 +1,4 @@
-"""Severity, worst first: hold, no data, reduced, near, go (contract, section 1)."""
+"""Severity, worst first: hold, no data, reduced, near, go."""
 
 import pytest
 

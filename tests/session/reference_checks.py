@@ -1,4 +1,4 @@
-"""The quality checks once more, small and slow, one row at a time, from the table of section 4 of the contract.
+"""The quality checks once more, small and slow, one row at a time, from their table.
 
 Written from the text to be compared with the engine. Rows must come in order of time, no two of one time.
 """

@@ -65,7 +65,7 @@ def table_of(rows: Sequence[Sent]) -> ObservationTable:
 def profile_of(
     *, stale_after_min: float = 15.0, humidity: Humidity = "auto", elevation_m: float = ELEVATION_M
 ) -> Profile:
-    """A profile with the program's own instruments (contract, section 3; 0.01 inHg are 0.3386 hPa)."""
+    """A profile with the program's own instruments (0.01 inHg are 0.3386 hPa)."""
     return Profile(
         path=Path("profile.yaml"),
         text="",
