@@ -130,20 +130,18 @@ def restored(history: History | None, in_force: Airfield, now: datetime) -> Star
         Where the history cannot be read.
     """
     now_us = us_from_time(now)
-    day, status = DayRecord(), StatusLog()
+    day = DayRecord()
     if history is None:
         return Start(
             judge=Judge(*in_force),
             day=day,
-            status=status,
+            status=StatusLog(),
             recall=_nothing,
             read_back_to_us=now_us - KEPT_US,
             doubt="",
         )
     judge = _judge(history, in_force)
     _fill_day(day, history, judge, now_us)
-    zone = ZoneInfo(in_force[0].time_zone)
-    _fill_status(status, history, us_from_time(local_day_bounds(now, zone)[0]) - STATUS_KEPT_US)
     read_back_to_us = now_us - KEPT_US
     newest = history.newest(RecordKind.OBSERVATION)
     if newest is not None and isinstance(recorded_us := newest.body.get("time"), int):
@@ -151,7 +149,7 @@ def restored(history: History | None, in_force: Airfield, now: datetime) -> Star
     return Start(
         judge=judge,
         day=day,
-        status=status,
+        status=status_from_history(history, ZoneInfo(in_force[0].time_zone), now),
         recall=_recall_from(history),
         read_back_to_us=read_back_to_us,
         doubt=_doubt(history),
@@ -221,7 +219,16 @@ def _fill_day(day: DayRecord, history: History, judge: Judge, now_us: int) -> No
             day.add_state(key, limit.memory.since_us, limit.memory.state, None)
 
 
-def _fill_status(status: StatusLog, history: History, since_us: int) -> None:
+def status_from_history(history: History, zone: ZoneInfo, now: datetime) -> StatusLog:
+    """Return the status changes of the local day, and those that still wait for acknowledgement.
+
+    Raises
+    ------
+    UserError
+        Where the history cannot be read.
+    """
+    status = StatusLog()
+    since_us = us_from_time(local_day_bounds(now, zone)[0]) - STATUS_KEPT_US
     waiting = history.open_changes(scope=CURRENT)
     lately = history.changes_between(since_us, END_US)
     records = {record.seq: record for record in (*waiting, *lately) if record.body.get("scope") in (CURRENT, PAST)}
@@ -229,6 +236,7 @@ def _fill_status(status: StatusLog, history: History, since_us: int) -> None:
         status.add(number, _row_change(record))
     for number, found in history.acknowledgements(records).items():
         status.acknowledge((number,), found.initials, found.at)
+    return status
 
 
 def _row_change(record: StoredRecord) -> RowChange:

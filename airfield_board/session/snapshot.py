@@ -19,8 +19,14 @@ from airfield_board.session.board_state import BoardState, Mode
 from airfield_board.session.intake import Intake
 from airfield_board.session.recording import place_of_history
 from airfield_board.session.records import empty_table, table_from_records
-from airfield_board.session.restoring import Start, restored, settings_at_start, settings_from_history
+from airfield_board.session.restoring import (
+    restored,
+    settings_at_start,
+    settings_from_history,
+    status_from_history,
+)
 from airfield_board.session.settings import Airfield
+from airfield_board.session.status import StatusLog
 from airfield_board.session.whole_files import assess, read_for
 
 _PAST_READ_BACK = timedelta(days=10)
@@ -91,7 +97,7 @@ def _present(airfield: Airfield, table: ObservationTable, history: History | Non
     air = judged.conditions
     start.day.add_rows(judged.checked, air.density_altitude_ft, air.uncertainty_ft, now_us)
     start.day.add_changes(judged.changes)
-    return _with_changes(board_state(start.judge, start.day, Mode.LIVE, now), start, in_force[0], now)
+    return _with_changes(board_state(start.judge, start.day, Mode.LIVE, now), start.status, in_force[0], now)
 
 
 def _past(airfield: Airfield, table: ObservationTable, history: History | None, at: datetime) -> BoardState:
@@ -105,7 +111,8 @@ def _past(airfield: Airfield, table: ObservationTable, history: History | None, 
     fresh = [row for row in range(len(table)) if table.raw[row] not in known]
     together = _joined(recorded, table.take(np.array(fresh, dtype=np.int64)))
     state = assess(*airfield, together, at, Mode.PAST)
-    return _with_changes(state, restored(history, airfield, at), airfield[0], at)
+    status = status_from_history(history, ZoneInfo(airfield[0].time_zone), at)
+    return _with_changes(state, status, airfield[0], at)
 
 
 def _in_force(airfield: Airfield, history: History, at: datetime) -> Airfield:
@@ -139,8 +146,8 @@ def _joined(one: ObservationTable, other: ObservationTable) -> ObservationTable:
     )
 
 
-def _with_changes(state: BoardState, start: Start, profile: Profile, when: datetime) -> BoardState:
+def _with_changes(state: BoardState, status: StatusLog, profile: Profile, when: datetime) -> BoardState:
     zone = ZoneInfo(profile.time_zone)
     day_start = local_day_bounds(when, zone)[0]
-    changes = tuple(change for change in start.status.newest_first(day_start) if change.time <= when)
+    changes = tuple(change for change in status.newest_first(day_start) if change.time <= when)
     return replace(state, changes=changes)

@@ -8,7 +8,7 @@ from zoneinfo import ZoneInfo
 
 import numpy as np
 
-from airfield_board.clock import local_day, start_of_local_day, time_from_us
+from airfield_board.clock import local_day_bounds, time_from_us
 from airfield_board.session.board_state import BoardState
 from airfield_board.units import ft_from_m
 from airfield_board.window import formatting
@@ -149,9 +149,7 @@ def day_bounds(state: BoardState, now: datetime, zone: ZoneInfo) -> tuple[dateti
 
     The early morning is left out where nothing was on hold in it.
     """
-    day = local_day(now, zone)
-    first = start_of_local_day(day, zone)
-    last = start_of_local_day(day + timedelta(days=1), zone)
+    first, last = local_day_bounds(now, zone)
     six = _local_hour(first, last, 6, zone)
     nine_in_the_evening = _local_hour(first, last, 21, zone)
     starts = [six, _full_hour(now - _HOUR, zone)]

@@ -1,7 +1,7 @@
 """CSV with a header."""
 
 import csv
-from dataclasses import dataclass
+from dataclasses import dataclass, fields
 
 import numpy as np
 from numpy.typing import NDArray
@@ -227,19 +227,8 @@ def _careful(
     if kept.all():
         return columns
     place = np.cumsum(kept) - 1
-    return Columns(
-        time_us=columns.time_us[kept],
-        local=columns.local[kept],
-        altimeter_hpa=columns.altimeter_hpa[kept],
-        temperature_c=columns.temperature_c[kept],
-        dewpoint_c=columns.dewpoint_c[kept],
-        elevation_m=columns.elevation_m[kept],
-        temperature_resolution_c=columns.temperature_resolution_c[kept],
-        dewpoint_resolution_c=columns.dewpoint_resolution_c[kept],
-        start=columns.start[kept],
-        end=columns.end[kept],
-        faults={int(place[row]): fault for row, fault in columns.faults.items()},
-    )
+    arrays = {part.name: getattr(columns, part.name)[kept] for part in fields(Columns) if part.name != "faults"}
+    return Columns(**arrays, faults={int(place[row]): fault for row, fault in columns.faults.items()})
 
 
 def read_line(line: bytes, header: CsvHeader) -> ReadRow | None:
@@ -250,17 +239,17 @@ def read_line(line: bytes, header: CsvHeader) -> ReadRow | None:
     if "\r" in text:
         return ReadRow(fault="a carriage return stands in the middle of the row")
     try:
-        fields = [item.strip(" \t") for item in split_csv(text)]
+        items = [item.strip(" \t") for item in split_csv(text)]
     except csv.Error:
         return ReadRow(fault="quotes do not match, or a field is too long")
-    if TIME in fields and not KEYS.keys().isdisjoint(fields):
-        return ReadRow(fault="the header again") if tuple(fields) == header.names else None
+    if TIME in items and not KEYS.keys().isdisjoint(items):
+        return ReadRow(fault="the header again") if tuple(items) == header.names else None
     layout = header.layout
-    if len(fields) != layout.width:
-        amount = "many" if len(fields) > layout.width else "few"
-        fault = f"too {amount} fields: {len(fields)}, where the header has {layout.width}"
+    if len(items) != layout.width:
+        amount = "many" if len(items) > layout.width else "few"
+        fault = f"too {amount} fields: {len(items)}, where the header has {layout.width}"
         # What stands before a missing or surplus field is sure of its column only at the beginning of the row.
-        time_us, local, unreadable = time_of(fields[0]) if layout.time == 0 else (NO_TIME_US, False, "")
+        time_us, local, unreadable = time_of(items[0]) if layout.time == 0 else (NO_TIME_US, False, "")
         return ReadRow(time_us=time_us, local=local, fault=joined(fault, unreadable))
-    texts = {header.names[place]: fields[place] for place in (*layout.needed, *layout.optional)}
-    return row_of(fields[layout.time], texts)
+    texts = {header.names[place]: items[place] for place in (*layout.needed, *layout.optional)}
+    return row_of(items[layout.time], texts)
