@@ -7,8 +7,8 @@ from PySide6.QtCore import QPointF, QRectF, Qt
 from PySide6.QtGui import QColor, QPainter, QPen
 from PySide6.QtWidgets import QWidget
 
+from airfield_board.configuration.differences import difference_in_unit
 from airfield_board.limits.states import State
-from airfield_board.units import m_from_ft
 from airfield_board.window.fonts import MEDIUM
 from airfield_board.window.formatting import number
 from airfield_board.window.lettering import Lettering, width_of
@@ -17,6 +17,7 @@ from airfield_board.window.palette import LIGHT, Palette
 from airfield_board.window.plot import PixelPlot, paint_gap
 
 _HATCH_PX = 11.0
+_NAME_GAP_PX = 14.0
 _GROUPS = ((State.GO,), (State.NEAR, State.REDUCED), (State.HOLD,))
 
 
@@ -73,8 +74,9 @@ class MarginPlot(PixelPlot):
         return colours.near_line if state in (State.NEAR, State.REDUCED) else colours.soft_ink
 
     def paint_under(self, painter: QPainter) -> None:
-        """Paint the near band, the HOLD side, and the hours."""
+        """Paint the near band, the HOLD side, their names, and the hours: all under the lines, which nothing hides."""
         scene, colours = self._scene_shown, self._colours
+        self.painted = []
         if scene is None:
             return
         width, height = float(self.width()), float(self.height())
@@ -97,11 +99,11 @@ class MarginPlot(PixelPlot):
             if mark.named:
                 painter.fillRect(QRectF(round(scene.time.px(mark.when)), 0, 1, height), QColor(colours.hairline))
         painter.fillRect(QRectF(0, round(zero) - 1, width, 2), QColor(colours.ink))
+        self._paint_names(painter, scene, zero)
 
     def paint_over(self, painter: QPainter) -> None:
-        """Paint the margins now, now itself, and the names of the two sides."""
+        """Paint the margins now, and now itself."""
         scene, colours = self._scene_shown, self._colours
-        self.painted = []
         if scene is None:
             return
         painter.setRenderHint(QPainter.RenderHint.Antialiasing)
@@ -112,26 +114,36 @@ class MarginPlot(PixelPlot):
         painter.fillRect(QRectF(round(now) - 0.75, 0, 1.5, self.height()), QColor(colours.ink))
         if scene.observed is not None:
             self._paint_now(painter, scene, scene.time.px(scene.observed))
+
+    def _paint_names(self, painter: QPainter, scene: MarginScene, zero: float) -> None:
         letters = Lettering(painter, self.painted)
-        zero = scene.margin.px(0.0)
         if self.height() - zero > 26:
-            self._name(painter, letters, self.height() - 12.0, "HOLD side: limit exceeded", colours.tint_hold)
+            names = ("HOLD side: limit exceeded", "HOLD side")
+            self._name(painter, letters, self.height() - 12.0, names, self._colours.tint_hold)
         near = scene.near_ft
         if near is not None and zero - scene.margin.px(near) > 20:
-            top = scene.margin.px(near)
-            in_unit = near if scene.unit == "ft" else m_from_ft(near)
-            self._name(
-                painter, letters, top + 18.0, f"near limit, to {number(in_unit)} {scene.unit}", colours.tint_near
-            )
+            baseline = scene.margin.px(near) + 18.0
+            upper = difference_in_unit(near, "ft", scene.unit)
+            names = (f"near limit, to {number(upper)} {scene.unit}", "near limit")
+            self._name(painter, letters, baseline, names, self._colours.tint_near)
 
-    def _name(self, painter: QPainter, letters: Lettering, baseline: float, text: str, ground: str) -> None:
-        """Write the name of a side where no lines are: ahead of now, late in the day at the left."""
+    def _name(
+        self, painter: QPainter, letters: Lettering, baseline: float, names: tuple[str, str], ground: str
+    ) -> None:
+        """Name a side where no lines end: ahead of now, late in the day at the left; else a shorter one."""
         scene = self._scene_shown
-        width = width_of(text, 13, MEDIUM)
-        ahead = scene is not None and scene.time.px(scene.now) + width + 40 < self.width()
-        left = self.width() - width - 12 if ahead else 12.0
-        painter.fillRect(QRectF(left - 4, baseline - 14, width + 8, 19), QColor(ground))
-        letters.text((left, baseline), text, self._colours.ink, 13, MEDIUM)
+        if scene is None:
+            return
+        now = scene.time.px(scene.now)
+        last = scene.time.px(scene.observed) if scene.observed is not None else now
+        for text in names:
+            width = width_of(text, 13, MEDIUM)
+            ahead, behind = self.width() - width - 12, 12.0
+            if ahead - _NAME_GAP_PX > now or behind + width + _NAME_GAP_PX < last:
+                left = ahead if ahead - _NAME_GAP_PX > now else behind
+                painter.fillRect(QRectF(left - 4, baseline - 14, width + 8, 19), QColor(ground))
+                letters.text((left, baseline), text, self._colours.ink, 13, MEDIUM)
+                return
 
     def _paint_now(self, painter: QPainter, scene: MarginScene, x: float) -> None:
         colours = self._colours

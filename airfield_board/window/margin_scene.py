@@ -3,6 +3,7 @@
 from collections.abc import Sequence
 from dataclasses import dataclass
 from datetime import datetime
+from typing import Literal
 
 import numpy as np
 from numpy.typing import NDArray
@@ -68,7 +69,7 @@ class MarginScene:
     observed: datetime | None
     now: datetime
     gap: bool
-    unit: str
+    unit: Literal["ft", "m"]
 
 
 def plottable(row: OperationLine) -> bool:

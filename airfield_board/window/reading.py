@@ -7,6 +7,7 @@ import math
 from dataclasses import dataclass, replace
 from datetime import datetime, timedelta
 from enum import Enum
+from typing import Literal
 from zoneinfo import ZoneInfo
 
 from airfield_board.limits.states import State
@@ -140,11 +141,12 @@ class View:
         return tuple(frame for frame in Frame if wanted.get(frame, modes.get(state.mode) is frame))
 
     @property
-    def column_unit(self) -> str:
+    def column_unit(self) -> Literal["ft", "m"]:
         """Unit of the columns of limits and margins: the airfield's, unless all limits are in the other."""
         own = self.state.airfield.altitude_unit
-        used = {row.shown.unit for row in self.state.operations if row.shown is not None} & {"ft", "m"}
-        return own if own in used or not used else used.pop()
+        other: Literal["ft", "m"] = "m" if own == "ft" else "ft"
+        used = {row.shown.unit for row in self.state.operations if row.shown is not None}
+        return other if other in used and own not in used else own
 
     @property
     def live(self) -> bool:

@@ -236,3 +236,17 @@ def test_the_words_of_an_empty_list_are_not_struck_through_by_the_level(qtbot: Q
     assert plan.level_px is not None
     level_px = view.board.rows.mapTo(view, QPointF(0, plan.level_px)).y()
     assert not said.ink.top() - 2 < level_px < said.ink.bottom() + 2
+
+
+@pytest.mark.parametrize("size_px", [(1200, 760), (1440, 900), (1920, 1080)], ids=str)
+def test_the_names_of_the_margins_sides_keep_off_the_lines(qtbot: QtBot, size_px: tuple[int, int]) -> None:
+    for hour in (6.3, 11.0, 13.0 + 20 / 60, 15.0, 18.0, 20.5, 23.5):
+        state = states.board(15, hour)
+        view, _image = shown_view(state, size_px=size_px, page=PageName.MARGIN)
+        qtbot.addWidget(view)
+        assert state.observation is not None
+        now_px = next(one for one in placed_of(view, "MarginPage") if one.text.text.startswith("now ")).ink.center().x()
+        names = [one for one in placed_of(view, "MarginPlot") if one.text.text.startswith(("near limit", "HOLD side"))]
+        assert len(names) == 2
+        for name in names:
+            assert name.ink.left() > now_px + 10 or name.ink.right() < now_px - 14
