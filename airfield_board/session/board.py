@@ -54,7 +54,8 @@ def board_state(judge: Judge, record: DayRecord, mode: Mode, now: datetime) -> B
     zone = ZoneInfo(profile.time_zone)
     day_start_us, day_end_us = (us_from_time(bound) for bound in local_day_bounds(now, zone))
     air = _air(judge, record, now)
-    curve = record.curve(day_start_us, day_end_us)
+    stale_after_us = round(profile.observations.stale_after_min * MINUTE_US)
+    curve = record.curve(day_start_us, day_end_us, stale_after_us)
 
     def spans(key: LimitKey) -> tuple[Span, ...]:
         return record.spans(key, day_start_us, day_end_us)

@@ -293,6 +293,8 @@ class DayCurve:
         Of each.
     day_start_us, day_end_us
         First moment of the local day and of the next.
+    unbroken_us
+        Longest time between two observations that hang together; over it there was no data in between.
     """
 
     time_us: NDArray[np.int64]
@@ -300,6 +302,7 @@ class DayCurve:
     uncertainty_ft: NDArray[np.float64]
     day_start_us: int
     day_end_us: int
+    unbroken_us: int
 
 
 class Weight(StrEnum):

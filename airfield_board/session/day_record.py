@@ -86,8 +86,8 @@ class DayRecord:
             while len(changes) > 1 and changes[1][0] < when_us:
                 del changes[0]
 
-    def curve(self, day_start_us: int, day_end_us: int) -> DayCurve:
-        """Return the observations of a local day."""
+    def curve(self, day_start_us: int, day_end_us: int, unbroken_us: int) -> DayCurve:
+        """Return the observations of a local day; those further apart than ``unbroken_us`` do not hang together."""
         first, last = np.searchsorted(self._time_us, [day_start_us, day_end_us])
         curve = DayCurve(
             time_us=self._time_us[first:last].copy(),
@@ -95,6 +95,7 @@ class DayRecord:
             uncertainty_ft=self._uncertainty_ft[first:last].copy(),
             day_start_us=day_start_us,
             day_end_us=day_end_us,
+            unbroken_us=unbroken_us,
         )
         for column in (curve.time_us, curve.density_altitude_ft, curve.uncertainty_ft):
             column.flags.writeable = False

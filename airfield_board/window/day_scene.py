@@ -8,7 +8,6 @@ from numpy.typing import NDArray
 
 from airfield_board.clock import us_from_time
 from airfield_board.limits.states import State
-from airfield_board.observations.quality_memory import LONGEST_GAP_US
 from airfield_board.session.board_state import DayCurve, Span
 from airfield_board.window.axes import AltitudeAxis, HourMark, TimeAxis
 
@@ -80,7 +79,7 @@ def stretches_of(curve: DayCurve, axis: TimeAxis) -> list[Stretch]:
         return []
     value, spread = curve.density_altitude_ft[usable], curve.uncertainty_ft[usable]
     seconds = (time_us - us_from_time(axis.start)) / 1e6
-    breaks = np.flatnonzero(np.diff(time_us) > LONGEST_GAP_US) + 1
+    breaks = np.flatnonzero(np.diff(time_us) > curve.unbroken_us) + 1
     px_per_s = (axis.right_px - axis.left_px) / (axis.end - axis.start).total_seconds()
     parts = []
     for piece in np.split(np.arange(len(seconds)), breaks):

@@ -234,6 +234,7 @@ def board(
         uncertainty_ft=np.full(len(ticks), 58.0),
         day_start_us=us_from_time(local(0.0)),
         day_end_us=us_from_time(local(24.0)),
+        unbroken_us=3_600_000_000,
     )
     peak = int(np.argmax(curve.density_altitude_ft))
     rows = [
