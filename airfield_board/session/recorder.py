@@ -96,9 +96,7 @@ class Recorder:
         self._source = _source(self._settings.in_force[0])
         # The settings may have changed while no recorder ran: what they tighten must act before the first poll.
         changes, ended = self._judge.change_settings(*self._settings.in_force, us_from_time(now))
-        settled = not self._settings.waiting
-        records = configuration_records(*airfield, now, settled=settled) if new_version else []
-        self._write(records, changes, ended, now)
+        self._write(self._version_records(now) if new_version else [], changes, ended, now)
 
     def _begin_again(self, now: datetime) -> None:
         """Go on where a history ends that could not be opened before; it knows of holds that nothing else tells of.
@@ -293,8 +291,11 @@ class Recorder:
                 self._write([Record(kind=RecordKind.MESSAGE, at=now, body=body)], (), (), now)
         if reading.airfield is not None:
             self._settings.take(reading.airfield, now)
-            settled = not self._settings.waiting
-            self._put_in_force(configuration_records(*reading.airfield, now, settled=settled), now)
+            self._put_in_force(self._version_records(now), now)
+
+    def _version_records(self, now: datetime) -> list[Record]:
+        settings = self._settings
+        return configuration_records(*settings.read, now, waiting=settings.waiting, tightened=settings.tightened)
 
     def _put_in_force(self, records: list[Record], now: datetime) -> None:
         before = self._judge.profile.observations

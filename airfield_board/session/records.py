@@ -1,12 +1,14 @@
 """What the recorder writes down, as bodies of records, and rows read back from them."""
 
 from collections.abc import Iterable, Iterator, Mapping, Sequence
+from dataclasses import asdict
 from datetime import datetime
 
 import numpy as np
 
 from airfield_board.clock import iso_utc, us_from_time
 from airfield_board.configuration.model import Fleet, Profile
+from airfield_board.configuration.setting_changes import SettingChange, TightenedChange
 from airfield_board.history.records import Json, Record, RecordKind, StoredRecord
 from airfield_board.limits.rules import Episode, LimitChange
 from airfield_board.observations.observation import NO_TIME_US, CheckedTable, DewpointUse, ObservationTable, Verdict
@@ -117,19 +119,40 @@ def change_records(changes: Iterable[LimitChange], ended: Iterable[Episode], at:
     ]
 
 
-def configuration_records(profile: Profile, fleet: Fleet, at: datetime, *, settled: bool) -> list[Record]:
-    """Return the records of a version of the settings, full text and hash, the fleet's last.
+def configuration_records(
+    profile: Profile,
+    fleet: Fleet,
+    at: datetime,
+    *,
+    waiting: Sequence[SettingChange] = (),
+    tightened: Sequence[TightenedChange] = (),
+) -> list[Record]:
+    """Return the records of a version of the settings: full text and hash, and with the fleet's what it changed.
 
     Parameters
     ----------
-    settled
-        Whether it is in force as it stands, so that nobody needs the versions before it to know what is in force.
+    waiting
+        What it loosens, which waits for acceptance. With none it is in force as it stands, so that nobody needs the
+        versions before it to know what is in force.
+    tightened
+        What it tightened at once.
     """
+    changed: dict[str, Json] = {
+        "waiting": [asdict(change) for change in waiting],
+        "tightened": [asdict(change) for change in tightened],
+    }
     return [
         Record(
             kind=RecordKind.CONFIGURATION,
             at=at,
-            body={"kind": kind, "name": str(path), "sha256": sha256, "text": text, "settled": settled},
+            body={
+                "kind": kind,
+                "name": str(path),
+                "sha256": sha256,
+                "text": text,
+                "settled": not waiting,
+                **(changed if kind == "fleet" else {}),
+            },
         )
         for kind, path, sha256, text in (
             ("profile", profile.path, profile.sha256, profile.text),

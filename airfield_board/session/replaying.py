@@ -140,7 +140,7 @@ def _recorded(
         rows = RowStates(judge)
         source: dict[str, Json] = {"topic": "replay", "text": "recorded by a replay of past observations"}
         message = Record(kind=RecordKind.MESSAGE, at=begun, body=source)
-        history.append([message, *configuration_records(judge.profile, judge.fleet, begun, settled=True)])
+        history.append([message, *configuration_records(judge.profile, judge.fleet, begun)])
         for start, stop in _batches(table.time_us[order], _RECORDED_BATCH_ROWS):
             batch = table.take(order[start:stop])
             judged, closed_at = _batch_step(judge, batch, now, closed_at)

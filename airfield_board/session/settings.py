@@ -10,7 +10,7 @@ from airfield_board.clock import local_day
 from airfield_board.configuration.model import Fleet, Profile
 from airfield_board.configuration.profile import load_airfield
 from airfield_board.configuration.reload import compare_and_merge
-from airfield_board.configuration.setting_changes import SettingChange
+from airfield_board.configuration.setting_changes import SettingChange, TightenedChange
 from airfield_board.configuration.yaml_reader import LARGEST_FILE_BYTES
 from airfield_board.errors import FileFaults
 
@@ -33,6 +33,7 @@ class Settings:
         self.in_force = first
         self.read = first
         self.waiting: tuple[SettingChange, ...] = ()
+        self.tightened: tuple[TightenedChange, ...] = ()
 
     def take(self, read: Airfield, at: datetime) -> None:
         """Take a new valid version: what it tightens acts at once, what it loosens waits.
@@ -46,11 +47,12 @@ class Settings:
         self.in_force = merge.effective
         self.read = read
         self.waiting = merge.waiting
+        self.tightened = merge.tightened
 
     def accept(self) -> None:
         """Put the version read last in force as it stands."""
         self.in_force = self.read
-        self.waiting = ()
+        self.waiting = self.tightened = ()
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)

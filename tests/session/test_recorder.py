@@ -1,5 +1,6 @@
 """The recorder: from the file to the board, and what it writes down."""
 
+import json
 from pathlib import Path
 
 import pytest
@@ -235,6 +236,17 @@ def test_a_tightened_limit_acts_at_once_and_a_loosened_one_waits_for_a_name(fiel
     assert not state.waiting
     recorder.close()
     assert verify_history(field.history, closing_hash=None, rejudge=True).whole
+    history = History.open_read_only(field.history)
+    _, tighter, looser = (
+        record.body for record in history.records(kinds=(RecordKind.CONFIGURATION,)) if record.body["kind"] == "fleet"
+    )
+    (accepted,) = history.records(kinds=(RecordKind.SETTINGS_ACCEPTED,))
+    history.close()
+    (change,) = json.loads(json.dumps(tighter["tightened"]))
+    assert (change["was"], change["now"]) == ("6,350 ft", "5,000 ft")
+    (waiting,) = json.loads(json.dumps(looser["waiting"]))
+    assert (waiting["in_force"], waiting["waiting"]) == ("5,000 ft", "9,000 ft")
+    assert accepted.body["name"] == "R. Keel"
 
 
 def test_a_loosened_limit_still_waits_after_a_restart(field: Field) -> None:

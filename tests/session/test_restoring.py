@@ -5,6 +5,7 @@ from pathlib import Path
 import pytest
 
 from airfield_board.configuration.profile import load_airfield
+from airfield_board.configuration.setting_changes import SettingChange
 from airfield_board.history.records import Record, RecordKind
 from airfield_board.history.store import History
 from airfield_board.limits.states import State
@@ -15,6 +16,7 @@ from airfield_board.session.restoring import settings_from_history
 from airfield_board.session.verifying import verify_history
 from tests.session.fields import FLEET, PROFILE, Field, make_field, row_of
 
+LOOSER = SettingChange(where="trainer, Departure", in_force="6,350 ft", waiting="7,000 ft")
 COOL_C, WARM_C, HOT_C = 15.0, 24.0, 30.0
 
 
@@ -159,14 +161,14 @@ def _older_version(field: Field) -> list[Record]:
 def test_settings_are_known_from_the_last_version_that_came_in_force_as_it_stood(field: Field) -> None:
     airfield = load_airfield(field.profile)
     accepted = Record(kind=RecordKind.SETTINGS_ACCEPTED, at=field.at(2), body={"name": "R. Keel", "accepted": []})
-    settled = configuration_records(*airfield, field.at(1), settled=True)
+    settled = configuration_records(*airfield, field.at(1))
     history = _history_with(field, *_older_version(field), *settled)
     settings = settings_from_history(history)
     assert settings is not None
     assert settings.in_force[1].sha256 == airfield[1].sha256
     history.append(_older_version(field))
     assert settings_from_history(history) is None
-    history.append([*configuration_records(*airfield, field.at(2), settled=False), accepted])
+    history.append([*configuration_records(*airfield, field.at(2), waiting=[LOOSER]), accepted])
     settings = settings_from_history(history)
     assert settings is not None
     assert not settings.waiting
@@ -179,8 +181,8 @@ def test_a_version_that_was_only_partly_in_force_needs_those_before_it(field: Fi
     looser = load_airfield(field.profile)
     history = _history_with(
         field,
-        *configuration_records(*first, field.at(0), settled=True),
-        *configuration_records(*looser, field.at(1), settled=False),
+        *configuration_records(*first, field.at(0)),
+        *configuration_records(*looser, field.at(1), waiting=[LOOSER]),
     )
     settings = settings_from_history(history)
     history.close()
