@@ -264,6 +264,8 @@ def board(
         rate_ft_per_h=216.0 if hour < 15.5 else -444.0,
         peak_ft=float(curve.density_altitude_ft[peak]),
         peak_time=local(float(ticks[peak])),
+        true_airspeed_ratio=1.108,
+        shaft_power_ratio=0.7905,
     )
     return BoardState(
         mode=mode,
