@@ -3,6 +3,7 @@
 from dataclasses import replace
 from datetime import datetime, timedelta
 from enum import IntEnum
+from itertools import pairwise
 
 from PySide6.QtCore import Signal
 from PySide6.QtGui import QColor, QPainter, QResizeEvent
@@ -105,6 +106,7 @@ class BoardView(Canvas):
             page.poll_asked.connect(self.poll_asked)
             page.type_in_asked.connect(self.type_in_asked)
             page.rows.details_asked.connect(self.details_asked)
+        self._order_parts()
         self._recolour()
 
     @property
@@ -167,6 +169,19 @@ class BoardView(Canvas):
     def ensure_plot(self) -> None:
         """Make the plot of the page that is seen now, rather than after the first painting."""
         (self.board, self.margin)[self.pages.currentIndex()].ensure_plot()
+
+    def _order_parts(self) -> None:
+        """Let Tab go through the parts as they stand, from top to bottom."""
+        board, margin = self.board, self.margin
+        parts = (
+            self.header,
+            self.message,
+            *(board.card, board.rows),
+            *(margin.card, margin.rows, margin.search, margin.picker),
+            self.changes,
+        )
+        for before, after in pairwise(parts):
+            QWidget.setTabOrder(before, after)
 
     def _show_page(self) -> None:
         """Give the view to the page that is seen; the other one gets it when it is."""

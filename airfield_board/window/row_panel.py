@@ -230,6 +230,8 @@ class RowPanel(Canvas):
     def paint(self, painter: QPainter, letters: Lettering) -> None:
         """Paint all of it."""
         self._paint_headings(letters)
+        if self.hasFocus() and not self._chosen:
+            self.paint_focus(painter)
         plan, axis = self._plan, self._axis
         if plan is None or axis is None:
             return
@@ -389,12 +391,14 @@ class RowPanel(Canvas):
         by_key = event.reason() in (Qt.FocusReason.TabFocusReason, Qt.FocusReason.BacktabFocusReason)
         if by_key and not self._chosen and self.placed_rows:
             self._choose(self.placed_rows[0][0].key, pin=False)
+        self.update()
         super().focusInEvent(event)
 
     def focusOutEvent(self, event: QFocusEvent) -> None:
         """Point at nothing once the keyboard has gone, unless a row is pinned."""
         if not self._pinned and not self.underMouse():
             self._choose("", pin=False)
+        self.update()
         super().focusOutEvent(event)
 
 

@@ -72,8 +72,9 @@ class RowWords:
 
     @property
     def spoken_rest(self) -> str:
-        """What else the row says."""
-        return ", ".join(part for part in (self.loud, self.quiet, self.details, self.temporary) if part)
+        """All but the name, the margin first: where a reader knows no values, it is not lost."""
+        parts = (self.spoken_value, self.loud, self.quiet, self.details, self.temporary)
+        return ", ".join(part for part in parts if part)
 
 
 def words_of(row: OperationLine, view: View) -> RowWords:

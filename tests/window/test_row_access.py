@@ -75,7 +75,9 @@ def test_an_item_has_its_margin_as_value_and_the_rest_as_description(qtbot: QtBo
     item = next(one for one in items_of(view.board.rows) if "Motor glider" in one.text(TEXT.Name))
     # Limit 6,450 ft, air 6,826 ft; it clears at 6,450 - 150.
     assert item.text(TEXT.Value) == "margin −380"
-    assert item.text(TEXT.Description) == ("clears at or below 6,300 ft, for 10 min, Self-launch · limit 6,450 ft")
+    assert item.text(TEXT.Description) == (
+        "margin −380, clears at or below 6,300 ft, for 10 min, Self-launch · limit 6,450 ft"
+    )
     assert item.text(TEXT.Help) == ""
     item.setText(TEXT.Name, "GO")
     assert item.text(TEXT.Name) == "HOLD, Motor glider · Self-launch"
