@@ -72,7 +72,7 @@ class Menus:
         window = self._window
         self._add(menu, "&Board", partial(window.show_page, 0), "1")
         self._add(menu, "&Margin", partial(window.show_page, 1), "2")
-        self._add(menu, "&Details of the row …", window.show_details, "D")
+        self._add(menu, "D&etails of the row …", window.show_details, "D")
         self._add(menu, "F&ind an operation", window.find_operation, "/")
         menu.addSeparator()
         group = QActionGroup(window)
