@@ -6,6 +6,7 @@ from zoneinfo import ZoneInfo
 
 import numpy as np
 
+from airfield_board.atmosphere.air_cost import shaft_power_ratio, true_airspeed_ratio
 from airfield_board.clock import local_day_bounds, time_from_us, us_from_time
 from airfield_board.configuration.model import Aircraft, Operation
 from airfield_board.limits.in_force import LimitKey
@@ -134,7 +135,7 @@ def _observation(judge: Judge, air: TrustedAir, now: datetime) -> CurrentObserva
 
 def _conditions(air: TrustedAir, time_us: np.ndarray, density_altitude_ft: np.ndarray) -> Conditions:
     now = air.conditions
-    here_ft = float(now.density_altitude_ft[0])
+    here_ft, density_ratio = float(now.density_altitude_ft[0]), float(now.density_ratio[0])
     peak_ft, peak_us = here_ft, air.row.time_us
     if len(density_altitude_ft) and float(density_altitude_ft.max()) > here_ft:
         top = int(density_altitude_ft.argmax())
@@ -146,10 +147,12 @@ def _conditions(air: TrustedAir, time_us: np.ndarray, density_altitude_ft: np.nd
         density_altitude_dry_ft=float(now.density_altitude_dry_ft[0]),
         uncertainty_ft=float(now.uncertainty_ft[0]),
         isa_deviation_c=float(now.isa_deviation_c[0]),
-        density_ratio=float(now.density_ratio[0]),
+        density_ratio=density_ratio,
         rate_ft_per_h=air.rate_ft_per_h,
         peak_ft=peak_ft,
         peak_time=time_from_us(peak_us),
+        true_airspeed_ratio=true_airspeed_ratio(density_ratio),
+        shaft_power_ratio=shaft_power_ratio(density_ratio),
     )
 
 

@@ -97,6 +97,10 @@ class Conditions:
         Of the density altitude over the last valid observations; None with fewer than two within an hour.
     peak_ft, peak_time
         Highest density altitude of the local day so far.
+    true_airspeed_ratio
+        True airspeed over the indicated one, by the density alone.
+    shaft_power_ratio
+        Of a normally aspirated engine, over its power in the standard atmosphere at sea level.
     """
 
     station_pressure_hpa: float
@@ -109,6 +113,8 @@ class Conditions:
     rate_ft_per_h: float | None
     peak_ft: float
     peak_time: datetime
+    true_airspeed_ratio: float
+    shaft_power_ratio: float
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -176,10 +182,14 @@ class LimitLine:
         altitude the present one and the margin; None: at the foot.
     gone_by
         When the present rate will have used up the margin, where that is before the reading goes stale.
+    eases_at
+        In NEAR LIMIT and REDUCED: the value at or below which the next better state comes, in ``unit``.
+    deadband, off_delay_min
+        That a hold of this limit clears by: in ``unit``, and [min].
     spans
         Of the day shown.
-    basis, source, notice, valid_until
-        As in the fleet file; ``valid_until`` as an ISO day, empty where open.
+    basis, source, notice, valid_from, valid_until
+        As in the fleet file; the days as ISO days, empty where open.
     """
 
     quantity: Quantity
@@ -203,11 +213,15 @@ class LimitLine:
     place_ft: float | None = None
     gone_by: datetime | None = None
     clearing: Clearing | None = None
+    eases_at: float | None = None
+    deadband: float = 0.0
+    off_delay_min: float = 0.0
     spans: tuple[Span, ...] = ()
     guarded: bool = False
     basis: str = ""
     source: str = ""
     notice: str = ""
+    valid_from: str = ""
     valid_until: str = ""
 
 

@@ -156,7 +156,9 @@ class LimitLines:
         }
         if held:
             line["clearing"] = _clearing(limit, standing, shown)
-        elif (weight := standing.greatest_weight(now.value)) is not None:
+        else:
+            line["eases_at"] = _eases_at(limit.memory.state, standing, now.full)
+        if not held and (weight := standing.greatest_weight(now.value)) is not None:
             line["greatest_weight"], line["full_weight"], line["weight_unit"] = weight
             line["greatest_weight_lb"] = weight_in_lb(weight[0], weight[2])
         return line
@@ -221,6 +223,9 @@ def _unjudged(limit: LimitJudge, standing: Standing, spans: tuple[Span, ...]) ->
         "basis": entry.basis,
         "source": entry.source,
         "notice": entry.notice,
+        "deadband": standing.deadband,
+        "off_delay_min": standing.off_delay_us / MINUTE_US,
+        "valid_from": "" if entry.valid_from is None else entry.valid_from.isoformat(),
         "valid_until": "" if entry.valid_until is None else entry.valid_until.isoformat(),
         "full_weight": standing.weights[0].weights[-1] if standing.weights else None,
         "weight_unit": standing.weights[0].weight_unit if standing.weights else "",
@@ -240,6 +245,13 @@ def _clearing(limit: LimitJudge, standing: Standing, shown: float) -> Clearing:
         since=None if run_us is None else time_from_us(run_us),
         earliest=None if earliest_us is None else time_from_us(earliest_us),
     )
+
+
+def _eases_at(state: State | None, standing: Standing, full: float) -> float | None:
+    """Return the value at or below which a limit outside a hold becomes better."""
+    if state is State.REDUCED:
+        return full - standing.deadband
+    return full - standing.near_band - standing.deadband if state is State.NEAR else None
 
 
 def _gone_by(standing: Standing, air: TrustedAir, margin: float) -> datetime | None:

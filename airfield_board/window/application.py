@@ -199,12 +199,14 @@ def _run(screen: Screen, start_feed: "Callable[[], Feed]", *, scheme: str, repla
     from PySide6.QtWidgets import QApplication
 
     from airfield_board.window.main_window import MainWindow
+    from airfield_board.window.row_access import install_row_access
     from airfield_board.window.theme import SchemeChoice
 
     application = QApplication(sys.argv[:1])
     screen.release()
     application.setApplicationName("Airfield Board")
     application.setStyle("Fusion")
+    install_row_access()
     window = MainWindow(start_feed, choice=SchemeChoice(scheme), replayable=replayable)
     problems: list[str] = []
 

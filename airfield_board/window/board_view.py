@@ -3,6 +3,7 @@
 from dataclasses import replace
 from datetime import datetime, timedelta
 from enum import IntEnum
+from itertools import pairwise
 
 from PySide6.QtCore import Signal
 from PySide6.QtGui import QColor, QPainter, QResizeEvent
@@ -57,6 +58,8 @@ class BoardView(Canvas):
         Numbers of the changes to acknowledge, a tuple.
     poll_asked(), type_in_asked()
         From the card that stands where there is no current observation.
+    details_asked(object)
+        Keys of the operations whose details are wanted, a tuple.
     messages_asked()
         The line of the loudest message was pressed.
     """
@@ -66,6 +69,7 @@ class BoardView(Canvas):
     acknowledge_asked = Signal(object)
     poll_asked = Signal()
     type_in_asked = Signal()
+    details_asked = Signal(object)
     messages_asked = Signal()
 
     def __init__(self, parent: QWidget | None = None, *, watchdog: timedelta | None = None) -> None:
@@ -101,6 +105,8 @@ class BoardView(Canvas):
         for page in (self.board, self.margin):
             page.poll_asked.connect(self.poll_asked)
             page.type_in_asked.connect(self.type_in_asked)
+            page.rows.details_asked.connect(self.details_asked)
+        self._order_parts()
         self._recolour()
 
     @property
@@ -155,9 +161,27 @@ class BoardView(Canvas):
         self.header.set_picture()
         self.update()
 
+    def ask_details(self) -> bool:
+        """Ask for the details of the row pointed at on the page that is seen; return whether there is one."""
+        page = self.pages.currentWidget()
+        return isinstance(page, BoardPage | MarginPage) and page.rows.ask_details()
+
     def ensure_plot(self) -> None:
         """Make the plot of the page that is seen now, rather than after the first painting."""
         (self.board, self.margin)[self.pages.currentIndex()].ensure_plot()
+
+    def _order_parts(self) -> None:
+        """Let Tab go through the parts as they stand, from top to bottom."""
+        board, margin = self.board, self.margin
+        parts = (
+            self.header,
+            self.message,
+            *(board.card, board.rows),
+            *(margin.card, margin.rows, margin.search, margin.picker),
+            self.changes,
+        )
+        for before, after in pairwise(parts):
+            QWidget.setTabOrder(before, after)
 
     def _show_page(self) -> None:
         """Give the view to the page that is seen; the other one gets it when it is."""

@@ -2,8 +2,8 @@
 
 from abc import abstractmethod
 
-from PySide6.QtCore import QRectF
-from PySide6.QtGui import QColor, QPainter, QPaintEvent
+from PySide6.QtCore import QRectF, Qt
+from PySide6.QtGui import QColor, QPainter, QPaintEvent, QPen
 from PySide6.QtWidgets import QWidget
 
 from airfield_board.window.lettering import Lettering, PaintedText
@@ -56,4 +56,13 @@ class Canvas(QWidget):
         painter.setPen(QColor(0, 0, 0, 0))
         painter.setBrush(QColor(self.colours.card))
         painter.drawRoundedRect(QRectF(self.rect()), CARD_RADIUS_PX, CARD_RADIUS_PX)
+        painter.restore()
+
+    def paint_focus(self, painter: QPainter) -> None:
+        """Ring the whole widget: the keyboard is here, and at nothing smaller in it."""
+        painter.save()
+        painter.setRenderHint(QPainter.RenderHint.Antialiasing)
+        painter.setPen(QPen(QColor(self.colours.accent), 2))
+        painter.setBrush(Qt.BrushStyle.NoBrush)
+        painter.drawRoundedRect(QRectF(self.rect()).adjusted(1, 1, -1, -1), CARD_RADIUS_PX, CARD_RADIUS_PX)
         painter.restore()

@@ -77,6 +77,8 @@ class ChangesStrip(Canvas):
         self._items = []
         if view is None:
             return
+        if self.hasFocus() and self._focused is None:
+            self.paint_focus(painter)
         compact = self.height() < HEIGHT_PX
         waiting = len(self.open_changes())
         count = formatting.count_open(waiting)

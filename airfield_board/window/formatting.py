@@ -356,3 +356,40 @@ def level_label(value_ft: float, when: datetime | None, unit: str, zone: ZoneInf
 def short_stamp(when: datetime, zone: ZoneInfo) -> str:
     """Local and universal time of day, for pictures: ``13:35 (20:35 UTC)``."""
     return f"{clock(when, zone)} ({clock(when, UNIVERSAL)} UTC)"
+
+
+def band(width: float, unit: Unit) -> str:
+    """Width of a band, rounded up: ``500 ft``, ``0.5 °C``."""
+    if unit in ("ft", "m"):
+        return f"{number(rounded_up(width, Decimal(1)))} {unit}"
+    tenths = rounded_up(width, STEP[unit])
+    return f"{number(tenths, 0 if tenths == tenths.to_integral_value() else 1)} {UNIT_WORDS[unit]}"
+
+
+def density_ratio(value: float) -> str:
+    """Density over the standard's at sea level, rounded down: ``0.815``."""
+    return number(rounded_down(value, Decimal("0.001")), 3)
+
+
+def airspeed_ratio(value: float) -> str:
+    """Write the true airspeed over the indicated, rounded up: ``1.108``."""
+    return number(rounded_up(value, Decimal("0.001")), 3)
+
+
+def power_share(value: float) -> str:
+    """Shaft power over that at sea level, rounded down to a whole hundredth: ``79 %``."""
+    return f"{number(rounded_down(value * 100, Decimal(1)))} %"
+
+
+def days_in_force(first: str, last: str) -> str:
+    """Say on which days a limit counts, both included: ``1 Jun 2026 to 30 Sep 2026``; from ISO days, empty if open."""
+    since = _full_day(first) if first else ""
+    until = _full_day(last) if last else ""
+    if since and until:
+        return f"{since} to {until}"
+    return f"from {since}" if since else f"until {until}" if until else "every day"
+
+
+def _full_day(iso_day: str) -> str:
+    when = date.fromisoformat(iso_day)
+    return f"{day(when)} {when.year}"

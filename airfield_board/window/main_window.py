@@ -13,7 +13,9 @@ from PySide6.QtWidgets import QMainWindow, QMessageBox, QStackedWidget, QVBoxLay
 from airfield_board.clock import Clock
 from airfield_board.session.board_state import BoardState, Mode, StatusChange
 from airfield_board.window import formatting
-from airfield_board.window.board_view import BoardView
+from airfield_board.window.announcer import Announcer
+from airfield_board.window.board_view import BoardView, PageName
+from airfield_board.window.details_dialog import DetailsDialog
 from airfield_board.window.dialogs import (
     AcknowledgeDialog,
     MessagesDialog,
@@ -21,9 +23,11 @@ from airfield_board.window.dialogs import (
     WaitingSettingsDialog,
 )
 from airfield_board.window.entry import TypedObservation
+from airfield_board.window.keys_dialog import KeysDialog
 from airfield_board.window.menus import KEYS, Menus
 from airfield_board.window.no_board_page import NoBoardPage
 from airfield_board.window.notice_bar import NoticeBar
+from airfield_board.window.row_access import follow_focus
 from airfield_board.window.text_board import ADVISES
 from airfield_board.window.theme import SchemeChoice, apply_scheme, scheme_of
 from airfield_board.window.worker import Answer, Request, Worker
@@ -87,6 +91,8 @@ class MainWindow(QMainWindow):
         self._last_tick: datetime | None = None
         self._type_in: tuple[Request | None, TypeInDialog] | None = None
         self._messages: MessagesDialog | None = None
+        self.details = DetailsDialog(self)
+        self.announcer = Announcer(self)
         self._acknowledged: dict[Request, tuple[tuple[int, ...], str]] = {}
         self._poll_problem = ""
         self._waiting_shown: object = ()
@@ -115,6 +121,9 @@ class MainWindow(QMainWindow):
         self.view.poll_asked.connect(self.poll)
         self.view.type_in_asked.connect(self.type_in)
         self.view.messages_asked.connect(self.show_messages)
+        self.view.details_asked.connect(self._open_details)
+        for rows in (self.view.board.rows, self.view.margin.rows):
+            follow_focus(rows)
         self._style_hints = QGuiApplication.styleHints()
         self._style_hints.colorSchemeChanged.connect(self._system_scheme_changed)
         self._ticker = QTimer(self)
@@ -142,6 +151,7 @@ class MainWindow(QMainWindow):
         self._feed.worker.deleteLater()
         self._state = None
         self._last_tick = None
+        self.details.close()
         self._stack.setCurrentWidget(self._nothing_yet)
         self.notice.dismiss()
         self._feed = self._start_feed()
@@ -171,6 +181,9 @@ class MainWindow(QMainWindow):
         limit = timedelta(seconds=worker.watchdog_s * self._feed.speed)
         self.view.set_watchdog(_TRUST_NOTHING if worker.is_silent() else limit)
         self.view.show_state(state, now)
+        if self.view.view is not None:
+            self.announcer.show_view(self.view.view)
+            self.details.show_view(self.view.view, self.view.colours)
         if self._type_in is not None:
             self._type_in[1].refresh()
 
@@ -186,6 +199,7 @@ class MainWindow(QMainWindow):
             f"The window met an unexpected fault ({fault}). What the board showed may be out of date.\n"
             "Observations are still read and recorded."
         )
+        self.details.close()
         self._stack.setCurrentWidget(self.fault_page)
 
     def _show_again(self) -> None:
@@ -251,9 +265,23 @@ class MainWindow(QMainWindow):
         self._messages.show()
         self._messages.raise_()
 
+    def show_details(self) -> None:
+        """Show all of the row that is pointed at; its window goes on with the board."""
+        if self.view.isVisible() and not self.view.ask_details():
+            self.notice.say("Choose a row first, with Tab, Up and Down, or the pointer.", for_s=_UNDO_FOR_S)
+
+    def _open_details(self, keys: tuple[str, ...]) -> None:
+        if self.view.view is not None:
+            self.details.open_for(keys, self.view.view, self.view.colours)
+
+    def find_operation(self) -> None:
+        """Show the Margin page and let an operation be found by its name."""
+        self.show_page(PageName.MARGIN)
+        self.view.margin.start_search()
+
     def show_keys(self) -> None:
         """Say which key does what."""
-        self._tell("Keys", "\n".join(f"{key}:  {does}" for key, does in KEYS))
+        KeysDialog(KEYS, self).open()
 
     def show_about(self) -> None:
         """Say what the program is, and what it is not."""

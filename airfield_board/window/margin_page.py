@@ -4,8 +4,8 @@ from dataclasses import replace
 from datetime import datetime, timedelta
 from typing import TYPE_CHECKING
 
-from PySide6.QtCore import QRectF, QSize, QTimer, Signal
-from PySide6.QtGui import QColor, QPainter, QResizeEvent, QShowEvent
+from PySide6.QtCore import QRectF, QSize, Qt, QTimer, Signal
+from PySide6.QtGui import QColor, QKeyEvent, QPainter, QResizeEvent, QShowEvent
 from PySide6.QtWidgets import QLineEdit, QWidget
 
 from airfield_board.limits.states import State
@@ -274,6 +274,20 @@ class MarginPage(Canvas):
     def _on_find(self, _text: str) -> None:
         if self._view is not None:
             self._show_choices(self._view)
+
+    def start_search(self) -> None:
+        """Put the keyboard into the search field."""
+        self.search.setFocus(Qt.FocusReason.ShortcutFocusReason)
+        self.search.selectAll()
+
+    def keyPressEvent(self, event: QKeyEvent) -> None:
+        """From the search field Esc clears it, Enter and Down go to the list."""
+        if self.search.hasFocus() and event.key() == Qt.Key.Key_Escape:
+            self.search.clear()
+        elif self.search.hasFocus() and event.key() in (Qt.Key.Key_Return, Qt.Key.Key_Enter, Qt.Key.Key_Down):
+            self.picker.setFocus(Qt.FocusReason.TabFocusReason)
+        else:
+            super().keyPressEvent(event)
 
     def _on_selected(self, key: str) -> None:
         self._show_plot()

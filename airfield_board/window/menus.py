@@ -15,13 +15,15 @@ if TYPE_CHECKING:
 
 KEYS = (
     ("1, 2", "Board page, Margin page"),
-    ("Up, Down", "move among the rows"),
+    ("D", "details of the row that is pointed at"),
+    ("/", "find an operation on the Margin page"),
     ("A", "acknowledge the focused status change, or the newest"),
     ("Shift+A", "acknowledge all"),
     ("P", "read the source now"),
     ("E", "type in an observation"),
     ("M", "messages, and the rows that were not used"),
     ("F11", "full screen"),
+    ("F1, ?", "this sheet"),
 )
 """Which key does what, in words."""
 
@@ -55,7 +57,7 @@ class Menus:
         if replayable:
             self._add(bar.addMenu("&Demo"), "&Play the day again", window.play_again)
         about = bar.addMenu("&Help")
-        self._add(about, "&Keys", window.show_keys)
+        self._add(about, "&Keys …", window.show_keys, "F1", "?")
         self._add(about, "&About", window.show_about)
 
     def refresh(self, state: BoardState) -> None:
@@ -70,6 +72,8 @@ class Menus:
         window = self._window
         self._add(menu, "&Board", partial(window.show_page, 0), "1")
         self._add(menu, "&Margin", partial(window.show_page, 1), "2")
+        self._add(menu, "D&etails of the row …", window.show_details, "D")
+        self._add(menu, "F&ind an operation", window.find_operation, "/")
         menu.addSeparator()
         group = QActionGroup(window)
         for each, words in (
@@ -84,10 +88,9 @@ class Menus:
         menu.addSeparator()
         self._add(menu, "&Full screen", window.toggle_full_screen, "F11")
 
-    def _add(self, menu: QMenu, words: str, act: Callable[[], object], key: str = "") -> QAction:
+    def _add(self, menu: QMenu, words: str, act: Callable[[], object], *keys: str) -> QAction:
         action = QAction(words, self._window)
-        if key:
-            action.setShortcut(QKeySequence(key))
+        action.setShortcuts([QKeySequence(key) for key in keys])
         action.triggered.connect(lambda: act())
         menu.addAction(action)
         self._window.addAction(action)

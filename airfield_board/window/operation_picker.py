@@ -87,6 +87,8 @@ class OperationPicker(Canvas):
         colours = self.colours
         painter.fillRect(self.rect(), QColor(colours.card))
         pitch, fitting, hidden = self._grid()
+        if self.hasFocus() and not self._choices:
+            self.paint_focus(painter)
         self._boxes = []
         lines = self._lines()
         half = self.width() / 2

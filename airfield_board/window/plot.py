@@ -35,6 +35,7 @@ class PixelPlot(pg.GraphicsView):  # type: ignore[misc]  # pyqtgraph has no type
         super().__init__(parent, background=None)
         self.setFrameShape(QFrame.Shape.NoFrame)
         self.setFocusPolicy(Qt.FocusPolicy.NoFocus)
+        self.viewport().setFocusPolicy(Qt.FocusPolicy.NoFocus)
         self.setHorizontalScrollBarPolicy(Qt.ScrollBarPolicy.ScrollBarAlwaysOff)
         self.setVerticalScrollBarPolicy(Qt.ScrollBarPolicy.ScrollBarAlwaysOff)
         self.setAttribute(Qt.WidgetAttribute.WA_TransparentForMouseEvents)

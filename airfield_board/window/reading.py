@@ -12,7 +12,15 @@ from zoneinfo import ZoneInfo
 
 from airfield_board.limits.states import State
 from airfield_board.observations.quality_judgement import FUTURE_US
-from airfield_board.session.board_state import BoardState, Conditions, Freshness, Mode, OperationLine
+from airfield_board.session.board_state import (
+    BoardState,
+    Conditions,
+    CurrentObservation,
+    Freshness,
+    LimitLine,
+    Mode,
+    OperationLine,
+)
 
 FUTURE_TOLERANCE = timedelta(microseconds=FUTURE_US)
 """An observation may be so far ahead of the clock."""
@@ -162,37 +170,58 @@ class View:
         return tuple(self._without_data(row) for row in self.state.operations)
 
     def _without_data(self, row: OperationLine) -> OperationLine:
-        line = row.shown
-        if line is None:
-            return replace(row, state=State.NO_DATA)
+        return replace(
+            row,
+            state=State.NO_DATA,
+            limits=tuple(self._blank(line) for line in row.limits),
+            shown=self._blank(row.shown) if row.shown is not None else None,
+        )
+
+    def _blank(self, line: LimitLine) -> LimitLine:
+        """Return a limit in NO DATA with what it was; one that the recorder left so keeps what the recorder said."""
         observation = self.state.observation
-        kept = line.state is State.NO_DATA or observation is None
-        blank = replace(
+        was, was_at, since = line.was, line.was_at, line.since
+        if line.state is not State.NO_DATA and observation is not None:
+            was, was_at, since = line.state, observation.time, self._lost_at(observation)
+        return replace(
             line,
             state=State.NO_DATA,
             value=None,
             margin=None,
-            was=line.was if kept or observation is None else line.state,
-            was_at=line.was_at if kept or observation is None else observation.time,
+            since=since,
+            was=was,
+            was_at=was_at,
             hold_temperature_c=None,
             hold_above_c=None,
             greatest_weight=None,
             greatest_weight_lb=None,
             gone_by=None,
             clearing=None,
+            eases_at=None,
         )
-        return replace(row, state=State.NO_DATA, shown=blank)
+
+    def _lost_at(self, observation: CurrentObservation) -> datetime | None:
+        """Since when the reading is not trusted; None where that is not known."""
+        if self.reading.cause is not Cause.STALE:
+            return None
+        return observation.time + timedelta(minutes=self.state.stale_after_min)
 
 
 def _with_margin(row: OperationLine) -> OperationLine:
-    """Return the row, or its NO DATA where it says more than it has a margin for."""
-    line = row.shown
+    """Return the row, or its NO DATA where it, or one of its limits, says more than it has a margin for."""
+    shown = None if row.shown is None else _measured(row.shown)
+    limits = tuple(_measured(line) for line in row.limits)
     if row.state in (State.HOLD, State.NO_DATA):
-        return row
-    if line is not None and line.margin is not None and math.isfinite(line.margin):
-        return row
-    blank = replace(line, state=State.NO_DATA, margin=None, reason="nothing to compare") if line is not None else None
-    return replace(row, state=State.NO_DATA, shown=blank)
+        return replace(row, shown=shown, limits=limits)
+    lost = [line for line in (shown, *limits) if line is None or line.state is State.NO_DATA]
+    return replace(row, state=State.NO_DATA, shown=lost[0], limits=limits) if lost else row
+
+
+def _measured(line: LimitLine) -> LimitLine:
+    """Return the limit, or its NO DATA where it has a state and no margin to show for it."""
+    if line.state in (State.HOLD, State.NO_DATA) or (line.margin is not None and math.isfinite(line.margin)):
+        return line
+    return replace(line, state=State.NO_DATA, margin=None, reason="nothing to compare")
 
 
 def view_of(state: BoardState, now: datetime, watchdog: timedelta | None) -> View:

@@ -35,7 +35,7 @@ from airfield_board.window.row_layout import (
     rows_that_fit,
 )
 from airfield_board.window.row_painter import GUTTER_PX, HOLD_COLUMN_FROM_PX, Columns, RowPainter, columns_for
-from airfield_board.window.row_words import RowWords, folded, is_folded, wish_of
+from airfield_board.window.row_words import FOLDED, RowWords, folded, is_folded, wish_of
 
 EMPTY_WORDS_PX = 90
 UNFOLDED_ROWS = 40
@@ -61,9 +61,12 @@ class RowPanel(Canvas):
     -------
     selected(str)
         The key of the row under the pointer or the keyboard; empty where there is none.
+    details_asked(object)
+        Keys of the operations behind a row that was opened with Enter or a double click, a tuple.
     """
 
     selected = Signal(str)
+    details_asked = Signal(object)
 
     def __init__(self, parent: QWidget | None = None) -> None:
         super().__init__(parent)
@@ -102,6 +105,11 @@ class RowPanel(Canvas):
     def plan(self) -> RowPlan | None:
         """The rows as placed; None before anything was shown."""
         return self._plan
+
+    @property
+    def placed_rows(self) -> list[tuple[RowWords, RowBox]]:
+        """The rows as they stand, from top to bottom."""
+        return [(self._words[box.index], box) for box in self._plan.boxes] if self._plan is not None else []
 
     def show_rows(
         self,
@@ -169,6 +177,21 @@ class RowPanel(Canvas):
         """Pin a row, as Enter does."""
         self._choose(key, pin=True)
 
+    def ask_details(self) -> bool:
+        """Ask for the details of the row that is pointed at; return whether there is one."""
+        keys = self._keys_behind(self._chosen)
+        if keys:
+            self.details_asked.emit(keys)
+        return bool(keys)
+
+    def _keys_behind(self, key: str) -> tuple[str, ...]:
+        """Return the operations that a row stands for: itself, or those that are counted in its line."""
+        if not key.startswith(FOLDED):
+            return (key,) if key else ()
+        listed = {row.key for row in self._words}
+        state = key.removeprefix(FOLDED)
+        return tuple(row.key for row in self._all if row.state.value == state and row.key not in listed)
+
     def set_empty_words(self, words: str) -> None:
         """Say what stands there when there are no rows."""
         self._empty_words = words
@@ -207,6 +230,8 @@ class RowPanel(Canvas):
     def paint(self, painter: QPainter, letters: Lettering) -> None:
         """Paint all of it."""
         self._paint_headings(letters)
+        if self.hasFocus() and not self._chosen:
+            self.paint_focus(painter)
         plan, axis = self._plan, self._axis
         if plan is None or axis is None:
             return
@@ -325,6 +350,11 @@ class RowPanel(Canvas):
         index = self._row_at(event.position().y())
         self._choose(self._words[index].key if index is not None else "", pin=True)
 
+    def mouseDoubleClickEvent(self, event: QMouseEvent) -> None:
+        """Pin the row under the pointer, and ask for its details."""
+        self.mousePressEvent(event)
+        self.ask_details()
+
     def enterEvent(self, event: QEnterEvent) -> None:
         """Keep what is pinned."""
         super().enterEvent(event)
@@ -336,13 +366,14 @@ class RowPanel(Canvas):
         super().leaveEvent(event)
 
     def keyPressEvent(self, event: QKeyEvent) -> None:
-        """Up and Down move, Home and End go to the ends, Enter pins, Esc clears."""
-        order = [self._words[box.index].key for box in self._plan.boxes] if self._plan is not None else []
+        """Up and Down move, Home and End go to the ends, Enter pins and asks for details, Esc clears."""
+        order = [row.key for row, _box in self.placed_rows]
         key = event.key()
         if key == Qt.Key.Key_Escape and self._chosen:
             self._choose("", pin=False)
         elif key in (Qt.Key.Key_Return, Qt.Key.Key_Enter) and self._chosen:
             self._pinned = True
+            self.ask_details()
         elif order and key in (Qt.Key.Key_Up, Qt.Key.Key_Down, Qt.Key.Key_Home, Qt.Key.Key_End):
             place = order.index(self._chosen) if self._chosen in order else -1
             wanted = {
@@ -355,10 +386,19 @@ class RowPanel(Canvas):
         else:
             super().keyPressEvent(event)
 
+    def focusInEvent(self, event: QFocusEvent) -> None:
+        """Point at the first row where the keyboard comes here, so that the eye finds it."""
+        by_key = event.reason() in (Qt.FocusReason.TabFocusReason, Qt.FocusReason.BacktabFocusReason)
+        if by_key and not self._chosen and self.placed_rows:
+            self._choose(self.placed_rows[0][0].key, pin=False)
+        self.update()
+        super().focusInEvent(event)
+
     def focusOutEvent(self, event: QFocusEvent) -> None:
         """Point at nothing once the keyboard has gone, unless a row is pinned."""
         if not self._pinned and not self.underMouse():
             self._choose("", pin=False)
+        self.update()
         super().focusOutEvent(event)
 
 

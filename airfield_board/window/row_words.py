@@ -58,7 +58,22 @@ class RowWords:
     @property
     def spoken(self) -> str:
         """The row as a screen reader says it."""
-        parts = (formatting.STATE_WORDS[self.state], self.one_line, f"margin {self.margin}", self.loud, self.quiet)
+        return ", ".join(part for part in (self.spoken_name, self.spoken_value, self.loud, self.quiet) if part)
+
+    @property
+    def spoken_name(self) -> str:
+        """What the row is about, its state first: a reader that says names only must not leave the state out."""
+        return f"{formatting.STATE_WORDS[self.state]}, {self.one_line}"
+
+    @property
+    def spoken_value(self) -> str:
+        """How far the row is from its limit."""
+        return f"margin {self.margin}" if self.margin else ""
+
+    @property
+    def spoken_rest(self) -> str:
+        """All but the name, the margin first: where a reader knows no values, it is not lost."""
+        parts = (self.spoken_value, self.loud, self.quiet, self.details, self.temporary)
         return ", ".join(part for part in parts if part)
 
 

@@ -45,6 +45,10 @@ aircraft:
         max_isa_deviation_c: 40
 """
 
+_SUMMER = """\
+        valid_from: 2026-06-01
+        valid_until: 2026-09-30"""
+
 
 @pytest.fixture
 def field(tmp_path: Path) -> Field:
@@ -139,6 +143,44 @@ def test_when_a_margin_is_used_up_at_the_present_rate_is_told_before_the_reading
     assert _limits(_board(field, 5))["Guarded", "density altitude"].gone_by is None
     field.write(field.row(0, 35.0), field.row(5, 36.0))
     assert _limits(_board(field, 5))["Guarded", "density altitude"].gone_by is None
+
+
+def test_what_the_air_costs_is_reckoned_from_its_density(field: Field) -> None:
+    field.write(field.row(0, 28.0))
+    conditions = _board(field, 1).conditions
+    assert conditions is not None
+    # ISO 2533 has 875.105 hPa at 4,000 ft; 120 ft more, at 1.087 kg/m3, take 3.90 hPa off. Dry air of 871.21 hPa and
+    # 301.15 K: 87121 / (287.05287 x 301.15) = 1.00781 kg/m3, 0.8227 of 1.225.
+    assert conditions.density_ratio == pytest.approx(0.8227, abs=1e-4)
+    # 1 / sqrt(0.8227) = 1.1025; Gagg and Farrar (1934): 0.8227 - 0.1773 / 7.55 = 0.7992.
+    assert conditions.true_airspeed_ratio == pytest.approx(1.1025, abs=1e-4)
+    assert conditions.shaft_power_ratio == pytest.approx(0.7992, abs=1e-4)
+
+
+def test_at_which_value_a_limit_near_or_reduced_becomes_better(field: Field) -> None:
+    field.write(field.row(0, 28.0))
+    near = _limits(_board(field, 1))["Aerotow", "density altitude"]
+    # The program's own bands: near 500 ft, deadband 150 ft, off-delay 10 min.
+    assert (near.state, near.eases_at) == (State.NEAR, 6550 - 500 - 150)
+    assert (near.near_band, near.deadband, near.off_delay_min) == (500, 150, 10)
+    field.write(field.row(0, 33.0))
+    reduced = _limits(_board(field, 1))["Aerotow", "density altitude"]
+    assert (reduced.state, reduced.eases_at) == (State.REDUCED, 6550 - 150)
+    field.write(field.row(0, 40.0))
+    held = _limits(_board(field, 1))["Aerotow", "density altitude"]
+    assert (held.state, held.eases_at, held.greatest_weight) == (State.HOLD, None, None)
+    field.write(field.row(0, 10.0))
+    well = _limits(_board(field, 1))["Aerotow", "density altitude"]
+    assert (well.state, well.eases_at, well.greatest_weight) == (State.GO, None, 2450)
+
+
+def test_the_days_of_a_limit_are_those_of_the_entry_that_rules(tmp_path: Path) -> None:
+    field = make_field(tmp_path, fleet=FLEET.replace("        valid_until: 2026-09-30", _SUMMER))
+    field.write(field.row(0, 10.0))
+    guarded = _limits(_board(field, 1))["Guarded", "density altitude"]
+    assert (guarded.valid_from, guarded.valid_until) == ("2026-06-01", "2026-09-30")
+    aerotow = _limits(_board(field, 1))["Aerotow", "density altitude"]
+    assert (aerotow.valid_from, aerotow.valid_until) == ("", "")
 
 
 def test_rows_stand_by_the_density_altitude_at_which_they_end_and_those_without_at_the_foot(field: Field) -> None:

@@ -148,6 +148,8 @@ def _limit_line(
             margin=42.0 - 30.4,
             since=local(6.0),
             near_band=3.0,
+            deadband=0.5,
+            off_delay_min=10.0,
             hold_temperature_c=42.0,
             hold_above_c=42.0,
             axis_ft=8050.0,
@@ -188,6 +190,13 @@ def _limit_line(
         place_ft=limit,
         gone_by=local(hour + 0.4) if state is State.NEAR and rising and margin < 150 else None,
         clearing=clearing,
+        eases_at=limit - DEADBAND_FT
+        if state is State.REDUCED
+        else limit - NEAR_FT - DEADBAND_FT
+        if state is State.NEAR
+        else None,
+        deadband=DEADBAND_FT,
+        off_delay_min=10.0,
         spans=tuple(
             Span(state=State.REDUCED if weighted else State.HOLD, start=span.start, end=span.end) for span in spans
         ),
@@ -264,6 +273,8 @@ def board(
         rate_ft_per_h=216.0 if hour < 15.5 else -444.0,
         peak_ft=float(curve.density_altitude_ft[peak]),
         peak_time=local(float(ticks[peak])),
+        true_airspeed_ratio=1.108,
+        shaft_power_ratio=0.7905,
     )
     return BoardState(
         mode=mode,

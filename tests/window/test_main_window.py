@@ -392,12 +392,6 @@ def test_about_bears_the_cautions_and_says_that_the_demo_is_invented(desk: Desk)
     assert "invented" in message_box(desk)
 
 
-def test_the_keys_are_listed(desk: Desk) -> None:
-    desk.window.show_keys()
-    text = message_box(desk)
-    assert "Shift+A:  acknowledge all" in text
-
-
 def test_dark_colours_reach_the_board_and_the_dialogs(desk: Desk) -> None:
     light = desk.window.palette().window().color().lightness()
     desk.window.choose_scheme(SchemeChoice.DARK)

@@ -5,6 +5,7 @@ from datetime import timedelta
 
 import pytest
 
+from airfield_board.configuration.model import Quantity
 from airfield_board.limits.states import State
 from airfield_board.session.board_state import Freshness, Mode, SettingChange
 from airfield_board.window.reading import Cause, Frame, reckon, view_of
@@ -140,3 +141,33 @@ def test_a_hold_without_a_margin_stays_on_hold() -> None:
     broken = replace(held, shown=replace(held.shown, margin=None))
     view = view_of(replace(state, operations=(broken,)), state.assessed_at, None)
     assert [row.state for row in view.rows] == [State.HOLD]
+
+
+def test_a_go_with_a_second_limit_without_a_margin_is_shown_as_no_data() -> None:
+    state = states.board()
+    first = state.operations[0]
+    assert first.shown is not None
+    second = replace(first.shown, quantity=Quantity.TEMPERATURE, margin=None)
+    view = view_of(replace(state, operations=(replace(first, limits=(first.shown, second)),)), state.assessed_at, None)
+    (row,) = view.rows
+    assert (row.state, [line.state for line in row.limits]) == (State.NO_DATA, [State.GO, State.NO_DATA])
+    assert row.shown is not None
+    assert (row.shown.quantity, row.shown.reason) == (Quantity.TEMPERATURE, "nothing to compare")
+
+
+def test_without_a_trusted_reading_no_limit_of_a_row_keeps_its_state() -> None:
+    state = states.board()
+    held = next(row for row in state.operations if row.state is State.HOLD)
+    assert held.shown is not None
+    assert state.observation is not None
+    well = replace(held.shown, quantity=Quantity.TEMPERATURE, state=State.GO)
+    both = replace(state, operations=(replace(held, limits=(held.shown, well)),))
+    stale_at = state.observation.time + timedelta(minutes=60)
+    (row,) = view_of(both, stale_at + timedelta(minutes=3), None).rows
+    assert [line.state for line in row.limits] == [State.NO_DATA, State.NO_DATA]
+    assert [line.was for line in row.limits] == [State.HOLD, State.GO]
+    # Stale after 60 min, as the invented profile has it.
+    assert [line.since for line in row.limits] == [stale_at, stale_at]
+    assert {(line.margin, line.value, line.clearing, line.hold_temperature_c) for line in row.limits} == {(None,) * 4}
+    (row,) = view_of(both, state.assessed_at + timedelta(minutes=5), timedelta(seconds=30)).rows
+    assert [(line.state, line.since) for line in row.limits] == [(State.NO_DATA, None)] * 2
