@@ -76,6 +76,16 @@ def test_each_command_on_the_demo_data_does_what_the_readme_says(line: str, tmp_
         assert done.stdout != ""
 
 
+def test_the_history_that_the_readme_proves_is_the_one_it_has_made(tmp_path: Path) -> None:
+    shutil.copytree(ROOT / "demo_data", tmp_path / "demo_data")
+    lines = [line for line in quoted_commands() if "history.db" in line]
+    assert [shlex.split(line)[1] for line in lines] == ["replay", "verify", "verify"]
+    for line in lines:
+        done = run_python(["-m", "airfield_board", *shlex.split(line)[1:]], folder=str(tmp_path))
+        assert done.returncode == 0, done.stderr
+    assert "whole and unaltered" in done.stdout
+
+
 @pytest.mark.parametrize("of", ["profile", "fleet"])
 def test_the_schemas_beside_the_demo_data_are_those_the_program_prints(of: str) -> None:
     printed = json.loads(run_python(["-m", "airfield_board", "schema", of]).stdout)
