@@ -94,7 +94,7 @@ class BoardPage(Canvas):
         words = [words_of(row, view) for row in view.rows]
         conditions = view.state.conditions if view.trusted else None
         level_ft = conditions.density_altitude_ft if conditions is not None else None
-        level = (level_ft, _level_label(view, level_ft)) if level_ft is not None else None
+        level = (level_ft, level_label(view, level_ft)) if level_ft is not None else None
         degrees = formatting.UNIT_WORDS[view.state.airfield.temperature_unit]
         change = formatting.change_heading(trusted=view.trusted)
         headings = Headings(margin=f"Margin, {view.column_unit}", change=change, last=f"Hold above {degrees}")
@@ -137,23 +137,8 @@ class BoardPage(Canvas):
         low_ft, high_ft = self._altitude_range(view)
         bottom = float(self.height() - TIME_AXIS_PX)
         self.rows.set_axis(AltitudeAxis(low_ft=low_ft, high_ft=high_ft, top_px=PLOT_TOP_PX, bottom_px=bottom))
-        start, end = day_bounds(view.state, view.now, view.zone)
-        time = TimeAxis(start=start, end=end, left_px=0.0, right_px=float(plot_width))
-        per_hour_px = plot_width / ((end - start) / timedelta(hours=1))
-        every_h = next((step for step in (3, 6) if step * per_hour_px >= _HOUR_ROOM_PX), 12)
-        conditions = view.state.conditions if view.trusted else None
-        observation = view.state.observation
-        scene = DayScene(
-            altitude=AltitudeAxis(low_ft=low_ft, high_ft=high_ft, top_px=0.0, bottom_px=bottom - PLOT_TOP_PX),
-            time=time,
-            hours=tuple(hour_marks(start, end, view.zone, every_h)),
-            curve=view.state.curve,
-            shelves=tuple(shelf for row in view.rows if (shelf := shelf_of(row, view)) is not None),
-            level_ft=conditions.density_altitude_ft if conditions is not None else None,
-            observed=observation.time if observation is not None else None,
-            now=view.now.replace(second=0, microsecond=0),
-            gap=not view.trusted,
-        )
+        altitude = AltitudeAxis(low_ft=low_ft, high_ft=high_ft, top_px=0.0, bottom_px=bottom - PLOT_TOP_PX)
+        scene = scene_of(view, altitude, float(plot_width), _HOUR_ROOM_PX)
         if scene != self._scene:
             self._scene = scene
             self._place_plot()
@@ -254,11 +239,42 @@ def density_of(view: View, page_px: float) -> Density:
     ).density
 
 
-def _level_label(view: View, level_ft: float) -> str:
+def level_label(view: View, level_ft: float) -> str:
+    """Name the level of the air; where the reading ages, with its time."""
     observation, unit = view.state.observation, view.state.airfield.altitude_unit
     ageing = observation is not None and view.reading.freshness is Freshness.AGEING
     when = observation.time if ageing and observation is not None else None
     return formatting.level_label(level_ft, when, unit, view.zone)
+
+
+def scene_of(view: View, altitude: AltitudeAxis, width_px: float, hour_room_px: float) -> DayScene:
+    """Return the day plot of a view.
+
+    Parameters
+    ----------
+    altitude
+        To the plot's own pixels.
+    width_px
+        Of the plot.
+    hour_room_px
+        What the name of an hour takes.
+    """
+    start, end = day_bounds(view.state, view.now, view.zone)
+    per_hour_px = width_px / ((end - start) / timedelta(hours=1))
+    every_h = next((step for step in (3, 6) if step * per_hour_px >= hour_room_px), 12)
+    conditions = view.state.conditions if view.trusted else None
+    observation = view.state.observation
+    return DayScene(
+        altitude=altitude,
+        time=TimeAxis(start=start, end=end, left_px=0.0, right_px=width_px),
+        hours=tuple(hour_marks(start, end, view.zone, every_h)),
+        curve=view.state.curve,
+        shelves=tuple(shelf for row in view.rows if (shelf := shelf_of(row, view)) is not None),
+        level_ft=conditions.density_altitude_ft if conditions is not None else None,
+        observed=observation.time if observation is not None else None,
+        now=view.now.replace(second=0, microsecond=0),
+        gap=not view.trusted,
+    )
 
 
 def shelf_of(row: OperationLine, view: View) -> Shelf | None:

@@ -189,10 +189,7 @@ class BoardView(Canvas):
             (self.board, self.margin)[self.pages.currentIndex()].show_view(self._view)
 
     def _recolour(self) -> None:
-        view = self._view
-        colours = palette_for(self._scheme, grey=view is not None and not view.trusted)
-        if view is not None and view.frames and view.frames[0] not in _QUIET_FRAMES:
-            colours = _inverse_header(colours, view.frames[0])
+        colours = colours_of(self._scheme, self._view)
         self.set_colours(colours)
         for part in (self.header, self.strip, self.message, self.board, self.margin, self.changes, self.overlay):
             part.set_colours(colours)
@@ -262,6 +259,10 @@ def _outline(view: View) -> tuple[object, ...]:
     return bool(view.frames), room_wanted(view), bool(loud_messages(view.state.messages))
 
 
-def _inverse_header(colours: Palette, frame: Frame) -> Palette:
-    band = band_of(frame, colours)
+def colours_of(scheme: Scheme, view: View | None) -> Palette:
+    """Return the colours of a view: grey without trust, and with the frame's header where there is a loud frame."""
+    colours = palette_for(scheme, grey=view is not None and not view.trusted)
+    if view is None or not view.frames or view.frames[0] in _QUIET_FRAMES:
+        return colours
+    band = band_of(view.frames[0], colours)
     return replace(colours, header=band.ground, on_header=band.ink, soft_on_header=band.ink)

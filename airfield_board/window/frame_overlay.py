@@ -11,6 +11,7 @@ from airfield_board.window.palette import Band, Palette
 from airfield_board.window.reading import Frame, View
 
 BAND_PX = 22
+_WORD_PX = 12
 _EVERY_PX = 160.0
 _EVERY_BARRICADE_PX = 360.0
 _STRIPE_PX = 22.0
@@ -22,6 +23,7 @@ class FrameOverlay(Canvas):
     def __init__(self, parent: QWidget | None = None) -> None:
         super().__init__(parent)
         self._frame: Frame | None = None
+        self._band_px, self._word_px = float(BAND_PX), _WORD_PX
         self.setAttribute(Qt.WidgetAttribute.WA_TransparentForMouseEvents)
         self.setFocusPolicy(Qt.FocusPolicy.NoFocus)
 
@@ -29,6 +31,12 @@ class FrameOverlay(Canvas):
     def frame(self) -> Frame | None:
         """What frames the view."""
         return self._frame
+
+    def set_band(self, band_px: float, word_px: int) -> None:
+        """Paint the band in another width than on a desk, with words of another size."""
+        if (band_px, word_px) != (self._band_px, self._word_px):
+            self._band_px, self._word_px = band_px, word_px
+            self.update()
 
     def show_view(self, view: View) -> None:
         """Take the first of the view's frames."""
@@ -45,29 +53,30 @@ class FrameOverlay(Canvas):
         if frame is None:
             return
         band = band_of(frame, self.colours)
-        width, height = float(self.width()), float(self.height())
+        width, height, broad = float(self.width()), float(self.height()), self._band_px
         sides = [
-            QRectF(0, 0, width, BAND_PX),
-            QRectF(0, height - BAND_PX, width, BAND_PX),
-            QRectF(0, BAND_PX, BAND_PX, height - 2 * BAND_PX),
-            QRectF(width - BAND_PX, BAND_PX, BAND_PX, height - 2 * BAND_PX),
+            QRectF(0, 0, width, broad),
+            QRectF(0, height - broad, width, broad),
+            QRectF(0, broad, broad, height - 2 * broad),
+            QRectF(width - broad, broad, broad, height - 2 * broad),
         ]
         barricade = frame is Frame.NO_DATA
         for side in sides:
             painter.fillRect(side, QColor(band.ground))
             if barricade:
                 _stripes(painter, side, band.ink)
-        every = _EVERY_BARRICADE_PX if barricade else _EVERY_PX
-        every = max(every, width_of(frame.value, 12, BOLD) + 60)
+        every = (_EVERY_BARRICADE_PX if barricade else _EVERY_PX) * broad / BAND_PX
+        size = self._word_px
+        every = max(every, width_of(frame.value, size, BOLD) + 60 * broad / BAND_PX)
         for side in sides[:2]:
-            _words_along(painter, letters, side, frame.value, band, every)
+            _words_along(painter, letters, side, (frame.value, size), band, every)
         for side, turn in zip(sides[2:], (-90.0, 90.0), strict=True):
             painter.save()
             painter.translate(side.center())
             painter.rotate(turn)
-            lying = QRectF(-side.height() / 2, -BAND_PX / 2, side.height(), BAND_PX)
+            lying = QRectF(-side.height() / 2, -broad / 2, side.height(), broad)
             upright = Lettering(painter, [])
-            _words_along(painter, upright, lying, frame.value, band, every)
+            _words_along(painter, upright, lying, (frame.value, size), band, every)
             painter.restore()
 
 
@@ -114,12 +123,15 @@ def _stripes(painter: QPainter, side: QRectF, colour: str) -> None:
     painter.restore()
 
 
-def _words_along(painter: QPainter, letters: Lettering, side: QRectF, word: str, band: Band, every: float) -> None:
+def _words_along(
+    painter: QPainter, letters: Lettering, side: QRectF, said: tuple[str, int], band: Band, every: float
+) -> None:
+    word, size = said
     count = max(int(side.width() // every), 1)
     spacing = side.width() / count
-    width = width_of(word, 12, BOLD)
+    width = width_of(word, size, BOLD)
     for index in range(count):
         middle = side.left() + spacing * (index + 0.5)
         painter.fillRect(QRectF(middle - width / 2 - 9, side.top(), width + 18, side.height()), QColor(band.ground))
-        baseline = side.center().y() + 12 * 0.727 / 2
-        letters.text((middle, baseline), word, band.ink, 12, BOLD, side="centre")
+        baseline = side.center().y() + size * 0.727 / 2
+        letters.text((middle, baseline), word, band.ink, size, BOLD, side="centre")

@@ -75,6 +75,7 @@ class DayPlot(PixelPlot):
     def __init__(self, parent: QWidget | None = None) -> None:
         super().__init__(parent)
         self.setAccessibleName("Density altitude over the day")
+        self._scale = 1.0
         self._colours = LIGHT
         self._scene_shown: DayScene | None = None
         self._chosen = ""
@@ -95,6 +96,13 @@ class DayPlot(PixelPlot):
             self._fill_curves()
         self.repaint_layers()
 
+    def set_scale(self, scale: float) -> None:
+        """Draw lines and marks in another size than on a desk."""
+        if scale != self._scale:
+            self._scale = scale
+            self._fill_curves()
+            self.repaint_layers()
+
     def _fill_curves(self) -> None:
         """Give each stretch its items, which are kept and filled anew."""
         while len(self._parts) < len(self._stretches):
@@ -102,7 +110,7 @@ class DayPlot(PixelPlot):
         for part in self._parts[len(self._stretches) :]:
             part.clear()
         for part, stretch in zip(self._parts, self._stretches, strict=False):
-            part.fill(stretch, self._colours, 2.2 * self.devicePixelRatioF())
+            part.fill(stretch, self._colours, 2.2 * self._scale * self.devicePixelRatioF())
 
     def paint_under(self, painter: QPainter) -> None:
         """Paint water, hours, limits and holds."""
@@ -141,9 +149,10 @@ class DayPlot(PixelPlot):
         colours = self._colours
         y = scene.altitude.px(shelf.axis_ft)
         until = scene.observed or scene.now
+        thick = SPAN_PX * self._scale
         for span in shelf.spans:
             left, right = scene.time.px(span.start), scene.time.px(span.end or until)
-            bar = QRectF(left, y - SPAN_PX / 2, max(right - left, 2.0), SPAN_PX)
+            bar = QRectF(left, y - thick / 2, max(right - left, 2.0), thick)
             colour = QColor(mark_colour(span.state, colours))
             if span.state is State.HOLD:
                 painter.fillRect(bar, colour)
@@ -170,31 +179,33 @@ class DayPlot(PixelPlot):
             painter.drawLine(QPointF(0, y), QPointF(self.width(), y))
             self._paint_spans(painter, scene, chosen)
         now = scene.time.px(scene.now)
-        painter.fillRect(QRectF(round(now) - 0.75, 0, 1.5, self.height()), QColor(colours.ink))
+        width = 1.5 * self._scale
+        painter.fillRect(QRectF(round(now) - width / 2, 0, width, self.height()), QColor(colours.ink))
         if scene.level_ft is not None and scene.observed is not None:
             at = QPointF(scene.time.px(scene.observed), scene.altitude.px(scene.level_ft))
-            painter.setPen(QPen(QColor(colours.accent), 1.6))
+            painter.setPen(QPen(QColor(colours.accent), 1.6 * self._scale))
             painter.drawLine(at, QPointF(self.width(), at.y()))
             if scene.time.holds(scene.observed):
                 painter.setPen(QPen(QColor(colours.card), 2))
                 painter.setBrush(QColor(colours.accent))
-                painter.drawEllipse(at, 6.5, 6.5)
+                painter.drawEllipse(at, 6.5 * self._scale, 6.5 * self._scale)
         if chosen is not None:
             self._paint_callout(painter, scene, chosen)
 
     def _paint_carets(self, painter: QPainter, scene: DayScene) -> None:
         painter.setBrush(Qt.BrushStyle.NoBrush)
-        painter.setPen(QPen(QColor(self._colours.line), 1.4))
+        size = self._scale
+        painter.setPen(QPen(QColor(self._colours.line), 1.4 * size))
         x = self.width() - 1.0
         beyond = {
             shelf.axis_ft > scene.altitude.high_ft for shelf in scene.shelves if not scene.altitude.holds(shelf.axis_ft)
         }
         for above in beyond:
-            y, dip = (1.0, 7.0) if above else (self.height() - 1.0, -7.0)
-            path = QPainterPath(QPointF(x - 18, y + dip))
-            path.lineTo(x - 12, y)
-            path.lineTo(x - 6, y + dip)
-            path.moveTo(x - 12, y)
+            y, dip = (1.0, 7.0 * size) if above else (self.height() - 1.0, -7.0 * size)
+            path = QPainterPath(QPointF(x - 18 * size, y + dip))
+            path.lineTo(x - 12 * size, y)
+            path.lineTo(x - 6 * size, y + dip)
+            path.moveTo(x - 12 * size, y)
             path.lineTo(x, y)
             painter.drawPath(path)
 

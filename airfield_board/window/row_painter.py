@@ -115,17 +115,11 @@ class RowPainter:
     def _paint_block(self, box: RowBox, row: RowWords, *, size_px: int, height_px: float) -> None:
         colours, width = self.colours, self.columns.block_px
         block = QRectF(GUTTER_PX, box.middle_px - height_px / 2, width, height_px)
-        fill, ink, border, dashed = {
-            State.HOLD: (colours.hold_block, colours.on_hold, None, False),
-            State.NEAR: (colours.near_block, colours.on_near, colours.near_line, False),
-            State.REDUCED: (colours.reduced_block, colours.on_reduced, colours.near_line, False),
-            State.GO: (None, colours.go, None, False),
-            State.NO_DATA: (None, colours.no_data, colours.line, True),
-        }[row.state]
+        fill, ink, border, dashed = block_look(row.state, colours)
         self.painter.save()
         self.painter.setRenderHint(QPainter.RenderHint.Antialiasing)
         stroke = 2.0 if row.state is State.REDUCED and height_px > 20 else 1.2
-        self.painter.setPen(Qt.PenStyle.NoPen if border is None else _border(border, stroke, dashed=dashed))
+        self.painter.setPen(Qt.PenStyle.NoPen if border is None else block_border(border, stroke, dashed=dashed))
         self.painter.setBrush(Qt.BrushStyle.NoBrush if fill is None else QColor(fill))
         radius = 4.0 if height_px > 20 else 2.5
         if fill is not None or border is not None:
@@ -221,7 +215,19 @@ class RowPainter:
             self.letters.text((right, baseline), row.last_below, self.colours.soft_ink, 13, side="right")
 
 
-def _border(colour: str, stroke: float, *, dashed: bool) -> QPen:
+def block_look(state: State, colours: Palette) -> tuple[str | None, str, str | None, bool]:
+    """Return a state's fill, ink, border, and whether the border is dashed."""
+    return {
+        State.HOLD: (colours.hold_block, colours.on_hold, None, False),
+        State.NEAR: (colours.near_block, colours.on_near, colours.near_line, False),
+        State.REDUCED: (colours.reduced_block, colours.on_reduced, colours.near_line, False),
+        State.GO: (None, colours.go, None, False),
+        State.NO_DATA: (None, colours.no_data, colours.line, True),
+    }[state]
+
+
+def block_border(colour: str, stroke: float, *, dashed: bool) -> QPen:
+    """Return the pen of a block's border."""
     pen = QPen(QColor(colour), stroke)
     if dashed:
         pen.setDashPattern([3.0, 2.2])
