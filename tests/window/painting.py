@@ -46,7 +46,7 @@ def shown_view(
     return view, image_of(view)
 
 
-def texts_of(view: BoardView) -> list[Placed]:
+def texts_of(view: QWidget) -> list[Placed]:
     """Return all texts of the last painting that can be seen, in the view's pixels."""
     parts: list[QWidget] = [view, *view.findChildren(QWidget)]
     placed = []
@@ -72,6 +72,20 @@ def overlaps(placed: list[Placed]) -> list[tuple[str, str]]:
             common = one.ink.intersected(other.ink)
             if common.width() > 0.5 and common.height() > 0.5:
                 found.append((f"{one.part}: {one.text.text}", f"{other.part}: {other.text.text}"))
+    return found
+
+
+def faults(placed: list[Placed]) -> list[str]:
+    """Say what is wrong with the texts of a picture."""
+    found = [f"overlap: {one} / {other}" for one, other in overlaps(placed)]
+    for one in placed:
+        text = one.text
+        if not text.text:
+            found.append(f"nothing left of: {text.full}")
+        if not one.room.adjusted(-0.6, -0.6, 0.6, 0.6).contains(one.ink):
+            found.append(f"{one.part} cuts: {text.text}")
+        if text.left < text.room_left - 2.5 or text.left + text.width > text.room_right + 2.5:
+            found.append(f"out of its column: {text.text}")
     return found
 
 

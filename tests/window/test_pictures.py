@@ -13,7 +13,7 @@ from airfield_board.window import formatting
 from airfield_board.window.board_view import BoardView, PageName
 from airfield_board.window.formatting import STATE_WORDS
 from tests.window import states
-from tests.window.painting import Placed, lead_of_red_or_green, overlaps, shown_view, texts_of
+from tests.window.painting import faults, lead_of_red_or_green, shown_view, texts_of
 
 SIZES = [(1200, 760), (1440, 900), (1920, 1080)]
 COUNTS = [8, 14, 24, 40]
@@ -25,20 +25,6 @@ KINDS: dict[str, tuple[Callable[[int], BoardState], str]] = {
     "evening": (states.evening_board, "light"),
     "nothing yet": (states.empty_board, "light"),
 }
-
-
-def faults(placed: list[Placed]) -> list[str]:
-    """Say what is wrong with the texts of a picture."""
-    found = [f"overlap: {one} / {other}" for one, other in overlaps(placed)]
-    for one in placed:
-        text = one.text
-        if not text.text:
-            found.append(f"nothing left of: {text.full}")
-        if not one.room.adjusted(-0.6, -0.6, 0.6, 0.6).contains(one.ink):
-            found.append(f"{one.part} cuts: {text.text}")
-        if text.left < text.room_left - 2.5 or text.left + text.width > text.room_right + 2.5:
-            found.append(f"out of its column: {text.text}")
-    return found
 
 
 @pytest.mark.parametrize("size_px", SIZES, ids=str)
