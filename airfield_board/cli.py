@@ -64,6 +64,7 @@ def _parser() -> argparse.ArgumentParser:
     source = parser.add_mutually_exclusive_group()
     source.add_argument("--airfield", type=Path, metavar="PROFILE", help="open the window on this airfield profile")
     source.add_argument("--demo", action="store_true", help="open the demo: an invented field that feeds itself")
+    parser.add_argument("--wall", action="store_true", help="open with the wall view, on the whole screen")
     parser.add_argument("--scheme", choices=("light", "dark", "system"), default="system", help="colours of the window")
     parser.set_defaults(run=_window)
     commands = parser.add_subparsers(title="commands", metavar="COMMAND")
@@ -110,7 +111,7 @@ def _window(options: argparse.Namespace) -> int:
     if options.demo:
         from airfield_board.window.application import run_demo
 
-        return run_demo(scheme=options.scheme)
+        return run_demo(scheme=options.scheme, wall=options.wall)
     if options.airfield is None:
         raise UserError(
             "Say which airfield: --airfield PROFILE opens the window on it; --demo shows an invented one.\n"
@@ -118,7 +119,7 @@ def _window(options: argparse.Namespace) -> int:
         )
     from airfield_board.window.application import run_window
 
-    return run_window(options.airfield, scheme=options.scheme)
+    return run_window(options.airfield, scheme=options.scheme, wall=options.wall)
 
 
 # -- assess

@@ -31,7 +31,7 @@ _DEMO_PICTURE_PX = (1440, 900)
 _INVENTED = "DEMO: an invented field, invented aircraft, an invented day. Not for use in flight."
 
 
-def run_window(profile_path: Path, *, scheme: str = "system") -> int:
+def run_window(profile_path: Path, *, scheme: str = "system", wall: bool = False) -> int:
     """Open the window on an airfield and run until it is closed.
 
     Parameters
@@ -40,6 +40,8 @@ def run_window(profile_path: Path, *, scheme: str = "system") -> int:
         The airfield's profile.
     scheme
         ``light``, ``dark`` or ``system``.
+    wall
+        Whether it opens with the wall view.
 
     Returns
     -------
@@ -64,16 +66,18 @@ def run_window(profile_path: Path, *, scheme: str = "system") -> int:
             worker=Worker(lambda: Recorder.open(profile_path, clock=clock, mode=Mode.LIVE, loaded=airfield)),
         )
 
-    return _run(screen, start_feed, scheme=scheme, replayable=False)
+    return _run(screen, start_feed, scheme=scheme, replayable=False, wall=wall)
 
 
-def run_demo(*, scheme: str = "system", out: TextIO | None = None) -> int:
+def run_demo(*, scheme: str = "system", wall: bool = False, out: TextIO | None = None) -> int:
     """Play the demo: in the window, or without a display in the terminal.
 
     Parameters
     ----------
     scheme
         ``light``, ``dark`` or ``system``.
+    wall
+        Whether the window opens with the wall view.
     out
         Where the terminal's lines go; None: standard output.
 
@@ -101,7 +105,7 @@ def run_demo(*, scheme: str = "system", out: TextIO | None = None) -> int:
             worker = Worker(day.open_recorder, before_poll=day.feed, poll_s=DEMO_POLL_S)
             return Feed(clock=day.clock, worker=worker, speed=DEMO_SPEED)
 
-        return _run(screen, start_feed, scheme=scheme, replayable=True)
+        return _run(screen, start_feed, scheme=scheme, replayable=True, wall=wall)
 
 
 def play_demo_in_terminal(out: TextIO, folder: Path, *, scheme: str = "light") -> int:
@@ -194,7 +198,7 @@ def _paint(state: BoardState, folder: Path, scheme: str) -> Path:
     raise UserError(refusal)
 
 
-def _run(screen: Screen, start_feed: "Callable[[], Feed]", *, scheme: str, replayable: bool) -> int:
+def _run(screen: Screen, start_feed: "Callable[[], Feed]", *, scheme: str, replayable: bool, wall: bool) -> int:
     os.environ["QT_QPA_PLATFORM"] = screen.platform  # what was found to work, and not what Qt might try instead
     from PySide6.QtWidgets import QApplication
 
@@ -219,6 +223,8 @@ def _run(screen: Screen, start_feed: "Callable[[], Feed]", *, scheme: str, repla
         signal.signal(number, lambda *_: window.close())  # noticed at the next tick of the window's clock
     sys.excepthook = partial(_take_fault, window)
     window.show()
+    if wall:
+        window.wall.enter()  # only now: showing may fit the window to its contents, which ends the whole screen
     window.start()
     code = application.exec()
     if problems:

@@ -4,6 +4,7 @@ import logging
 from collections.abc import Callable, Sequence
 from dataclasses import dataclass
 from datetime import datetime, timedelta
+from pathlib import Path
 from zoneinfo import ZoneInfo
 
 from PySide6.QtCore import QSize, Qt, QTimer, Signal
@@ -30,6 +31,8 @@ from airfield_board.window.notice_bar import NoticeBar
 from airfield_board.window.row_access import follow_focus
 from airfield_board.window.text_board import ADVISES
 from airfield_board.window.theme import SchemeChoice, apply_scheme, scheme_of
+from airfield_board.window.wall_mode import WallMode
+from airfield_board.window.wall_settings import usual_place
 from airfield_board.window.worker import Answer, Request, Worker
 
 _logger = logging.getLogger(__name__)
@@ -78,11 +81,20 @@ class MainWindow(QMainWindow):
         Light, dark, or as the system.
     replayable
         Whether the feed can be started again: the demo.
+    wall_file
+        Where the wall view's numbers are remembered; None: in the user's folder.
     """
 
     opening_failed = Signal(object)
 
-    def __init__(self, start_feed: Callable[[], Feed], *, choice: SchemeChoice, replayable: bool = False) -> None:
+    def __init__(
+        self,
+        start_feed: Callable[[], Feed],
+        *,
+        choice: SchemeChoice,
+        replayable: bool = False,
+        wall_file: Path | None = None,
+    ) -> None:
         super().__init__()
         self._start_feed = start_feed
         self._feed = start_feed()
@@ -103,8 +115,9 @@ class MainWindow(QMainWindow):
         self.notice = NoticeBar()
         self._nothing_yet = NoBoardPage("Nothing has been read yet. Reading …")
         self.fault_page = NoBoardPage("", action="Show the board again", act=self._show_again)
+        self.wall = WallMode(self, self.notice, wall_file or usual_place(), self._wall_changed)
         self._stack = QStackedWidget()
-        for page in (self._nothing_yet, self.view, self.fault_page):
+        for page in (self._nothing_yet, self.view, self.wall.view, self.fault_page):
             self._stack.addWidget(page)
         middle = QWidget()
         column = QVBoxLayout(middle)
@@ -162,6 +175,7 @@ class MainWindow(QMainWindow):
         self._choice = choice
         scheme = scheme_of(choice)
         self.view.set_scheme(scheme)
+        self.wall.set_scheme(scheme)
         apply_scheme(scheme)
 
     def _system_scheme_changed(self) -> None:
@@ -179,11 +193,13 @@ class MainWindow(QMainWindow):
             return
         worker = self._feed.worker
         limit = timedelta(seconds=worker.watchdog_s * self._feed.speed)
-        self.view.set_watchdog(_TRUST_NOTHING if worker.is_silent() else limit)
+        watchdog = _TRUST_NOTHING if worker.is_silent() else limit
+        self.view.set_watchdog(watchdog)
         self.view.show_state(state, now)
         if self.view.view is not None:
             self.announcer.show_view(self.view.view)
             self.details.show_view(self.view.view, self.view.colours)
+        self.wall.show_state(state, now, watchdog)
         if self._type_in is not None:
             self._type_in[1].refresh()
 
@@ -203,7 +219,7 @@ class MainWindow(QMainWindow):
         self._stack.setCurrentWidget(self.fault_page)
 
     def _show_again(self) -> None:
-        self._stack.setCurrentWidget(self._nothing_yet if self._state is None else self.view)
+        self._stack.setCurrentWidget(self._nothing_yet if self._state is None else self._board())
         self.tick()
 
     # What a person asks for.
@@ -292,17 +308,9 @@ class MainWindow(QMainWindow):
             f"{ADVISES}\n\n{formatting.CAUTION}{invented}",
         )
 
-    def toggle_full_screen(self) -> None:
-        """Show the board alone on the whole screen, or as before."""
-        full = not self.isFullScreen()
-        self.menuBar().setVisible(not full)
-        if full:
-            self.showFullScreen()
-        else:
-            self.showNormal()
-
     def show_page(self, page: int) -> None:
-        """Show a page, by its place from 0."""
+        """Show a page, by its place from 0; the wall view ends with it."""
+        self.wall.leave()
         self.view.set_page(page)
 
     # What the recorder answers.
@@ -317,7 +325,7 @@ class MainWindow(QMainWindow):
         self._state = state
         self.setWindowTitle(f"{state.airfield.name} · Airfield Board")
         if self._stack.currentWidget() is self._nothing_yet:
-            self._stack.setCurrentWidget(self.view)
+            self._stack.setCurrentWidget(self._board())
         self.tick()
         if self._messages is not None:
             self._messages.show_state(state)
@@ -417,6 +425,14 @@ class MainWindow(QMainWindow):
         self._messages = None
 
     # The window itself.
+
+    def _board(self) -> QWidget:
+        return self.wall.view if self.wall.on else self.view
+
+    def _wall_changed(self) -> None:
+        self.tick()  # before it is seen: what it showed last may be long past
+        if self._stack.currentWidget() in (self.view, self.wall.view):
+            self._stack.setCurrentWidget(self._board())
 
     def _in_demo(self) -> bool:
         return self._state is not None and self._state.mode is Mode.DEMO

@@ -22,7 +22,8 @@ KEYS = (
     ("P", "read the source now"),
     ("E", "type in an observation"),
     ("M", "messages, and the rows that were not used"),
-    ("F11", "full screen"),
+    ("F11", "wall view, on the whole screen, and back"),
+    ("Shift+F11", "the wall view's screen and viewing distance"),
     ("F1, ?", "this sheet"),
 )
 """Which key does what, in words."""
@@ -86,7 +87,8 @@ class Menus:
             action.setChecked(each is choice)
             group.addAction(action)
         menu.addSeparator()
-        self._add(menu, "&Full screen", window.toggle_full_screen, "F11")
+        self._add(menu, "&Wall view", window.wall.toggle, "F11")
+        self._add(menu, "Wall view: &screen and distance …", window.wall.ask, "Shift+F11")
 
     def _add(self, menu: QMenu, words: str, act: Callable[[], object], *keys: str) -> QAction:
         action = QAction(words, self._window)

@@ -362,15 +362,6 @@ def test_a_change_of_the_systems_look_is_followed_only_where_that_was_chosen(des
     desk.qtbot.waitUntil(lambda: desk.window.palette().window().color().lightness() > 60)
 
 
-def test_f11_shows_the_board_alone_and_back(desk: Desk) -> None:
-    press(desk, Qt.Key.Key_F11)
-    desk.qtbot.waitUntil(desk.window.isFullScreen)
-    assert not desk.window.menuBar().isVisible()
-    desk.window.toggle_full_screen()
-    desk.qtbot.waitUntil(lambda: not desk.window.isFullScreen())
-    assert desk.window.menuBar().isVisible()
-
-
 def message_box(desk: Desk) -> str:
     box = desk.dialog(QMessageBox)
     assert isinstance(box, QMessageBox)
