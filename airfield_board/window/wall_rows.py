@@ -11,8 +11,8 @@ from airfield_board.clock import local_day
 from airfield_board.limits.states import State
 from airfield_board.session.board_state import BoardState
 from airfield_board.window import formatting
-from airfield_board.window.axes import AltitudeAxis, board_range
-from airfield_board.window.board_page import altitude_marks, scene_of
+from airfield_board.window.axes import AltitudeAxis, altitude_marks, board_range
+from airfield_board.window.board_page import level_label, scene_of
 from airfield_board.window.canvas import Canvas
 from airfield_board.window.day_scene import DayScene
 from airfield_board.window.fonts import MEDIUM, SEMIBOLD
@@ -240,12 +240,12 @@ class WallRows(Canvas):
         )
 
     def _paint_level(self, painter: QPainter, letters: Lettering, view: View, plan: WallPlan) -> None:
-        level_ft, unit = self._level_ft(view), view.state.airfield.altitude_unit
+        level_ft = self._level_ft(view)
         if plan.level is None or level_ft is None:
             return
         colours, (place, middle) = self.colours, plan.level
         column = plan.columns[place]
-        words = f"DA now {formatting.altitude(level_ft, unit)} {unit}"
+        words = level_label(view, level_ft)
         size = max(round(plan.word_px * 0.49), 1)
         height = plan.word_px * 0.59
         painter.save()

@@ -76,7 +76,12 @@ def item_of(row: OperationLine, view: View) -> WallItem:
     first, then those that were near or reduced. A row that is or was on HOLD is never folded.
     """
     line = row.shown
+    below = row.state in (State.HOLD, State.REDUCED)
     rank: int | None = None
+    conditions = view.state.conditions if view.trusted else None
+    if row.state is State.NO_DATA and conditions is not None and line is not None and line.place_ft is not None:
+        # One without data stays on the side of the level on which its limit lies.
+        below = line.place_ft < conditions.density_altitude_ft
     if view.trusted:
         if row.state is State.GO and (line is None or line.gone_by is None):
             rank = 0
@@ -85,7 +90,7 @@ def item_of(row: OperationLine, view: View) -> WallItem:
         rank = {None: 0, State.NO_DATA: 0, State.GO: 0, State.NEAR: 1, State.REDUCED: 1}.get(was)
     return WallItem(
         place_ft=line.place_ft if line is not None else None,
-        below=row.state in (State.HOLD, State.REDUCED),
+        below=below,
         fold_rank=rank,
         kind=row.state.value,
     )

@@ -181,7 +181,35 @@ def test_typed_in_is_said(qtbot: QtBot) -> None:
 
 
 def test_an_ageing_reading_is_said(qtbot: QtBot) -> None:
-    assert "Ageing" in words(wall(qtbot, states.board(14, age_min=45.0)), "WallHeader")
+    view = wall(qtbot, states.board(14, age_min=45.0))
+    assert "Ageing" in words(view, "WallHeader")
+    level = [text for text in words(view, "WallRows") if text.startswith("DA ") and text.endswith(" ft")]
+    assert level == ["DA at 12:35 6,690 ft"]
+
+
+@pytest.mark.parametrize("count", [14, 40])
+def test_a_row_without_data_stays_on_its_side_of_the_level(qtbot: QtBot, count: int) -> None:
+    state = states.board(count)
+    rows = []
+    for row in state.operations:
+        if row.aircraft_name in ("Motor glider", "Single-seat aerobatic"):
+            assert row.shown is not None
+            blank = replace(row.shown, state=State.NO_DATA, margin=None, reason="suspect reading")
+            rows.append(replace(row, state=State.NO_DATA, shown=blank))
+        else:
+            rows.append(row)
+    view = wall(qtbot, replace(state, operations=tuple(rows)))
+    plan = view.rows.plan
+    assert plan is not None
+    assert plan.level is not None
+    # Of the invented limits, 6,450 ft lies under the air's 6,830 ft, and 7,150 ft over it.
+    sides = {
+        rows[box.rows[0]].aircraft_name: (box.column, box.middle_px) > plan.level
+        for box in plan.boxes
+        if len(box.rows) == 1
+    }
+    assert sides["Motor glider"]
+    assert not sides["Single-seat aerobatic"]
 
 
 def test_guarded_acceptance_shows_the_value_compared(qtbot: QtBot) -> None:
