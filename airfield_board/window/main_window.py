@@ -431,6 +431,8 @@ class MainWindow(QMainWindow):
 
     def _wall_changed(self) -> None:
         self.tick()  # before it is seen: what it showed last may be long past
+        if self.wall.on:
+            self.details.close()  # nothing may stand before the rows
         if self._stack.currentWidget() in (self.view, self.wall.view):
             self._stack.setCurrentWidget(self._board())
 

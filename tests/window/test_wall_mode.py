@@ -111,6 +111,14 @@ def test_escape_and_the_keys_of_the_pages_leave_it(room: Room) -> None:
     assert not room.window.isFullScreen()
 
 
+def test_details_do_not_stand_before_the_wall(room: Room) -> None:
+    room.window.view.board.rows.choose(board(14).operations[0].key)
+    room.window.show_details()
+    room.qtbot.waitUntil(room.window.details.isVisible)
+    room.window.wall.enter()
+    assert not room.window.details.isVisible()
+
+
 def test_a_window_that_filled_its_screen_does_so_again(room: Room) -> None:
     room.window.showMaximized()
     room.window.wall.enter()
