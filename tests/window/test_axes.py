@@ -19,7 +19,7 @@ from airfield_board.window.day_scene import stretches_of
 from tests.window import states
 
 BERLIN = ZoneInfo("Europe/Berlin")
-feet = st.floats(-2000.0, 20000.0)
+feet = st.floats(-2000.0, 20000.0, allow_subnormal=False)
 
 
 @given(st.lists(feet, max_size=30), st.lists(feet, min_size=1, max_size=5), st.lists(feet, max_size=5))
