@@ -14,7 +14,8 @@ from airfield_board.window.lettering import Lettering, baseline_for_middle, widt
 from airfield_board.window.marks import paint_mark
 from airfield_board.window.palette import Palette
 from airfield_board.window.row_painter import block_border, block_look
-from airfield_board.window.wall_layout import WORD_BASE_PX, WallBox, WallColumn, WallPlan
+from airfield_board.window.wall_columns import WORD_BASE_PX, WallColumn
+from airfield_board.window.wall_layout import WallBox, WallPlan
 from airfield_board.window.wall_words import WallWords
 
 _NAME_PX, _OPERATION_PX = 30, 22

@@ -20,7 +20,8 @@ from airfield_board.window.lettering import Lettering, baseline_for_middle, widt
 from airfield_board.window.marks import mark_colour
 from airfield_board.window.palette import Palette
 from airfield_board.window.reading import Cause, View
-from airfield_board.window.wall_layout import WallPlan, WallRoom, plan_wall
+from airfield_board.window.wall_columns import WallRoom
+from airfield_board.window.wall_layout import WallPlan, plan_wall
 from airfield_board.window.wall_row_painter import WallRowPainter
 from airfield_board.window.wall_words import WallWords, counted, item_of, words_of
 

@@ -8,14 +8,12 @@ from hypothesis import given, settings
 from hypothesis import strategies as st
 
 from airfield_board.window.axes import AltitudeAxis
+from airfield_board.window.wall_columns import Arrangement, WallRoom
 from airfield_board.window.wall_layout import (
     ROW_SMALLEST_EM,
-    Arrangement,
     WallItem,
     WallPlan,
-    WallRoom,
     plan_wall,
-    rows_beside_plot,
 )
 
 # The card of a screen of 1920 by 1080 pixels, and the type that 43 inches at 3 m ask for (test_wall_size).
@@ -71,7 +69,6 @@ def test_fourteen_rows_stand_beside_the_plot_at_54_px() -> None:
     assert plan.word_px == 49
     assert plan.pitch_px >= 54.0
     assert len(plan.boxes) == 14
-    assert rows_beside_plot(ROOM) >= 14
 
 
 def test_rows_that_do_not_fit_are_go_rows_folded_into_one_line_the_farthest_first() -> None:

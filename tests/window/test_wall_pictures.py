@@ -12,7 +12,7 @@ from airfield_board.limits.states import State
 from airfield_board.session.board_state import BoardState, Message, Mode, SettingChange, Weight
 from airfield_board.window.formatting import STATE_WORDS
 from airfield_board.window.lettering import PaintedText
-from airfield_board.window.wall_layout import Arrangement
+from airfield_board.window.wall_columns import Arrangement
 from airfield_board.window.wall_size import WallSetup
 from airfield_board.window.wall_view import WallView
 from tests.window import states
