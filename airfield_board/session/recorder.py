@@ -333,6 +333,8 @@ class Recorder:
             # No change tells that the reading has become stale, and the clock may be set back before one does.
             records.append(Record(kind=RecordKind.CLOCK, at=now, body={"stale": True}))
         self._write(records, judged.changes, judged.ended, now)
+        if self._recording.history is not None and not self._recording.kept_back:
+            self._intake.forget_recorded()
         return judged
 
     # -- records
