@@ -1,14 +1,13 @@
 """The Board page: the day plot, its axes, and the rows that hang on it."""
 
 from dataclasses import dataclass
-from datetime import date, datetime, timedelta
+from datetime import datetime, timedelta
 from typing import TYPE_CHECKING
 
 from PySide6.QtCore import QRectF, QSize, QTimer, Signal
 from PySide6.QtGui import QColor, QPainter, QResizeEvent, QShowEvent
 from PySide6.QtWidgets import QWidget
 
-from airfield_board.clock import local_day
 from airfield_board.session.board_state import BoardState, Freshness, OperationLine
 from airfield_board.window import formatting
 from airfield_board.window.axes import AltitudeAxis, TimeAxis, altitude_marks, board_range, day_bounds, hour_marks
@@ -62,7 +61,7 @@ class BoardPage(Canvas):
         self._shown: tuple[BoardState, datetime, Cause, QSize] | None = None
         self._scene: DayScene | None = None
         self._plot: DayPlot | None = None
-        self._range: tuple[date, str, tuple[float, float]] | None = None
+        self._range: tuple[int, str, tuple[float, float]] | None = None
         self.rows.selected.connect(self._on_selected)
         self.card.poll_asked.connect(self.poll_asked)
         self.card.type_in_asked.connect(self.type_in_asked)
@@ -163,7 +162,8 @@ class BoardPage(Canvas):
 
     def _altitude_range(self, view: View) -> tuple[float, float]:
         """Return the ends of the altitude axis: within a day they only move apart, so that the picture stays still."""
-        day = local_day(view.now, view.zone)
+        # The state's day, not the clock's: what the last board before midnight shows is no part of the new day.
+        day = view.state.curve.day_start_us
         low_ft, high_ft = board_range(view.state)
         if self._range is not None and self._range[:2] == (day, view.state.airfield.name):
             low_ft, high_ft = min(low_ft, self._range[2][0]), max(high_ft, self._range[2][1])

@@ -173,8 +173,8 @@ class MainWindow(QMainWindow):
         state = self._state
         now = self._feed.clock.now()
         last, self._last_tick = self._last_tick, now
-        if last is not None and (now - last).total_seconds() > _RESUME_AFTER_S * self._feed.speed:
-            self.poll()  # the machine slept
+        if last is not None and abs((now - last).total_seconds()) > _RESUME_AFTER_S * self._feed.speed:
+            self.poll()  # the machine slept, or its clock was set
         if state is None:
             return
         worker = self._feed.worker
