@@ -1,8 +1,8 @@
 """The recorder around midnight, on the nights of the clock change, on 29 February, and with a clock set wrong.
 
 At 4,120 ft and 1013.25 hPa the dry air has some 5,800 ft at 21.6 °C, 6,200 ft at 25 °C, and 6,490 ft at 27.5 °C; one is
-at most 5.9 °C from the next, so that no reading is suspect. Clock changes of Los Angeles: 2026-03-08 and 2026-11-01, at 02:00 local (US Code, title 15, section
-260a; IANA time zone database).
+at most 5.9 °C from the next, so that no reading is suspect. Clock changes of Los Angeles: 2026-03-08 and 2026-11-01, at
+02:00 local (US Code, title 15, section 260a; IANA time zone database).
 """
 
 import os
@@ -123,9 +123,7 @@ def test_at_midnight_the_day_turns_over_and_a_hold_goes_on(station: Station) -> 
     assert state.conditions.peak_time == MIDNIGHT + FIVE_MIN, "yesterday's peak is not today's"
     state = station.send(MIDNIGHT + 3 * FIVE_MIN, COOL_C)
     assert states(state)["trainer"] is State.GO
-    assert [(span.start, span.end) for span in shown(state, "trainer").spans] == [
-        (MIDNIGHT, MIDNIGHT + 3 * FIVE_MIN)
-    ]
+    assert [(span.start, span.end) for span in shown(state, "trainer").spans] == [(MIDNIGHT, MIDNIGHT + 3 * FIVE_MIN)]
     station.close()
 
 
