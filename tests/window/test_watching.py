@@ -1,6 +1,7 @@
 """The window that trusts nothing by itself: a recorder that does not answer, a sleep, a clock set wrong."""
 
 from collections.abc import Iterator
+from contextlib import contextmanager
 from datetime import datetime, timedelta
 
 import pytest
@@ -38,8 +39,17 @@ class WatchedDesk(Desk):
 def desk(qtbot: QtBot) -> Iterator[Desk]:
     made = WatchedDesk(qtbot, board())
     yield made
-    made.recorder.gate.set()
     made.window.close()
+
+
+@contextmanager
+def silence(desk: Desk) -> Iterator[None]:
+    """Let no poll be answered for a while."""
+    desk.recorder.gate.clear()
+    try:
+        yield
+    finally:
+        desk.recorder.gate.set()
 
 
 def row_words(desk: Desk) -> set[str]:
@@ -61,28 +71,27 @@ def move(desk: Desk, by: timedelta) -> datetime:
 
 
 def test_a_recorder_that_never_answers_leaves_no_data_on_the_screen(desk: Desk) -> None:
-    desk.recorder.gate.clear()
-    desk.window.show()
-    desk.window.start()
-    desk.qtbot.waitUntil(lambda: ("poll",) in desk.recorder.calls)
-    for _ in range(5):
-        desk.time_s += desk.window.worker.watchdog_s
-        move(desk, timedelta(seconds=20))
-        assert not desk.window.view.isVisible()
-        said = [label.text() for label in desk.window.findChildren(QLabel) if label.isVisible()]
-        assert any("NO DATA" in text for text in said)
+    with silence(desk):
+        desk.window.show()
+        desk.window.start()
+        desk.qtbot.waitUntil(lambda: ("poll",) in desk.recorder.calls)
+        for _ in range(5):
+            desk.time_s += desk.window.worker.watchdog_s
+            move(desk, timedelta(seconds=20))
+            assert not desk.window.view.isVisible()
+            said = [label.text() for label in desk.window.findChildren(QLabel) if label.isVisible()]
+            assert any("NO DATA" in text for text in said)
 
 
 def test_a_recorder_that_stops_answering_takes_every_state_off_the_screen(desk: Desk) -> None:
     desk.open()
     assert {"GO", "HOLD"} <= row_words(desk)
-    desk.recorder.gate.clear()
-    desk.window.poll()
-    desk.time_s += desk.window.worker.watchdog_s + 0.1
-    move(desk, timedelta(seconds=1))
-    assert row_words(desk) == {"NO DATA"}
-    assert "NO DATA" in strip_says(desk)
-    desk.recorder.gate.set()
+    with silence(desk):
+        desk.window.poll()
+        desk.time_s += desk.window.worker.watchdog_s + 0.1
+        move(desk, timedelta(seconds=1))
+        assert row_words(desk) == {"NO DATA"}
+        assert "NO DATA" in strip_says(desk)
     desk.qtbot.waitUntil(lambda: desk.cause() is Cause.NONE)
     assert {"GO", "HOLD"} <= row_words(desk)
 
@@ -100,14 +109,13 @@ def test_a_recorder_that_only_fails_is_no_answer(desk: Desk) -> None:
 def test_after_a_sleep_nothing_counts_until_the_recorder_has_answered(desk: Desk) -> None:
     desk.open()
     polls = desk.recorder.calls.count(("poll",))
-    desk.recorder.gate.clear()
-    # Asleep for 4 min: the reading is not stale yet, and the monotonic clock may have stood meanwhile.
-    now = move(desk, timedelta(minutes=4))
-    desk.qtbot.waitUntil(lambda: desk.recorder.calls.count(("poll",)) == polls + 1)
-    assert desk.cause() is Cause.NO_ANSWER
-    assert row_words(desk) == {"NO DATA"}
-    desk.recorder.state = board(hour=13.0 + 24 / 60)
-    desk.recorder.gate.set()
+    with silence(desk):
+        # Asleep for 4 min: the reading is not stale yet, and the monotonic clock may have stood meanwhile.
+        now = move(desk, timedelta(minutes=4))
+        desk.qtbot.waitUntil(lambda: desk.recorder.calls.count(("poll",)) == polls + 1)
+        assert desk.cause() is Cause.NO_ANSWER
+        assert row_words(desk) == {"NO DATA"}
+        desk.recorder.state = board(hour=13.0 + 24 / 60)
     desk.qtbot.waitUntil(lambda: desk.window.state is desk.recorder.state)
     assert abs(now - desk.recorder.state.assessed_at) < timedelta(seconds=10)
     assert desk.cause() is Cause.NONE
@@ -128,10 +136,10 @@ def test_after_a_night_asleep_a_stale_reading_stays_no_data_though_the_recorder_
 def test_a_clock_that_is_set_is_followed_at_once_and_nothing_counts_meanwhile(desk: Desk, by: timedelta) -> None:
     desk.open()
     polls = desk.recorder.calls.count(("poll",))
-    desk.recorder.gate.clear()
-    move(desk, by)
-    desk.qtbot.waitUntil(lambda: desk.recorder.calls.count(("poll",)) == polls + 1)
-    assert desk.cause() is not Cause.NONE
-    assert row_words(desk) == {"NO DATA"}
-    move(desk, -by)
-    assert desk.cause() is Cause.NONE
+    with silence(desk):
+        move(desk, by)
+        desk.qtbot.waitUntil(lambda: desk.recorder.calls.count(("poll",)) == polls + 1)
+        assert desk.cause() is not Cause.NONE
+        assert row_words(desk) == {"NO DATA"}
+        move(desk, -by)
+        assert desk.cause() is Cause.NONE
