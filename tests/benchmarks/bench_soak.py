@@ -39,7 +39,7 @@ def measure(folder: Path, days: int) -> dict[int, int]:
     """Run the days, and return the resident size at the end of each, by its number from 1."""
     os.environ["QT_QPA_PLATFORM"] = "offscreen"
     from airfield_board.window.board_view import BoardView
-    from airfield_board.window.picture import image_of, offscreen_application
+    from airfield_board.window.picture import offscreen_application
 
     application = offscreen_application()
     profile = write_field(folder)
@@ -60,8 +60,10 @@ def measure(folder: Path, days: int) -> dict[int, int]:
             recorder = recorder or Recorder.open(profile, clock=clock, mode=Mode.LIVE)
             view.show_state(recorder.poll(), clock.now())
             view.ensure_plot()
+            view.header.painted = []
             application.processEvents()
-            image_of(view)
+            if not view.header.painted:
+                raise SystemExit(f"nothing was painted in minute {minute}")
             if (minute + 1) % _DAY_MIN == 0:
                 gc.collect()
                 day = (minute + 1) // _DAY_MIN
