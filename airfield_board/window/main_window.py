@@ -29,6 +29,7 @@ from airfield_board.window.no_board_page import NoBoardPage
 from airfield_board.window.notice_bar import NoticeBar
 from airfield_board.window.row_access import follow_focus
 from airfield_board.window.text_board import ADVISES
+from airfield_board.window.text_size import TextSize
 from airfield_board.window.theme import SchemeChoice, apply_scheme, scheme_of
 from airfield_board.window.worker import Answer, Request, Worker
 
@@ -78,12 +79,28 @@ class MainWindow(QMainWindow):
         Light, dark, or as the system.
     replayable
         Whether the feed can be started again: the demo.
+    text_size
+        How large everything is; None: there is nothing to choose.
+
+    Attributes
+    ----------
+    start_again
+        Whether the program is to begin anew once the window has closed.
     """
 
     opening_failed = Signal(object)
 
-    def __init__(self, start_feed: Callable[[], Feed], *, choice: SchemeChoice, replayable: bool = False) -> None:
+    def __init__(
+        self,
+        start_feed: Callable[[], Feed],
+        *,
+        choice: SchemeChoice,
+        replayable: bool = False,
+        text_size: TextSize | None = None,
+    ) -> None:
         super().__init__()
+        self.start_again = False
+        self._text_size = text_size
         self._start_feed = start_feed
         self._feed = start_feed()
         self._state: BoardState | None = None
@@ -113,7 +130,7 @@ class MainWindow(QMainWindow):
         column.addWidget(self._stack, 1)
         column.addWidget(self.notice)
         self.setCentralWidget(middle)
-        self._menus = Menus(self, choice, replayable=replayable)
+        self._menus = Menus(self, choice, replayable=replayable, text_size=text_size)
         self.choose_scheme(choice)
 
         self.view.acknowledge_asked.connect(self._acknowledge_asked)
@@ -300,6 +317,23 @@ class MainWindow(QMainWindow):
             self.showFullScreen()
         else:
             self.showNormal()
+
+    def choose_text_size(self, percent: int) -> None:
+        """Keep a text size for the next start, and offer to start at once."""
+        if self._text_size is None:
+            return
+        if not self._text_size.keep(percent):
+            self.notice.say("The text size could not be written down; it stays as it is.")
+        elif percent == self._text_size.percent:
+            self.notice.dismiss()
+        else:
+            self.notice.say(
+                f"Text at {percent} % from the next start.", action="Start again now", act=self._start_again
+            )
+
+    def _start_again(self) -> None:
+        self.start_again = True
+        self.close()
 
     def show_page(self, page: int) -> None:
         """Show a page, by its place from 0."""
