@@ -76,7 +76,13 @@ class DayRecord:
         self._changes = {key: changes for key, changes in self._changes.items() if key in keys}
 
     def forget_before(self, when_us: int) -> None:
-        """Let go of what is older, but for the last state before."""
+        """Let go of what is older, but for the last state before.
+
+        Of a time that no observation has reached nothing is known yet: a clock set forward by mistake makes nothing
+        old, so that the day is whole when it is set right.
+        """
+        if len(self._time_us):
+            when_us = min(when_us, int(self._time_us[-1]) - KEPT_US)
         keep = self._time_us >= when_us
         if not keep.all():
             self._time_us = self._time_us[keep]

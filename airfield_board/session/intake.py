@@ -7,6 +7,7 @@ import numpy as np
 from airfield_board.observations.observation import NO_TIME_US, ObservationTable
 
 _MOST_KNOWN = 50_000
+_SLACK = 2_000
 END_US = int(np.iinfo(np.int64).max)
 """After all times."""
 
@@ -29,6 +30,8 @@ class Intake:
         self._recalled_from_us: int | None = None
         self._known: set[tuple[int, str]] = set()
         self._last: dict[int, str] = {}
+        self._standing: set[tuple[int, str]] = set()
+        """The rows of the part of the file that was read last."""
 
     def new_rows(self, table: ObservationTable) -> ObservationTable:
         """Return the rows not taken before, in the order of the file, and know them from now on."""
@@ -36,7 +39,8 @@ class Intake:
         rows = list(zip(table.time_us.tolist(), table.raw, strict=True))
         last = dict(rows)
         # Few rows of many are new: only those, and others of their times, are looked at one by one.
-        touched = {time_us for time_us, _ in (*(set(rows) - self._known), *(last.items() - self._last.items()))}
+        self._standing = set(rows)
+        touched = {time_us for time_us, _ in (*(self._standing - self._known), *(last.items() - self._last.items()))}
         places = [place for place, (time_us, _) in enumerate(rows) if time_us in touched] if touched else []
         last_place = {rows[place][0]: place for place in places}
         fresh: list[int] = []
@@ -53,6 +57,20 @@ class Intake:
             self._known = set(rows)
             self._last = last
         return table.take(np.array(fresh, dtype=np.int64))
+
+    def forget_recorded(self) -> None:
+        """Let go of rows older than the part of the file that is read, so that no row is kept in memory for ever.
+
+        Only for when all rows given out are recorded: where the file is read further back again, they are recalled.
+        """
+        if self._recalled_from_us is None or len(self._known) <= 2 * len(self._standing) + _SLACK:
+            return
+        first_us = min((time_us for time_us, _ in self._standing if time_us != NO_TIME_US), default=None)
+        if first_us is None:
+            return
+        self._known = {row for row in self._known if row[0] >= first_us} | self._standing
+        self._last = {time_us: text for time_us, text in self._last.items() if time_us >= first_us}
+        self._recalled_from_us = first_us
 
     def _know(self, time_us: int, text: str) -> None:
         self._known.add((time_us, text))

@@ -333,6 +333,8 @@ class Recorder:
             # No change tells that the reading has become stale, and the clock may be set back before one does.
             records.append(Record(kind=RecordKind.CLOCK, at=now, body={"stale": True}))
         self._write(records, judged.changes, judged.ended, now)
+        if self._recording.history is not None and not self._recording.kept_back:
+            self._intake.forget_recorded()
         return judged
 
     # -- records
@@ -365,7 +367,9 @@ class Recorder:
         zone = ZoneInfo(profile.time_zone)
         day_start = start_of_local_day(local_day(now, zone), zone)
         self._day.forget_before(us_from_time(now) - KEPT_US)
-        self._status.forget_before(day_start)
+        current = self._judge.current
+        # A clock set forward by mistake makes nothing old.
+        self._status.forget_before(day_start if current is None else min(day_start, time_from_us(current.time_us)))
         self._warnings = [warning for warning in self._warnings if warning[0] >= us_from_time(day_start)]
         not_recording = self._recording.problem
         return replace(

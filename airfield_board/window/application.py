@@ -2,6 +2,7 @@
 
 import os
 import signal
+import subprocess
 import sys
 import tempfile
 from collections.abc import Callable, Iterable
@@ -10,6 +11,8 @@ from pathlib import Path
 from types import TracebackType
 from typing import TYPE_CHECKING, TextIO
 from zoneinfo import ZoneInfo
+
+import platformdirs
 
 from airfield_board import ADVISES
 from airfield_board.clock import SystemClock
@@ -25,6 +28,7 @@ if TYPE_CHECKING:
     from airfield_board.window.main_window import Feed, MainWindow
 
 DONE = 0
+_START_AGAIN = -1
 _FOLDER_PREFIX = "airfield-board-demo-"
 DEMO_PICTURE = "airfield-board-demo.png"
 _DEMO_PICTURE_PX = (1440, 900)
@@ -66,7 +70,7 @@ def run_window(profile_path: Path, *, scheme: str = "system", wall: bool = False
             worker=Worker(lambda: Recorder.open(profile_path, clock=clock, mode=Mode.LIVE, loaded=airfield)),
         )
 
-    return _run(screen, start_feed, scheme=scheme, replayable=False, wall=wall)
+    return _again_or(_run(screen, start_feed, scheme=scheme, replayable=False, wall=wall))
 
 
 def run_demo(*, scheme: str = "system", wall: bool = False, out: TextIO | None = None) -> int:
@@ -105,7 +109,8 @@ def run_demo(*, scheme: str = "system", wall: bool = False, out: TextIO | None =
             worker = Worker(day.open_recorder, before_poll=day.feed, poll_s=DEMO_POLL_S)
             return Feed(clock=day.clock, worker=worker, speed=DEMO_SPEED)
 
-        return _run(screen, start_feed, scheme=scheme, replayable=True, wall=wall)
+        code = _run(screen, start_feed, scheme=scheme, replayable=True, wall=wall)
+    return _again_or(code)
 
 
 def play_demo_in_terminal(out: TextIO, folder: Path, *, scheme: str = "light") -> int:
@@ -204,14 +209,17 @@ def _run(screen: Screen, start_feed: "Callable[[], Feed]", *, scheme: str, repla
 
     from airfield_board.window.main_window import MainWindow
     from airfield_board.window.row_access import install_row_access
+    from airfield_board.window.text_size import TextSize
     from airfield_board.window.theme import SchemeChoice
 
+    text_size = TextSize(Path(platformdirs.user_config_dir("airfield-board")) / "window.ini", os.environ)
+    text_size.begin()
     application = QApplication(sys.argv[:1])
     screen.release()
     application.setApplicationName("Airfield Board")
     application.setStyle("Fusion")
     install_row_access()
-    window = MainWindow(start_feed, choice=SchemeChoice(scheme), replayable=replayable)
+    window = MainWindow(start_feed, choice=SchemeChoice(scheme), replayable=replayable, text_size=text_size)
     problems: list[str] = []
 
     def give_up(problem: str) -> None:
@@ -227,6 +235,18 @@ def _run(screen: Screen, start_feed: "Callable[[], Feed]", *, scheme: str, repla
         window.wall.enter()  # only now: showing may fit the window to its contents, which ends the whole screen
     window.start()
     code = application.exec()
+    text_size.end()
     if problems:
         raise UserError("\n".join(problems))
+    return _START_AGAIN if window.start_again else code
+
+
+def _again_or(code: int) -> int:
+    """Put this program anew in the place of this process where the window asked for it; else return the exit code."""
+    if code == _START_AGAIN:
+        command = [sys.executable, *sys.orig_argv[1:]]
+        if os.name != "nt":
+            os.execv(command[0], command)  # noqa: S606  this very program, with its own arguments
+        subprocess.Popen(command)  # noqa: S603  likewise
+        return DONE
     return code

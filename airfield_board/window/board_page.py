@@ -1,19 +1,18 @@
 """The Board page: the day plot, its axes, and the rows that hang on it."""
 
 from dataclasses import dataclass
-from datetime import date, datetime, timedelta
+from datetime import datetime, timedelta
 from typing import TYPE_CHECKING
 
 from PySide6.QtCore import QRectF, QSize, QTimer, Signal
 from PySide6.QtGui import QColor, QPainter, QResizeEvent, QShowEvent
 from PySide6.QtWidgets import QWidget
 
-from airfield_board.clock import local_day
 from airfield_board.session.board_state import BoardState, Freshness, OperationLine
 from airfield_board.window import formatting
 from airfield_board.window.axes import AltitudeAxis, TimeAxis, altitude_marks, board_range, day_bounds, hour_marks
 from airfield_board.window.canvas import Canvas
-from airfield_board.window.day_axis import paint_hours, paint_now
+from airfield_board.window.day_axis import NOW_PX, paint_hours, paint_now
 from airfield_board.window.day_scene import DayScene, Shelf
 from airfield_board.window.fonts import MEDIUM
 from airfield_board.window.lettering import Lettering, baseline_for_middle, width_of
@@ -21,7 +20,7 @@ from airfield_board.window.no_data_card import NoDataCard
 from airfield_board.window.palette import Palette
 from airfield_board.window.reading import Cause, View
 from airfield_board.window.row_layout import Density, choose_pitch
-from airfield_board.window.row_painter import GUTTER_PX
+from airfield_board.window.row_painter import GUTTER_PX, PLOT_SMALLEST_PX
 from airfield_board.window.row_panel import ROWS_BOTTOM_PX, ROWS_TOP_PX, Headings, RowPanel
 from airfield_board.window.row_words import tip_of, words_of
 
@@ -62,7 +61,7 @@ class BoardPage(Canvas):
         self._shown: tuple[BoardState, datetime, Cause, QSize] | None = None
         self._scene: DayScene | None = None
         self._plot: DayPlot | None = None
-        self._range: tuple[date, str, tuple[float, float]] | None = None
+        self._range: tuple[int, str, tuple[float, float]] | None = None
         self.rows.selected.connect(self._on_selected)
         self.card.poll_asked.connect(self.poll_asked)
         self.card.type_in_asked.connect(self.type_in_asked)
@@ -132,7 +131,7 @@ class BoardPage(Canvas):
             return
         columns = self.rows.choose_columns(self.height(), self.width() + _MARGINS_PX)
         rows_width = int(GUTTER_PX + columns.width)
-        plot_width = max(self.width() - AXIS_PX - rows_width, 120)
+        plot_width = max(self.width() - AXIS_PX - rows_width, PLOT_SMALLEST_PX)
         self.rows.setGeometry(AXIS_PX + plot_width, 0, self.width() - AXIS_PX - plot_width, self.height())
         low_ft, high_ft = self._altitude_range(view)
         bottom = float(self.height() - TIME_AXIS_PX)
@@ -148,7 +147,8 @@ class BoardPage(Canvas):
 
     def _altitude_range(self, view: View) -> tuple[float, float]:
         """Return the ends of the altitude axis: within a day they only move apart, so that the picture stays still."""
-        day = local_day(view.now, view.zone)
+        # The state's day, not the clock's: what the last board before midnight shows is no part of the new day.
+        day = view.state.curve.day_start_us
         low_ft, high_ft = board_range(view.state)
         if self._range is not None and self._range[:2] == (day, view.state.airfield.name):
             low_ft, high_ft = min(low_ft, self._range[2][0]), max(high_ft, self._range[2][1])
@@ -171,6 +171,8 @@ class BoardPage(Canvas):
         # Else in the upper left: there the curve is not, for the morning is the coolest of the day.
         right_of_now = now_px + size.width() + 16 <= plot_width
         left = AXIS_PX + (plot_width - size.width() - 8 if right_of_now else 12)
+        # A narrow plot is covered, and the leaders beside it; the rows never are.
+        left = max(min(left, self.rows.x() + GUTTER_PX - 8 - size.width()), 4)
         top = self.height() - TIME_AXIS_PX - size.height() - 12 if right_of_now else PLOT_TOP_PX + 12
         self.card.setGeometry(left, top, size.width(), size.height())
         self.card.raise_()
@@ -186,14 +188,16 @@ class BoardPage(Canvas):
         if view is None or scene is None:
             return
         unit = view.state.airfield.altitude_unit
+        free_right = self.rows.x() + GUTTER_PX - 12.0
         title = f"Density altitude, {unit}"
+        if 14 + width_of(title, 13, MEDIUM) + 12 + NOW_PX > free_right:
+            title = f"DA, {unit}"
         letters.text((14, 23), title, self.colours.soft_ink, 13, MEDIUM)
         self._paint_altitudes(painter, letters, scene, unit)
         bottom = PLOT_TOP_PX + scene.altitude.bottom_px
         right = self.rows.x() + 24.0
         paint_hours(painter, letters, self.colours, scene.time, scene.hours, view, (AXIS_PX, bottom, right))
         free_left = 14 + width_of(title, 13, MEDIUM) + 12
-        free_right = self.rows.x() + GUTTER_PX - 12.0
         paint_now(painter, letters, self.colours, scene.time, view, (AXIS_PX, PLOT_TOP_PX, free_left, free_right))
 
     def _paint_altitudes(self, painter: QPainter, letters: Lettering, scene: DayScene, unit: str) -> None:
@@ -201,6 +205,8 @@ class BoardPage(Canvas):
         painter.fillRect(QRectF(AXIS_PX, PLOT_TOP_PX + axis.bottom_px, scene.time.right_px, 1), QColor(colours.line))
         for altitude_ft, text in altitude_marks(axis, unit):
             y = PLOT_TOP_PX + axis.px(altitude_ft)
+            if self.card.covers(AXIS_PX - 10, y):
+                continue
             painter.fillRect(QRectF(AXIS_PX - 6, round(y), 6, 1), QColor(colours.line))
             at = (AXIS_PX - 10, baseline_for_middle(y, 13))
             letters.text(at, text, colours.soft_ink, 13, side="right")

@@ -25,7 +25,7 @@ from airfield_board.window.reading import Frame, View, view_of
 from airfield_board.window.row_layout import Density
 from airfield_board.window.strip import ObservationStrip
 
-SMALLEST_PX = (1200, 760)
+SMALLEST_PX = (960, 460)
 _MARGIN_PX = 16
 _GAP_PX = 8
 _CAUTION_PX = 27

@@ -12,6 +12,9 @@ from airfield_board.window.lettering import Lettering, width_of
 from airfield_board.window.palette import Palette
 from airfield_board.window.reading import View
 
+NOW_PX = 92
+"""Room for the label of now."""
+
 
 def paint_hours(
     painter: QPainter,

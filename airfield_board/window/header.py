@@ -15,6 +15,8 @@ from airfield_board.window.reading import View
 
 HEIGHT_PX = 48
 _MIDDLE = 31.0
+_DATE_FROM_PX = 1000
+"""In a narrower header the date goes: the clock stays."""
 
 
 class Header(Canvas):
@@ -79,7 +81,6 @@ class Header(Canvas):
         frames = view.frames
         if frames:
             left = self._chip(painter, letters, left, frames[0].value, loud=True) + 14
-        elevation = formatting.elevation(airfield.elevation_m, airfield.altitude_unit)
         others = [frame.value for frame in frames[1:]]
         observation = view.state.observation
         if view.live:
@@ -88,13 +89,17 @@ class Header(Canvas):
             others.append("TYPED IN")
         tabs = sum(width_of(page, 15, SEMIBOLD) + 30 for page in self._pages)
         chips = sum(width_of(word, 12, BOLD) + 30 for word in others)
-        invented = "invented field" if view.state.mode is Mode.DEMO else ""
-        notes = width_of(elevation, 13) + 24 + (width_of(invented, 13) + 12 if invented else 0)
-        room = max(clock_left - left - tabs - chips - notes - 40, 60.0)
+        free = clock_left - left - tabs - chips - 40
+        notes = [formatting.elevation(airfield.elevation_m, airfield.altitude_unit)]
+        if view.state.mode is Mode.DEMO:
+            notes.insert(0, "invented field")
+        # In a narrow window the notes go, the last first, before the name is cut.
+        while notes and free - _notes_width(notes) < width_of(airfield.name, 22, SEMIBOLD):
+            notes.pop()
+        room = max(free - _notes_width(notes), 60.0)
         left = letters.text((left, _MIDDLE), airfield.name, colours.on_header, 22, SEMIBOLD, room_px=room)
-        left = letters.text((left + 10, _MIDDLE), elevation, colours.soft_on_header, 13)
-        if invented:
-            left = letters.text((left + 12, _MIDDLE), invented, colours.soft_on_header, 13)
+        for note in reversed(notes):
+            left = letters.text((left + 11, _MIDDLE), note, colours.soft_on_header, 13)
         for word in others:
             left = self._chip(painter, letters, left + 12, word, loud=False)
         return left
@@ -145,6 +150,8 @@ class Header(Canvas):
         right = letters.text((right, _MIDDLE), "local", colours.soft_on_header, 13, MEDIUM, side="right") - 6
         right = letters.text((right, _MIDDLE), f":{local:%S}", colours.soft_on_header, 15, MEDIUM, side="right") - 1
         right = letters.text((right, _MIDDLE), f"{local:%H:%M}", colours.on_header, 24, SEMIBOLD, side="right") - 20
+        if self.width() < _DATE_FROM_PX:
+            return right
         date = formatting.weekday(view.now, view.zone)
         return letters.text((right, _MIDDLE), date, colours.soft_on_header, 13, MEDIUM, side="right")
 
@@ -165,3 +172,7 @@ class Header(Canvas):
             self.page_asked.emit(self._page + step)
         else:
             super().keyPressEvent(event)
+
+
+def _notes_width(notes: Sequence[str]) -> float:
+    return sum(width_of(note, 13) + 12 for note in notes)

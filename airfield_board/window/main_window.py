@@ -30,6 +30,7 @@ from airfield_board.window.no_board_page import NoBoardPage
 from airfield_board.window.notice_bar import NoticeBar
 from airfield_board.window.row_access import follow_focus
 from airfield_board.window.text_board import ADVISES
+from airfield_board.window.text_size import TextSize
 from airfield_board.window.theme import SchemeChoice, apply_scheme, scheme_of
 from airfield_board.window.wall_mode import WallMode
 from airfield_board.window.wall_settings import usual_place
@@ -83,6 +84,13 @@ class MainWindow(QMainWindow):
         Whether the feed can be started again: the demo.
     wall_file
         Where the wall view's numbers are remembered; None: in the user's folder.
+    text_size
+        How large everything is; None: there is nothing to choose.
+
+    Attributes
+    ----------
+    start_again
+        Whether the program is to begin anew once the window has closed.
     """
 
     opening_failed = Signal(object)
@@ -94,8 +102,11 @@ class MainWindow(QMainWindow):
         choice: SchemeChoice,
         replayable: bool = False,
         wall_file: Path | None = None,
+        text_size: TextSize | None = None,
     ) -> None:
         super().__init__()
+        self.start_again = False
+        self._text_size = text_size
         self._start_feed = start_feed
         self._feed = start_feed()
         self._state: BoardState | None = None
@@ -126,7 +137,7 @@ class MainWindow(QMainWindow):
         column.addWidget(self._stack, 1)
         column.addWidget(self.notice)
         self.setCentralWidget(middle)
-        self._menus = Menus(self, choice, replayable=replayable)
+        self._menus = Menus(self, choice, replayable=replayable, text_size=text_size)
         self.choose_scheme(choice)
 
         self.view.acknowledge_asked.connect(self._acknowledge_asked)
@@ -187,8 +198,8 @@ class MainWindow(QMainWindow):
         state = self._state
         now = self._feed.clock.now()
         last, self._last_tick = self._last_tick, now
-        if last is not None and (now - last).total_seconds() > _RESUME_AFTER_S * self._feed.speed:
-            self.poll()  # the machine slept
+        if last is not None and abs((now - last).total_seconds()) > _RESUME_AFTER_S * self._feed.speed:
+            self.poll()  # the machine slept, or its clock was set
         if state is None:
             return
         worker = self._feed.worker
@@ -307,6 +318,23 @@ class MainWindow(QMainWindow):
             "Airfield Board shows which types may depart at the present density altitude.\n\n"
             f"{ADVISES}\n\n{formatting.CAUTION}{invented}",
         )
+
+    def choose_text_size(self, percent: int) -> None:
+        """Keep a text size for the next start, and offer to start at once."""
+        if self._text_size is None:
+            return
+        if not self._text_size.keep(percent):
+            self.notice.say("The text size could not be written down; it stays as it is.")
+        elif percent == self._text_size.percent:
+            self.notice.dismiss()
+        else:
+            self.notice.say(
+                f"Text at {percent} % from the next start.", action="Start again now", act=self._start_again
+            )
+
+    def _start_again(self) -> None:
+        self.start_again = True
+        self.close()
 
     def show_page(self, page: int) -> None:
         """Show a page, by its place from 0; the wall view ends with it."""

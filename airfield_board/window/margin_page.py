@@ -13,7 +13,7 @@ from airfield_board.session.board_state import BoardState, OperationLine
 from airfield_board.window import formatting
 from airfield_board.window.axes import AltitudeAxis, TimeAxis, altitude_marks, day_bounds, hour_marks
 from airfield_board.window.canvas import Canvas
-from airfield_board.window.day_axis import paint_hours, paint_now
+from airfield_board.window.day_axis import NOW_PX, paint_hours, paint_now
 from airfield_board.window.day_scene import stretches_of
 from airfield_board.window.fonts import MEDIUM, SEMIBOLD, font
 from airfield_board.window.lettering import Lettering, baseline_for_middle, width_of
@@ -31,8 +31,8 @@ from airfield_board.window.no_data_card import NoDataCard
 from airfield_board.window.operation_picker import Choice, OperationPicker
 from airfield_board.window.palette import Palette
 from airfield_board.window.reading import Cause, View
-from airfield_board.window.row_layout import Density
-from airfield_board.window.row_painter import GUTTER_PX, columns_for
+from airfield_board.window.row_layout import PITCH_SMALLEST_PX, STANDARD_FROM_PX, Density
+from airfield_board.window.row_painter import GUTTER_PX, PLOT_SMALLEST_PX, columns_for
 from airfield_board.window.row_panel import Headings, RowPanel
 from airfield_board.window.row_words import RowWords, tip_of, words_of
 
@@ -44,6 +44,8 @@ PLOT_TOP_PX = 44
 TIME_AXIS_PX = 30
 _PICKER_TITLE_PX = 48
 _MARGINS_PX = 32
+_PICKER_PX = 140
+_PICKER_SMALLEST_PX = 74
 _ROW_PX = 44
 _ROW_SMALLEST_PX = 37
 
@@ -182,14 +184,19 @@ class MarginPage(Canvas):
 
     def _arrange(self, view: View, chosen: list[OperationLine]) -> None:
         """Give all parts their places and their common axes, and make the scene."""
-        columns = columns_for(Density.COMFORTABLE, self.width() + _MARGINS_PX)
-        rows_width = int(GUTTER_PX + columns.width)
-        plot_width = max(self.width() - AXIS_PX - rows_width, 120)
-        right_width = self.width() - AXIS_PX - plot_width
         count = max(len(chosen), 1)
-        space = self.height() - 32 - _PICKER_TITLE_PX - 140
+        space = self.height() - 32 - _PICKER_TITLE_PX - _PICKER_PX
         row_px = min(max(space // count, _ROW_SMALLEST_PX), _ROW_PX)
+        density = Density.COMFORTABLE
+        if row_px * count > space + _PICKER_PX - _PICKER_SMALLEST_PX:
+            # So low a page has rows of one line, and the list of operations scrolls.
+            density = Density.STANDARD
+            row_px = min(max((space + _PICKER_PX - _PICKER_SMALLEST_PX) // count, PITCH_SMALLEST_PX), STANDARD_FROM_PX)
         rows_height = 32 + row_px * count + 16
+        columns = columns_for(density, self.width() + _MARGINS_PX)
+        rows_width = int(GUTTER_PX + columns.width)
+        plot_width = max(self.width() - AXIS_PX - rows_width, PLOT_SMALLEST_PX)
+        right_width = self.width() - AXIS_PX - plot_width
         self.rows.setGeometry(AXIS_PX + plot_width, 0, right_width, self.height())
         left = AXIS_PX + plot_width + GUTTER_PX
         self.search.setGeometry(self.width() - 16 - 196, rows_height + 12, 196, 26)
@@ -261,6 +268,8 @@ class MarginPage(Canvas):
     def _place_card(self) -> None:
         size = self.card.sizeHint()
         left = max(self.rows.x() - size.width() - 12, AXIS_PX + 8)
+        # A narrow plot is covered, and the leaders beside it; the rows never are.
+        left = max(min(left, self.rows.x() + GUTTER_PX - 8 - size.width()), 4)
         self.card.setGeometry(left, PLOT_TOP_PX + 8, size.width(), size.height())
         self.card.raise_()
 
@@ -300,10 +309,14 @@ class MarginPage(Canvas):
         if view is None or scene is None:
             return
         title = f"Margin to own limit, {scene.unit}"
+        if 14 + width_of(title, 13, MEDIUM) + 12 + NOW_PX > self.rows.x() + 46.0:
+            title = f"Margin, {scene.unit}"
         letters.text((14, 23), title, colours.soft_ink, 13, MEDIUM)
         axis = scene.margin
         for value_ft, text in altitude_marks(axis, scene.unit, sign=True):
             y = PLOT_TOP_PX + axis.px(value_ft)
+            if self.card.covers(AXIS_PX - 10, y):
+                continue
             painter.fillRect(QRectF(AXIS_PX - 6, round(y), 6, 1), QColor(colours.line))
             weight = SEMIBOLD if value_ft == 0 else 400
             ink = colours.ink if value_ft == 0 else colours.soft_ink

@@ -17,6 +17,8 @@ from airfield_board.window.palette import LIGHT, Palette
 from airfield_board.window.plot import PixelPlot, paint_gap
 
 _HATCH_PX = 11.0
+_NAMES_BESIDE_CARD_FROM_PX = 360
+"""A narrower plot has no room for the sides' names beside the card that says why there is no data."""
 _NAME_GAP_PX = 14.0
 _GROUPS = ((State.GO,), (State.NEAR, State.REDUCED), (State.HOLD,))
 
@@ -132,7 +134,7 @@ class MarginPlot(PixelPlot):
     ) -> None:
         """Name a side where no lines end: ahead of now, late in the day at the left; else a shorter one."""
         scene = self._scene_shown
-        if scene is None:
+        if scene is None or (scene.gap and self.width() < _NAMES_BESIDE_CARD_FROM_PX):
             return
         now = scene.time.px(scene.now)
         last = scene.time.px(scene.observed) if scene.observed is not None else now

@@ -4,10 +4,13 @@ from collections.abc import Callable
 from functools import partial
 from typing import TYPE_CHECKING
 
+from PySide6.QtCore import QSize
 from PySide6.QtGui import QAction, QActionGroup, QKeySequence
 from PySide6.QtWidgets import QMenu
 
 from airfield_board.session.board_state import BoardState
+from airfield_board.window.board_view import SMALLEST_PX
+from airfield_board.window.text_size import TEXT_SIZES_PERCENT, TextSize
 from airfield_board.window.theme import SchemeChoice
 
 if TYPE_CHECKING:
@@ -40,9 +43,13 @@ class Menus:
         The look that is ticked first.
     replayable
         Whether there is a demo to play again.
+    text_size
+        The one to choose; None: none is offered.
     """
 
-    def __init__(self, window: "MainWindow", choice: SchemeChoice, *, replayable: bool) -> None:
+    def __init__(
+        self, window: "MainWindow", choice: SchemeChoice, *, replayable: bool, text_size: TextSize | None
+    ) -> None:
         self._window = window
         bar = window.menuBar()
         observation = bar.addMenu("&Observation")
@@ -54,7 +61,10 @@ class Menus:
         self._acknowledge_all = self._add(changes, "Acknowledge a&ll …", window.acknowledge_all, "Shift+A")
         settings = bar.addMenu("&Settings")
         self._waiting = self._add(settings, "&Waiting …", window.show_waiting_settings)
-        self._fill_view(bar.addMenu("&View"), choice)
+        view = bar.addMenu("&View")
+        self._fill_view(view, choice)
+        if text_size is not None:
+            self._fill_text_sizes(view.addMenu("&Text size"), text_size)
         if replayable:
             self._add(bar.addMenu("&Demo"), "&Play the day again", window.play_again)
         about = bar.addMenu("&Help")
@@ -89,6 +99,18 @@ class Menus:
         menu.addSeparator()
         self._add(menu, "&Wall view", window.wall.toggle, "F11")
         self._add(menu, "Wall view: &screen and distance …", window.wall.ask, "Shift+F11")
+
+    def _fill_text_sizes(self, menu: QMenu, text_size: TextSize) -> None:
+        window = self._window
+        group = QActionGroup(window)
+        screen = window.screen().availableSize()
+        for percent in TEXT_SIZES_PERCENT:
+            action = self._add(menu, f"{percent} %", partial(window.choose_text_size, percent))
+            action.setCheckable(True)
+            action.setChecked(percent == text_size.kept())
+            # One that the screen has no room for is not offered; a smaller one always is.
+            action.setEnabled(percent <= text_size.percent or text_size.fits(percent, screen, QSize(*SMALLEST_PX)))
+            group.addAction(action)
 
     def _add(self, menu: QMenu, words: str, act: Callable[[], object], *keys: str) -> QAction:
         action = QAction(words, self._window)

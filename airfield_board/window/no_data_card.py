@@ -56,6 +56,11 @@ class NoDataCard(Canvas):
         width = max(_WIDTH_PX, int(max(widest, title)) + 32)
         return QSize(width, 24 + 20 * len(self._lines) + (46 if self._interactive else 0))
 
+    def covers(self, right: float, middle: float) -> bool:
+        """Whether a line of text that ends at a place of the page would lie under the card."""
+        box = self.geometry()
+        return not self.isHidden() and box.left() < right and box.top() - 8 < middle < box.bottom() + 8
+
     def paint(self, painter: QPainter, letters: Lettering) -> None:
         """Paint all of it."""
         colours = self.colours

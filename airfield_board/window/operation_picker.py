@@ -75,7 +75,7 @@ class OperationPicker(Canvas):
         pitch = min(max(room / lines, _SMALLEST_PITCH_PX), _PITCH_PX)
         fitting = max(int((room + 0.01) // pitch), 1)
         if fitting < lines:
-            fitting = max(int((room - 20) // pitch), 1)
+            fitting = max(int((room - 20) // pitch), int(room >= pitch))
         return pitch, fitting, max(lines - fitting, 0)
 
     def _scroll_to(self, line: int) -> None:
@@ -104,7 +104,7 @@ class OperationPicker(Canvas):
                 self._boxes.append((cell, self._choices[place]))
                 self._paint_choice(painter, letters, cell, place)
                 shown += 1
-        if hidden:
+        if hidden and _TOP_PX + fitting * pitch <= self.height() - 18:
             rest = len(self._choices) - shown
             text = f"{rest} more: scroll, or find by name" if self._interactive else f"{rest} more are not listed"
             letters.text((0, self.height() - 6), text, colours.soft_ink, 12)

@@ -16,10 +16,14 @@ from airfield_board.window.row_words import RowWords
 
 GUTTER_PX = 58
 RIGHT_PX = 12
+PLOT_SMALLEST_PX = 96
+"""Least width of a plot beside the rows."""
 EASY_FROM_PX = 33
 """Rows of two lines lower than this have a smaller second line."""
 HOLD_COLUMN_FROM_PX = 1320
 """Window width below which the column of hold temperatures goes."""
+LIMIT_COLUMN_FROM_PX = 1080
+"""Window width below which the column of limits goes, where a row has only one line."""
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -60,6 +64,16 @@ def columns_for(density: Density, window_px: int) -> Columns:
             hold_right=708 if with_hold else None,
         )
     block_px = 116 if density is Density.STANDARD else 100
+    if window_px < LIMIT_COLUMN_FROM_PX:
+        return Columns(
+            block_px=block_px,
+            name=block_px + 12,
+            limit_right=None,
+            margin_right=414,
+            change=429,
+            change_right=659,
+            hold_right=None,
+        )
     return Columns(
         block_px=block_px,
         name=block_px + 12,
@@ -184,13 +198,13 @@ class RowPainter:
     def _paint_one_line(self, box: RowBox, row: RowWords, size_px: int) -> None:
         colours, columns, left = self.colours, self.columns, float(GUTTER_PX)
         baseline = baseline_for_middle(box.middle_px, size_px)
-        name, limit_right = left + columns.name, left + (columns.limit_right or columns.margin_right)
-        limit_left = limit_right - width_of(row.limit, size_px) - 10
-        self.letters.text((name, baseline), row.one_line, colours.ink, size_px, MEDIUM, room_px=limit_left - name)
-        self.letters.text((limit_right, baseline), row.limit, colours.soft_ink, size_px, side="right")
-        self.letters.text(
-            (left + columns.margin_right, baseline), row.margin, colours.ink, size_px, SEMIBOLD, side="right"
-        )
+        margin = (left + columns.margin_right, baseline)
+        name_right = self.letters.text(margin, row.margin, colours.ink, size_px, SEMIBOLD, side="right") - 10
+        if columns.limit_right is not None:
+            limit = (left + columns.limit_right, baseline)
+            name_right = self.letters.text(limit, row.limit, colours.soft_ink, size_px, side="right") - 10
+        name = left + columns.name
+        self.letters.text((name, baseline), row.one_line, colours.ink, size_px, MEDIUM, room_px=name_right - name)
         change, room = left + columns.change, columns.change_right - columns.change
         if row.loud:
             muted = row.state is State.NO_DATA

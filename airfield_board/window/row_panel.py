@@ -26,7 +26,6 @@ from airfield_board.window.marks import mark_colour
 from airfield_board.window.row_layout import (
     FOLDED_PITCH_PX,
     FOLDED_SMALLEST_PX,
-    PITCH_SMALLEST_PX,
     Density,
     RowBox,
     RowPlan,
@@ -41,6 +40,8 @@ EMPTY_WORDS_PX = 90
 UNFOLDED_ROWS = 40
 """So many rows are always listed one by one; of more, some are counted in one line where they get too low to read."""
 _LOUD = (State.NEAR, State.REDUCED, State.HOLD)
+UNFOLDED_PITCH_PX = 10.5
+"""Lower than this, the letters of one row touch those of the next."""
 ROWS_TOP_PX = 32
 ROWS_BOTTOM_PX = 7
 
@@ -166,9 +167,12 @@ class RowPanel(Canvas):
         with_foot = any(row.place_ft is None for row in self._all)
         room_px = bottom_px - ROWS_TOP_PX
         words = self._all
-        for pitch_px in (FOLDED_PITCH_PX, FOLDED_SMALLEST_PX) if len(words) > UNFOLDED_ROWS else (PITCH_SMALLEST_PX,):
-            most = rows_that_fit(room_px, pitch_px, with_level=self._level is not None, with_foot=with_foot)
-            words = folded(self._all, most)
+        with_level = self._level is not None
+        most = rows_that_fit(room_px, UNFOLDED_PITCH_PX, with_level=with_level, with_foot=with_foot)
+        if len(words) <= min(UNFOLDED_ROWS, most):
+            return words
+        for pitch_px in (FOLDED_PITCH_PX, FOLDED_SMALLEST_PX):
+            words = folded(self._all, rows_that_fit(room_px, pitch_px, with_level=with_level, with_foot=with_foot))
             if not any(is_folded(row, _LOUD) for row in words):
                 break
         return words
@@ -254,8 +258,8 @@ class RowPanel(Canvas):
         columns, left, ink = self._columns, float(GUTTER_PX), self.colours.soft_ink
         small = 13
         letters.text((left, 23), "State", ink, small, MEDIUM)
-        dense = columns.limit_right is not None
-        letters.text((left + columns.name, 23), "Operation" if dense else "Operation and limit", ink, small, MEDIUM)
+        one_line = self._plan is not None and self._plan.pitch.density is not Density.COMFORTABLE
+        letters.text((left + columns.name, 23), "Operation" if one_line else "Operation and limit", ink, small, MEDIUM)
         if columns.limit_right is not None:
             letters.text((left + columns.limit_right, 23), "Limit", ink, small, MEDIUM, side="right")
         letters.text((left + columns.margin_right, 23), self._headings.margin, ink, small, MEDIUM, side="right")

@@ -238,12 +238,12 @@ class ObservationStrip(Canvas):
         content = self._content
         if content is None:
             return
-        sizes, gap = self._fit(content)
+        sizes, gap, groups = self._fit(content)
         left = _PADDING_PX
         self._paint_loud(painter, letters, left, content, sizes)
         left += self._loud_width(content, sizes)
         start = left
-        for group in content.cells:
+        for group in groups:
             left += gap
             self._separator(painter, left)
             left += min(gap, _PADDING_PX)
@@ -257,18 +257,22 @@ class ObservationStrip(Canvas):
         self._paint_source(letters, start, age_left - 30, content, sizes)
         self._paint_age(painter, letters, age_left, content)
 
-    def _fit(self, content: StripContent) -> tuple[_Sizes, float]:
-        """Choose the largest sizes at which all cells fit, and the gap between them."""
+    def _fit(self, content: StripContent) -> tuple[_Sizes, float, tuple[tuple[Cell, ...], ...]]:
+        """Choose the largest sizes at which all cells fit, the gap between them, and which of them there is room for.
+
+        In a narrow window what is derived goes first, then rate and peak; what was measured stays.
+        """
         room = self.width() - 2 * _PADDING_PX - _AGE_PX - 18
-        cells = [cell for group in content.cells for cell in group]
-        fitted = _SIZES[-1], _GAP_SMALLEST_PX
-        for sizes in _SIZES:
-            natural = self._loud_width(content, sizes) + sum(_cell_width(cell, sizes) for cell in cells)
-            gaps = len(cells) + len(content.cells) + 1
-            gap = (room - natural) / gaps
-            if gap >= _GAP_SMALLEST_PX:
-                return sizes, min(gap, _GAP_LARGEST_PX)
-        return fitted
+        air, derived, measured = content.cells
+        for groups in ((air, derived, measured), (air, measured), (measured,)):
+            cells = [cell for group in groups for cell in group]
+            for sizes in _SIZES:
+                natural = self._loud_width(content, sizes) + sum(_cell_width(cell, sizes) for cell in cells)
+                gaps = len(cells) + len(groups) + 1
+                gap = (room - natural) / gaps
+                if gap >= _GAP_SMALLEST_PX:
+                    return sizes, min(gap, _GAP_LARGEST_PX), groups
+        return _SIZES[-1], _GAP_SMALLEST_PX, (measured,)
 
     def _rows(self) -> tuple[float, float, float]:
         """Baselines of label, value and the line below."""

@@ -74,7 +74,7 @@ def _seconds(display: str, code: str, *arguments: str) -> float:
 
 
 @contextmanager
-def _display() -> Iterator[str]:
+def virtual_display() -> Iterator[str]:
     """Yield a display: a virtual one of its own, so that both programs are shown alike."""
     server = shutil.which("Xvfb")
     if server is None:
@@ -96,7 +96,7 @@ def _display() -> Iterator[str]:
 
 def main() -> int:
     """Print the medians and the ratio; return 0 where the goal is met, else 1."""
-    with tempfile.TemporaryDirectory() as name, _display() as display:
+    with tempfile.TemporaryDirectory() as name, virtual_display() as display:
         folder = Path(name)
         profile = write_field(folder)
         write_record(folder / "observations.csv", 1440)

@@ -6,6 +6,8 @@ from pathlib import Path
 import numpy as np
 import pytest
 
+from airfield_board.history.records import RecordKind
+from airfield_board.history.store import History
 from airfield_board.limits.states import State
 from airfield_board.observations.observation import NO_TIME_US, ObservationTable
 from airfield_board.session.intake import Intake
@@ -106,3 +108,68 @@ def test_of_very_many_rows_only_those_that_still_stand_in_the_file_are_kept(monk
     assert _taken(intake, *following) == ["row 4", "row 5", "row 6"]
     assert _taken(intake, *following) == []
     assert _taken(intake, (0, "row 0"), *following) == ["row 0"]
+
+
+def _minutes(first: int, last: int) -> list[tuple[int, str]]:
+    return [(minute, f"row {minute}") for minute in range(first, last)]
+
+
+def test_rows_older_than_what_is_read_are_forgotten_and_recalled_where_the_file_is_read_further_back(
+    monkeypatch: pytest.MonkeyPatch,
+) -> None:
+    monkeypatch.setattr("airfield_board.session.intake._SLACK", 0)
+    recorded: list[tuple[int, str]] = []
+    asked: list[tuple[int, int]] = []
+
+    def recall(from_us: int, until_us: int) -> Iterable[tuple[int, str]]:
+        asked.append((from_us, until_us))
+        return [row for row in recorded if from_us <= row[0] < until_us]
+
+    intake = Intake(recall)
+    for end in range(1, 200):
+        part = _minutes(max(end - 10, 0), end)
+        recorded += [(end - 1, text) for text in _taken(intake, *part)]
+        intake.forget_recorded()
+    assert recorded == _minutes(0, 199), "each row is given out once"
+    assert len(asked) == 1, "nothing is recalled while the file only grows"
+    assert _taken(intake, *_minutes(0, 199)) == []
+    first_us, until_us = asked[-1]
+    assert first_us == 0
+    assert 170 <= until_us <= 189, "what is remembered goes back little further than what is read"
+
+
+def test_a_correction_forgotten_meanwhile_still_counts_when_the_file_is_read_further_back(
+    monkeypatch: pytest.MonkeyPatch,
+) -> None:
+    monkeypatch.setattr("airfield_board.session.intake._SLACK", 0)
+    recorded = [(1, "hot"), (1, "cool")]
+    intake = Intake(lambda from_us, until_us: [row for row in recorded if from_us <= row[0] < until_us])
+    assert _taken(intake, *recorded) == []
+    recorded += [(minute, text) for minute, text in _minutes(5, 30) if _taken(intake, (minute, text))]
+    intake.forget_recorded()
+    assert _taken(intake, (1, "hot"), (1, "cool"), *_minutes(5, 30)) == []
+    assert _taken(intake, (1, "hot"), *_minutes(5, 30)) == ["hot"]
+
+
+def test_rows_that_could_not_be_recorded_are_not_forgotten(tmp_path: Path, monkeypatch: pytest.MonkeyPatch) -> None:
+    monkeypatch.setattr("airfield_board.session.intake._SLACK", 0)
+    field = make_field(tmp_path)
+    field.history.mkdir()
+    rows = [field.row(minute, 20.0 + minute / 10) for minute in range(15)]
+    field.write(rows[0])
+    recorder = field.open()
+    for minute, row in enumerate(rows[1:], 1):
+        field.write(row)  # a file that holds only its newest row
+        field.move_to(minute)
+        state = recorder.poll()
+        assert not state.recording
+    field.write(*rows)
+    recorder.poll()
+    field.history.rmdir()
+    state = recorder.poll()
+    assert state.recording
+    recorder.close()
+    history = History.open_read_only(field.history)
+    times = [record.body["time"] for record in history.records(kinds=(RecordKind.OBSERVATION,))]
+    history.close()
+    assert len(times) == len(set(times)) == len(rows)
