@@ -75,6 +75,9 @@ class SourceReading:
         What is wrong or worth knowing now, each a plain sentence.
     notes
         What is worth a line in the log, once a file: columns ignored, stations passed over.
+    new_from
+        Where whole rows were put behind what stood at the last look, and nothing else was changed: the byte offset
+        from which the rows are new. Else 0.
     format
         What the file was recognised as; None where there is no table.
     file_time
@@ -89,6 +92,7 @@ class SourceReading:
     fresh: bool = False
     messages: tuple[str, ...] = ()
     notes: tuple[str, ...] = ()
+    new_from: int = 0
     format: Format | None = None
     file_time: datetime | None = None
     size: int | None = None
@@ -295,8 +299,8 @@ class FileSource:
         except UserError as error:
             reading = replace(facts, messages=tuple(str(error).splitlines()))
             return _Look(reading=reading, imprint=imprint, since_us=NO_TIME_US, settled=False)
-        still = self._was_appended(file, before, last, result) or self._holds_still(file, before, start, content)
-        if not still:
+        new_from = self._appended_from(file, before, last, result)
+        if not new_from and not self._holds_still(file, before, start, content):
             return self._trouble("is being written; it is read at the next poll", settled=False)
         messages = []
         if result.unfinished:
@@ -314,6 +318,7 @@ class FileSource:
             fresh=True,
             messages=tuple(messages),
             notes=result.notes,
+            new_from=new_from if last is not None and since_us >= last.since_us else 0,
             format=result.format,
         )
         reached_us = since_us if start else NO_TIME_US
@@ -346,18 +351,19 @@ class FileSource:
                 return result, start, content
             wanted *= _GROWTH
 
-    def _was_appended(self, file: BinaryIO, before: stat_result, last: _Look | None, result: ReadResult) -> bool:
-        """Whether whole rows were put behind what stood there at the last look, and nothing else happened.
+    def _appended_from(self, file: BinaryIO, before: stat_result, last: _Look | None, result: ReadResult) -> int:
+        """Return the offset behind which whole rows were put, where nothing else was done since the last look; else 0.
 
         An appending writer's unfinished row has no line end, so what is complete needs no second look.
         """
-        if last is None or last.imprint is None or result.unfinished or result.format == "json":
-            return False
+        if last is None or last.imprint is None or not last.settled or result.unfinished or result.format == "json":
+            return 0
         known = last.imprint
         if (known.inode, known.device) != (before.st_ino, before.st_dev) or before.st_size <= known.size:
-            return False
+            return 0
         stood = _read_at(file, max(known.size - FIRST_BLOCK_BYTES, 0), known.size)
-        return hashlib.blake2b(stood).digest() == known.end_digest and _same(before, fstat(file.fileno()))
+        as_it_was = hashlib.blake2b(stood).digest() == known.end_digest and _same(before, fstat(file.fileno()))
+        return known.size if as_it_was else 0
 
     def _holds_still(self, file: BinaryIO, before: stat_result, start: int, content: bytes) -> bool:
         """Whether what was read still stands there a moment later; a file that only grew meanwhile holds still.

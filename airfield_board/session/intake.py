@@ -33,14 +33,24 @@ class Intake:
         self._standing: set[tuple[int, str]] = set()
         """The rows of the part of the file that was read last."""
 
-    def new_rows(self, table: ObservationTable) -> ObservationTable:
-        """Return the rows not taken before, in the order of the file, and know them from now on."""
+    def new_rows(self, table: ObservationTable, new_from: int = 0) -> ObservationTable:
+        """Return the rows not taken before, in the order of the file, and know them from now on.
+
+        Parameters
+        ----------
+        new_from
+            Position from which the rows are known to be new, all those before it having been given at the last call.
+        """
         self._recall_for(table)
-        rows = list(zip(table.time_us.tolist(), table.raw, strict=True))
+        if new_from and not self._knows_much():
+            table = table.take(np.flatnonzero(table.position >= new_from))
+            rows = _rows_of(table)
+        else:
+            rows = _rows_of(table)
+            self._standing = set(rows)
         last = dict(rows)
         # Few rows of many are new: only those, and others of their times, are looked at one by one.
-        self._standing = set(rows)
-        touched = {time_us for time_us, _ in (*(self._standing - self._known), *(last.items() - self._last.items()))}
+        touched = {time_us for time_us, _ in (*(set(rows) - self._known), *(last.items() - self._last.items()))}
         places = [place for place, (time_us, _) in enumerate(rows) if time_us in touched] if touched else []
         last_place = {rows[place][0]: place for place in places}
         fresh: list[int] = []
@@ -63,7 +73,7 @@ class Intake:
 
         Only for when all rows given out are recorded: where the file is read further back again, they are recalled.
         """
-        if self._recalled_from_us is None or len(self._known) <= 2 * len(self._standing) + _SLACK:
+        if self._recalled_from_us is None or not self._knows_much():
             return
         first_us = min((time_us for time_us, _ in self._standing if time_us != NO_TIME_US), default=None)
         if first_us is None:
@@ -71,6 +81,10 @@ class Intake:
         self._known = {row for row in self._known if row[0] >= first_us} | self._standing
         self._last = {time_us: text for time_us, text in self._last.items() if time_us >= first_us}
         self._recalled_from_us = first_us
+
+    def _knows_much(self) -> bool:
+        """Whether far more rows are known than stood in the part of the file when it was last looked at as a whole."""
+        return len(self._known) > 2 * len(self._standing) + _SLACK
 
     def _know(self, time_us: int, text: str) -> None:
         self._known.add((time_us, text))
@@ -87,3 +101,7 @@ class Intake:
         # What has been taken since stands behind what was recorded before.
         self._last = dict(recalled) | self._last
         self._recalled_from_us = first_us
+
+
+def _rows_of(table: ObservationTable) -> list[tuple[int, str]]:
+    return list(zip(table.time_us.tolist(), table.raw, strict=True))

@@ -171,7 +171,7 @@ class Recorder:
         self._hear(reading, now)
         rows = empty_table()
         if reading.table is not None and reading.fresh:
-            rows = self._intake.new_rows(reading.table)
+            rows = self._intake.new_rows(reading.table, reading.new_from)
         self._take(rows, reading.format or "", now)
         return self._state(now)
 

@@ -77,8 +77,12 @@ def _second_looks(watched: Watched, monkeypatch: pytest.MonkeyPatch) -> list[int
 def test_rows_put_behind_need_no_second_look(watched: Watched, monkeypatch: pytest.MonkeyPatch) -> None:
     watched.look()
     looks = _second_looks(watched, monkeypatch)
+    before = watched.path.stat().st_size
     watched.append(row(2))
-    assert watched.rows() == [row(1), row(2)]
+    reading = watched.look()
+    assert reading.table is not None
+    assert list(reading.table.raw) == [row(1).rstrip(), row(2).rstrip()]
+    assert reading.new_from == before == reading.table.position[1]
     assert not looks
 
 
@@ -94,7 +98,9 @@ def test_whatever_else_was_done_to_the_file_needs_one(
         watched.path.write_text(HEADER + row(1, 25.0) + row(2))
     else:
         watched.path.write_text(HEADER)
-    assert watched.look().fresh
+    reading = watched.look()
+    assert reading.fresh
+    assert reading.new_from == 0
     assert looks
 
 

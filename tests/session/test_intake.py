@@ -58,6 +58,16 @@ def test_one_text_at_two_times_is_two_rows() -> None:
     assert _taken(Intake(_nothing), (1, "same"), (2, "same")) == ["same", "same"]
 
 
+def test_of_a_file_that_was_only_appended_to_the_rows_behind_are_looked_at() -> None:
+    intake = Intake(_nothing)
+    assert _taken(intake, (1, "a"), (2, "b")) == ["a", "b"]
+    table = _table((1, "a"), (2, "b"), (2, "c"), (3, "d"))
+    fresh = intake.new_rows(table, new_from=2)
+    assert [fresh.raw[row] for row in range(len(fresh))] == ["c", "d"]
+    assert _taken(intake, (1, "a"), (2, "b"), (2, "c"), (3, "d")) == []
+    assert _taken(intake, (1, "a"), (2, "b")) == ["b"], "the correction is gone from the file"
+
+
 def test_rows_without_a_time_are_known_by_their_text() -> None:
     intake = Intake(_nothing)
     assert _taken(intake, (NO_TIME_US, "rubbish"), (5, "a")) == ["rubbish", "a"]
