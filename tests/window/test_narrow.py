@@ -81,7 +81,7 @@ def test_the_card_that_says_why_there_is_no_data_covers_no_row(qtbot: QtBot, pag
     assert all(right < each.ink.left() for each in words)
 
 
-def test_the_dressed_up_window_is_no_smaller_than_its_smallest(qtbot: QtBot) -> None:
+def test_a_window_cannot_be_made_smaller_than_its_layouts_hold(qtbot: QtBot) -> None:
     view = BoardView()
     qtbot.addWidget(view)
     view.resize(10, 10)
