@@ -236,10 +236,8 @@ def _profile_lines(said: Mapping[str, str], file: str) -> list[_Line]:
 
     return [
         line(f"# yaml-language-server: $schema={PROFILE_SCHEMA_NAME}"),
-        line(
-            "# The airfield's profile. Change it in any text editor: a running board reads the change at once, and what"
-        ),
-        line("# it loosens waits there until somebody accepts it by name. To check the file:"),
+        line("# The airfield's profile. Change it in any text editor: a running board reads the change at once;"),
+        line("# what it loosens waits there until somebody accepts it by name. To check the file:"),
         line(f"#   airfield-board check {PROFILE_NAME}"),
         line("schema: 1"),
         line("airfield:"),
@@ -290,16 +288,12 @@ def _fleet_lines(said: Mapping[str, str]) -> list[_Line]:
     unit = said["limit_unit"]
     lines = [
         _Line(f"# yaml-language-server: $schema={FLEET_SCHEMA_NAME}"),
-        _Line(
-            "# The aircraft and their limits. To add one, copy what stands under 'aircraft:' and give it an id of its own."
-        ),
+        _Line("# The aircraft and their limits. To add one, copy what stands under 'aircraft:' and change its id."),
         _Line("# Limits by weight, of other quantities and for some days only are shown in the program's README."),
         _Line("# To check the file:"),
         _Line(f"#   airfield-board check {FLEET_NAME}"),
         _Line("schema: 1"),
-        _Line(
-            "# Within the near band of a limit is NEAR LIMIT; a hold ends after the off-delay below limit - deadband."
-        ),
+        _Line("# Within the near band of a limit is NEAR LIMIT; a hold ends after the off-delay at limit - deadband."),
         _Line("defaults: {near_band_ft: 500, deadband_ft: 150, off_delay_min: 10}"),
         _Line("aircraft:"),
         _Line(_with_comment(f"  - id: {_text(plain_id(said['aircraft']))}", "its name in the history; keep it")),

@@ -9,7 +9,9 @@ from airfield_board.window import formatting
 _FORMATS = {"csv": "CSV with a header", "json": "JSON", "metar": "METAR reports"}
 
 
-def preview_lines(preview: FilePreview, zone: ZoneInfo, stale_after_min: float | None, now: datetime) -> tuple[str, ...]:
+def preview_lines(
+    preview: FilePreview, zone: ZoneInfo, stale_after_min: float | None, now: datetime
+) -> tuple[str, ...]:
     """Say what was understood of a file: its format, its rows, the newest one with its age, and what is wrong.
 
     Parameters
@@ -54,9 +56,10 @@ def _newest_lines(newest: NewestRow, zone: ZoneInfo, stale_after_min: float | No
     dewpoint = "no dew point"
     if newest.dewpoint_c is not None:
         dewpoint = f"dew point {formatting.temperature(newest.dewpoint_c, 'c')} °C"
+    temperature = f"temperature {formatting.temperature(newest.temperature_c, 'c')} °C"
     lines = [
         f"Newest row that can be used: {formatting.stamp(newest.time, zone)}, {number} {words}.",
-        f"Altimeter setting {pressures}, temperature {formatting.temperature(newest.temperature_c, 'c')} °C, {dewpoint}.",
+        f"Altimeter setting {pressures}, {temperature}, {dewpoint}.",
     ]
     if newest.density_altitude_ft is not None:
         altitude = formatting.altitude(newest.density_altitude_ft)
