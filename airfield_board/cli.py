@@ -62,7 +62,12 @@ def _parser() -> argparse.ArgumentParser:
     )
     parser.add_argument("--version", action="version", version=f"Airfield Board {__version__}")
     source = parser.add_mutually_exclusive_group()
-    source.add_argument("--airfield", type=Path, metavar="PROFILE", help="open the window on this airfield profile")
+    source.add_argument(
+        "--airfield",
+        type=Path,
+        metavar="PROFILE",
+        help="open the window on this airfield profile (default: the last one, or the set-up of a first one)",
+    )
     source.add_argument("--demo", action="store_true", help="open the demo: an invented field that feeds itself")
     parser.add_argument("--wall", action="store_true", help="open with the wall view, on the whole screen")
     parser.add_argument("--scheme", choices=("light", "dark", "system"), default="system", help="colours of the window")
@@ -112,11 +117,6 @@ def _window(options: argparse.Namespace) -> int:
         from airfield_board.window.application import run_demo
 
         return run_demo(scheme=options.scheme, wall=options.wall)
-    if options.airfield is None:
-        raise UserError(
-            "Say which airfield: --airfield PROFILE opens the window on it; --demo shows an invented one.\n"
-            "airfield-board --help lists the commands."
-        )
     from airfield_board.window.application import run_window
 
     return run_window(options.airfield, scheme=options.scheme, wall=options.wall)

@@ -15,8 +15,7 @@ from typing import Literal, NamedTuple
 from airfield_board.configuration.fleet import fleet_from_text
 from airfield_board.configuration.model import Profile
 from airfield_board.configuration.profile import profile_from_text
-from airfield_board.configuration.wording import shown
-from airfield_board.errors import FileFaults
+from airfield_board.errors import FileFaults, shown
 from airfield_board.units import m_from_ft
 
 PROFILE_NAME, FLEET_NAME = "profile.yaml", "fleet.yaml"

@@ -88,6 +88,8 @@ def in_the_way(folder: Path) -> str:
         It need not exist yet.
     """
     try:
+        if "\0" in str(folder):
+            return "No folder can have such a name."
         if not folder.is_absolute():
             return "Give the folder's whole path."
         nearest = folder
@@ -101,8 +103,8 @@ def in_the_way(folder: Path) -> str:
             target = folder / name
             if os.path.lexists(target) and (content is None or target.read_bytes() != content):
                 return f"There is a file {name} in this folder already. Nothing is overwritten: choose another folder."
-    except (OSError, ValueError) as error:
-        return f"The folder cannot be looked at: {error}"
+    except OSError as error:
+        return f"The folder cannot be looked at: {error.strerror or error}"
     return ""
 
 

@@ -12,7 +12,7 @@ from airfield_board.observations.conditions import conditions_of
 from airfield_board.observations.formats.reading import Format
 from airfield_board.observations.observation import NO_TIME_US, CheckedTable, Verdict
 from airfield_board.observations.quality import QualityMemory, QualityRules, check
-from airfield_board.observations.source import FIRST_BLOCK_BYTES, FileSource, SourceReading, SourceRules
+from airfield_board.observations.source import FileSource, SourceReading, SourceRules
 from airfield_board.units import MINUTE_US
 
 _MOST_REASONS = 3
@@ -67,8 +67,8 @@ class FilePreview:
         None where the file could not be read.
     rows
         How many were read.
-    from_its_end
-        Whether only the end of the file may have been read.
+    since
+        Time of the earliest of them; older ones may stand before it in the file. None where none has a time.
     newest
         None where no row can be used.
     every_min
@@ -82,7 +82,7 @@ class FilePreview:
     file: Path
     format: Format | None = None
     rows: int = 0
-    from_its_end: bool = False
+    since: datetime | None = None
     newest: NewestRow | None = None
     every_min: float | None = None
     unused_count: int = 0
@@ -132,7 +132,7 @@ def preview_of(reading: SourceReading, question: PreviewQuestion, now: datetime)
         file=question.file,
         format=reading.format,
         rows=len(table),
-        from_its_end=reading.size is not None and reading.size > FIRST_BLOCK_BYTES,
+        since=_earliest(checked.rows.time_us),
         newest=_newest(checked, int(valid[-1]), question.elevation_m) if len(valid) else None,
         every_min=_usual_interval_min(checked.rows.time_us),
         unused_count=len(unused),
@@ -168,6 +168,11 @@ def _newest(checked: CheckedTable, row: int, elevation_m: float | None) -> Newes
         dewpoint_c=dewpoint_c if np.isfinite(dewpoint_c) else None,
         density_altitude_ft=density_altitude_ft,
     )
+
+
+def _earliest(time_us: NDArray[np.int64]) -> datetime | None:
+    times_us = time_us[time_us != NO_TIME_US]
+    return time_from_us(int(times_us[0])) if len(times_us) else None
 
 
 def _usual_interval_min(time_us: NDArray[np.int64]) -> float | None:

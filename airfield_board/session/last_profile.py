@@ -18,7 +18,7 @@ _LARGEST_BYTES = 65_536
 
 def configuration_folder() -> Path:
     """Return the user's configuration folder of this program; it need not exist."""
-    return Path(platformdirs.user_config_dir("airfield-board", appauthor=False))
+    return Path(platformdirs.user_config_dir("airfield-board"))
 
 
 class LastProfile:

@@ -32,22 +32,17 @@ class AirfieldOpener(QObject):
     def __init__(self, window: QWidget) -> None:
         super().__init__(window)
         self._window = window
-        self._folder = Path.home()
         self._background = Background("profile", self)
         self._background.ended.connect(self._take)
 
     def ask(self) -> None:
         """Ask for a profile."""
-        dialog = QFileDialog(self._window, "Open an airfield's profile", str(self._folder))
+        dialog = QFileDialog(self._window, "Open an airfield's profile", str(Path.home()))
         dialog.setFileMode(QFileDialog.FileMode.ExistingFile)
         dialog.setNameFilters(["Airfield profiles (*.yaml *.yml)", "All files (*)"])
         dialog.fileSelected.connect(lambda name: self.open(Path(name)))
         dialog.finished.connect(dialog.deleteLater)
         dialog.open()
-
-    def start_in(self, folder: Path) -> None:
-        """Ask beginning in this folder."""
-        self._folder = folder
 
     def open(self, path: Path) -> None:
         """Read a profile and its fleet."""

@@ -5,7 +5,8 @@ import signal
 import subprocess
 import sys
 import tempfile
-from collections.abc import Callable, Iterable
+from collections.abc import Callable, Iterable, Sequence
+from dataclasses import dataclass
 from functools import partial
 from pathlib import Path
 from types import TracebackType
@@ -19,29 +20,39 @@ from airfield_board.clock import SystemClock
 from airfield_board.configuration.profile import load_airfield
 from airfield_board.errors import UserError
 from airfield_board.session.board_state import BoardState, Mode, StatusChange
+from airfield_board.session.last_profile import LastProfile, configuration_folder
 from airfield_board.session.recorder import Recorder
 from airfield_board.training.demo import DEMO_POLL_S, DEMO_SPEED, DemoDay, running_clock, stepped_day
 from airfield_board.window import formatting
+from airfield_board.window.next_window import AirfieldNext, DemoNext, NextWindow, SetUpNext
 from airfield_board.window.preflight import Screen, choose_screen, find_screens, no_display_message, require_libraries
 
 if TYPE_CHECKING:
+    from PySide6.QtWidgets import QApplication
+
     from airfield_board.window.main_window import Feed, MainWindow
+    from airfield_board.window.set_up_window import SetUpWindow
+    from airfield_board.window.text_size import TextSize
 
 DONE = 0
 _START_AGAIN = -1
 _FOLDER_PREFIX = "airfield-board-demo-"
 DEMO_PICTURE = "airfield-board-demo.png"
 _DEMO_PICTURE_PX = (1440, 900)
+_WHICH_AIRFIELD = (
+    "Say which airfield: --airfield PROFILE opens the window on it; --demo shows an invented one.\n"
+    "airfield-board --help lists the commands."
+)
 _INVENTED = "DEMO: an invented field, invented aircraft, an invented day. Not for use in flight."
 
 
-def run_window(profile_path: Path, *, scheme: str = "system", wall: bool = False) -> int:
-    """Open the window on an airfield and run until it is closed.
+def run_window(profile_path: Path | None, *, scheme: str = "system", wall: bool = False) -> int:
+    """Open the window on an airfield, or on what a person goes on to from there, and run until it is closed.
 
     Parameters
     ----------
     profile_path
-        The airfield's profile.
+        The airfield's profile. None: the one that was open last; where there is none, the set-up of a first one.
     scheme
         ``light``, ``dark`` or ``system``.
     wall
@@ -57,20 +68,79 @@ def run_window(profile_path: Path, *, scheme: str = "system", wall: bool = False
     UserError
         Where the files are wrong, a system library is missing, or there is no display.
     """
-    airfield = load_airfield(profile_path)
-    screen = choose_screen(find_screens(os.environ), os.environ)
+    if profile_path is not None:
+        named = AirfieldNext(profile_path=profile_path, airfield=load_airfield(profile_path))
+        return _run_windows(choose_screen(find_screens(os.environ), os.environ), named, scheme=scheme, wall=wall)
+    last = LastProfile(configuration_folder()).read()
+    screens = find_screens(os.environ)
+    if last is None and not screens:
+        raise UserError(_WHICH_AIRFIELD)
+    screen = choose_screen(screens, os.environ)
+    return _run_windows(screen, SetUpNext() if last is None else _last_airfield(last), scheme=scheme, wall=wall)
 
+
+def _last_airfield(profile_path: Path) -> NextWindow:
+    """Return the airfield that was open last, or the set-up with the reason why it cannot be opened."""
+    try:
+        return AirfieldNext(profile_path=profile_path, airfield=load_airfield(profile_path))
+    except UserError as error:
+        return SetUpNext(note=f"The airfield that was open last cannot be opened.\n{error}")
+
+
+def _run_windows(screen: Screen, first: NextWindow, *, scheme: str, wall: bool) -> int:
+    """Show one window after the other, each as the one before it asks for, until one is closed for good."""
+    stage = _stage(screen)
+    upcoming, code = first, DONE
+    try:
+        while True:
+            shown = upcoming
+            try:
+                ended = _run_next(stage, shown, scheme=scheme, wall=wall)
+            except UserError as error:
+                if shown is first:
+                    raise
+                # The person at the screen does not see a terminal.
+                upcoming = SetUpNext(note=str(error))
+                continue
+            code, scheme = ended.code, ended.scheme
+            wall = wall and isinstance(shown, SetUpNext)  # it is how the first board begins
+            if ended.upcoming is None:
+                break
+            upcoming = ended.upcoming
+    finally:
+        stage.text_size.end()
+    return _again_or(code, None if shown is first else _arguments_for(shown, scheme))
+
+
+def _run_next(stage: "_Stage", window: NextWindow, *, scheme: str, wall: bool) -> "_Ended":
+    if isinstance(window, AirfieldNext):
+        return _run_airfield(stage, window, scheme=scheme, wall=wall)
+    if isinstance(window, DemoNext):
+        return _run_demo(stage, scheme=scheme, wall=wall)
+    return _run_set_up(stage, window.note, scheme)
+
+
+def _arguments_for(window: NextWindow, scheme: str) -> tuple[str, ...]:
+    """Return the program's arguments that lead to a window which its own do not lead to."""
+    if isinstance(window, AirfieldNext):
+        return "--airfield", str(window.profile_path.absolute()), "--scheme", scheme
+    return ("--demo", "--scheme", scheme) if isinstance(window, DemoNext) else ("--scheme", scheme)
+
+
+def _run_airfield(stage: "_Stage", window: AirfieldNext, *, scheme: str, wall: bool) -> "_Ended":
     def start_feed() -> "Feed":
         from airfield_board.window.main_window import Feed
         from airfield_board.window.worker import Worker
 
         clock = SystemClock()
-        return Feed(
-            clock=clock,
-            worker=Worker(lambda: Recorder.open(profile_path, clock=clock, mode=Mode.LIVE, loaded=airfield)),
-        )
 
-    return _again_or(_run(screen, start_feed, scheme=scheme, replayable=False, wall=wall))
+        def open_recorder() -> Recorder:
+            return Recorder.open(window.profile_path, clock=clock, mode=Mode.LIVE, loaded=window.airfield)
+
+        return Feed(clock=clock, worker=Worker(open_recorder))
+
+    LastProfile(configuration_folder()).remember(window.profile_path)
+    return _run(stage, start_feed, scheme=scheme, replayable=False, wall=wall)
 
 
 def run_demo(*, scheme: str = "system", wall: bool = False, out: TextIO | None = None) -> int:
@@ -98,7 +168,10 @@ def run_demo(*, scheme: str = "system", wall: bool = False, out: TextIO | None =
     screens = find_screens(os.environ)
     if not screens:
         return play_demo_in_terminal(out or sys.stdout, Path.cwd(), scheme=scheme)
-    screen = choose_screen(screens, os.environ)
+    return _run_windows(choose_screen(screens, os.environ), DemoNext(), scheme=scheme, wall=wall)
+
+
+def _run_demo(stage: "_Stage", *, scheme: str, wall: bool) -> "_Ended":
     with tempfile.TemporaryDirectory(prefix=_FOLDER_PREFIX, ignore_cleanup_errors=True) as folder:
 
         def start_feed() -> "Feed":
@@ -109,8 +182,7 @@ def run_demo(*, scheme: str = "system", wall: bool = False, out: TextIO | None =
             worker = Worker(day.open_recorder, before_poll=day.feed, poll_s=DEMO_POLL_S)
             return Feed(clock=day.clock, worker=worker, speed=DEMO_SPEED)
 
-        code = _run(screen, start_feed, scheme=scheme, replayable=True, wall=wall)
-    return _again_or(code)
+        return _run(stage, start_feed, scheme=scheme, replayable=True, wall=wall)
 
 
 def play_demo_in_terminal(out: TextIO, folder: Path, *, scheme: str = "light") -> int:
@@ -169,7 +241,7 @@ def write_changes(boards: Iterable[BoardState], out: TextIO) -> BoardState:
 
 
 def _take_fault(
-    window: "MainWindow", kind: type[BaseException], error: BaseException, trace: TracebackType | None
+    window: "MainWindow | SetUpWindow", kind: type[BaseException], error: BaseException, trace: TracebackType | None
 ) -> None:
     """Report what nothing caught on the window's thread, and take away a board that may no longer be kept up."""
     sys.__excepthook__(kind, error, trace)
@@ -203,14 +275,30 @@ def _paint(state: BoardState, folder: Path, scheme: str) -> Path:
     raise UserError(refusal)
 
 
-def _run(screen: Screen, start_feed: "Callable[[], Feed]", *, scheme: str, replayable: bool, wall: bool) -> int:
+@dataclass(frozen=True, slots=True, kw_only=True)
+class _Stage:
+    """What all windows of the process share."""
+
+    application: "QApplication"
+    text_size: "TextSize"
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class _Ended:
+    """How a window ended: with what exit code, and what is to be opened in its place, in which look."""
+
+    code: int
+    upcoming: NextWindow | None
+    scheme: str
+
+
+def _stage(screen: Screen) -> _Stage:
+    """Begin with Qt, once for all windows."""
     os.environ["QT_QPA_PLATFORM"] = screen.platform  # what was found to work, and not what Qt might try instead
     from PySide6.QtWidgets import QApplication
 
-    from airfield_board.window.main_window import MainWindow
     from airfield_board.window.row_access import install_row_access
     from airfield_board.window.text_size import TextSize
-    from airfield_board.window.theme import SchemeChoice
 
     text_size = TextSize(Path(platformdirs.user_config_dir("airfield-board")) / "window.ini", os.environ)
     text_size.begin()
@@ -219,7 +307,14 @@ def _run(screen: Screen, start_feed: "Callable[[], Feed]", *, scheme: str, repla
     application.setApplicationName("Airfield Board")
     application.setStyle("Fusion")
     install_row_access()
-    window = MainWindow(start_feed, choice=SchemeChoice(scheme), replayable=replayable, text_size=text_size)
+    return _Stage(application=application, text_size=text_size)
+
+
+def _run(stage: _Stage, start_feed: "Callable[[], Feed]", *, scheme: str, replayable: bool, wall: bool) -> _Ended:
+    from airfield_board.window.main_window import MainWindow
+    from airfield_board.window.theme import SchemeChoice
+
+    window = MainWindow(start_feed, choice=SchemeChoice(scheme), replayable=replayable, text_size=stage.text_size)
     problems: list[str] = []
 
     def give_up(problem: str) -> None:
@@ -227,26 +322,59 @@ def _run(screen: Screen, start_feed: "Callable[[], Feed]", *, scheme: str, repla
         window.close()
 
     window.opening_failed.connect(give_up)
-    for number in (signal.SIGINT, signal.SIGTERM):
-        signal.signal(number, lambda *_: window.close())  # noticed at the next tick of the window's clock
-    sys.excepthook = partial(_take_fault, window)
+    _listen_for_the_end(window)
     window.show()
     if wall:
         window.wall.enter()  # only now: showing may fit the window to its contents, which ends the whole screen
     window.start()
-    code = application.exec()
-    text_size.end()
+    code = stage.application.exec()
+    window.deleteLater()  # it must not go on following the system's look beside the next one
     if problems:
         raise UserError("\n".join(problems))
-    return _START_AGAIN if window.start_again else code
+    again = window.start_again
+    return _Ended(
+        code=_START_AGAIN if again else code,
+        upcoming=None if again else window.next_window,
+        scheme=window.choice.value,
+    )
 
 
-def _again_or(code: int) -> int:
-    """Put this program anew in the place of this process where the window asked for it; else return the exit code."""
-    if code == _START_AGAIN:
-        command = [sys.executable, *sys.orig_argv[1:]]
-        if os.name != "nt":
-            os.execv(command[0], command)  # noqa: S606  this very program, with its own arguments
-        subprocess.Popen(command)  # noqa: S603  likewise
-        return DONE
-    return code
+def _run_set_up(stage: _Stage, note: str, scheme: str) -> _Ended:
+    from airfield_board.window.set_up_window import SetUpWindow
+    from airfield_board.window.theme import SchemeChoice
+
+    documents = Path(platformdirs.user_documents_dir())
+    window = SetUpWindow(SystemClock(), choice=SchemeChoice(scheme), documents=documents, note=note)
+    _listen_for_the_end(window)
+    window.show()
+    window.start()
+    code = stage.application.exec()
+    window.deleteLater()
+    return _Ended(code=code, upcoming=window.next_window, scheme=scheme)
+
+
+def _listen_for_the_end(window: "MainWindow | SetUpWindow") -> None:
+    """Close the window when the process is told to end, and let it say what nothing caught."""
+    for number in (signal.SIGINT, signal.SIGTERM):
+        signal.signal(number, lambda *_: window.close())  # noticed at the next tick of the window's clock
+    sys.excepthook = partial(_take_fault, window)
+
+
+def _again_or(code: int, arguments: Sequence[str] | None = None) -> int:
+    """Put this program anew in the place of this process where the window asked for it; else return the exit code.
+
+    Parameters
+    ----------
+    arguments
+        The program's; None: those that it was begun with.
+    """
+    if code != _START_AGAIN:
+        return code
+    own = sys.orig_argv[1:]
+    if arguments is not None:
+        own = [*own[: len(own) - len(sys.argv[1:])], *arguments]
+    command = [sys.executable, *own]
+    if os.name != "nt":
+        os.execv(command[0], command)  # noqa: S606  this very program
+    subprocess.Popen(command)  # noqa: S603  likewise
+    return DONE

@@ -26,8 +26,10 @@ from airfield_board.window.dialogs import (
 from airfield_board.window.entry import TypedObservation
 from airfield_board.window.keys_dialog import KeysDialog
 from airfield_board.window.menus import KEYS, Menus
+from airfield_board.window.next_window import NextWindow
 from airfield_board.window.no_board_page import NoBoardPage
 from airfield_board.window.notice_bar import NoticeBar
+from airfield_board.window.other_airfields import OtherAirfields
 from airfield_board.window.row_access import follow_focus
 from airfield_board.window.text_board import ADVISES
 from airfield_board.window.text_size import TextSize
@@ -74,6 +76,11 @@ class MainWindow(QMainWindow):
     opening_failed(object)
         The recorder could not be opened; carries the message, a str.
 
+    Attributes
+    ----------
+    next_window
+        What is to be opened when this one has closed; None: nothing.
+
     Parameters
     ----------
     start_feed
@@ -119,6 +126,7 @@ class MainWindow(QMainWindow):
         self._acknowledged: dict[Request, tuple[tuple[int, ...], str]] = {}
         self._poll_problem = ""
         self._waiting_shown: object = ()
+        self.next_window: NextWindow | None = None
 
         self.setWindowTitle("Airfield Board")
         self.resize(_FIRST_PX.boundedTo(self.screen().availableSize() - _SCREEN_EDGE_PX))
@@ -137,6 +145,9 @@ class MainWindow(QMainWindow):
         column.addWidget(self._stack, 1)
         column.addWidget(self.notice)
         self.setCentralWidget(middle)
+        self.others = OtherAirfields(self)
+        self.others.going_to.connect(self._leave_for)
+        self.others.refused.connect(lambda why: self.notice.say(f"Not opened; this board goes on. {why}"))
         self._menus = Menus(self, choice, replayable=replayable, text_size=text_size)
         self.choose_scheme(choice)
 
@@ -188,6 +199,7 @@ class MainWindow(QMainWindow):
         self.view.set_scheme(scheme)
         self.wall.set_scheme(scheme)
         apply_scheme(scheme)
+        self.others.set_scheme(choice)
 
     def _system_scheme_changed(self) -> None:
         if self._choice is SchemeChoice.SYSTEM:
@@ -232,6 +244,11 @@ class MainWindow(QMainWindow):
     def _show_again(self) -> None:
         self._stack.setCurrentWidget(self._nothing_yet if self._state is None else self._board())
         self.tick()
+
+    @property
+    def choice(self) -> SchemeChoice:
+        """Light, dark, or as the system."""
+        return self._choice
 
     # What a person asks for.
 
@@ -318,6 +335,10 @@ class MainWindow(QMainWindow):
             "Airfield Board shows which types may depart at the present density altitude.\n\n"
             f"{ADVISES}\n\n{formatting.CAUTION}{invented}",
         )
+
+    def _leave_for(self, upcoming: NextWindow) -> None:
+        self.next_window = upcoming
+        self.close()
 
     def choose_text_size(self, percent: int) -> None:
         """Keep a text size for the next start, and offer to start at once."""
@@ -479,6 +500,7 @@ class MainWindow(QMainWindow):
     def closeEvent(self, event: QCloseEvent) -> None:
         """Let the recorder finish and close the history; one that hangs ends with the program."""
         self._ticker.stop()
+        self.others.close()
         if not self._feed.worker.close(_CLOSE_WAIT_S):
             _logger.warning("The recorder did not close in %.0f s; its stop is not recorded", _CLOSE_WAIT_S)
         super().closeEvent(event)

@@ -27,6 +27,7 @@ KEYS = (
     ("M", "messages, and the rows that were not used"),
     ("F11", "wall view, on the whole screen, and back"),
     ("Shift+F11", "the wall view's screen and viewing distance"),
+    ("Ctrl+O", "open another airfield's profile"),
     ("F1, ?", "this sheet"),
 )
 """Which key does what, in words."""
@@ -52,6 +53,9 @@ class Menus:
     ) -> None:
         self._window = window
         bar = window.menuBar()
+        airfield = bar.addMenu("Air&field")
+        self._add(airfield, "&Open another profile …", window.others.open_another, "Ctrl+O")
+        self._add(airfield, "&Set up a new one …", lambda: window.others.set_up_another(window.choice))
         observation = bar.addMenu("&Observation")
         self._add(observation, "&Read the source now", window.poll, "P")
         self._add(observation, "&Type one in …", window.type_in, "E")

@@ -25,7 +25,7 @@ def preview_lines(
     """
     if preview.format is None:
         return (*preview.messages, *preview.notes)
-    lines = [_rows_line(preview)]
+    lines = [_rows_line(preview, zone)]
     newest = preview.newest
     if newest is None:
         lines.append("No row can be used: the board would show NO DATA.")
@@ -41,10 +41,10 @@ def preview_lines(
     return (*lines, *preview.messages, *preview.notes)
 
 
-def _rows_line(preview: FilePreview) -> str:
+def _rows_line(preview: FilePreview, zone: ZoneInfo) -> str:
     rows = "1 row" if preview.rows == 1 else f"{formatting.number(preview.rows)} rows"
-    where = " at the file's end" if preview.from_its_end else ""
-    return f"{_FORMATS[preview.format or 'csv']}, {rows} read{where}."
+    since = "" if preview.since is None else f", from {formatting.stamp(preview.since, zone)} on"
+    return f"{_FORMATS[preview.format or 'csv']}, {rows} read{since}."
 
 
 def _newest_lines(newest: NewestRow, zone: ZoneInfo, stale_after_min: float | None, now: datetime) -> list[str]:

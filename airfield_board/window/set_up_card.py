@@ -4,16 +4,13 @@ from collections.abc import Callable, Mapping, Sequence
 from pathlib import Path
 from typing import Literal
 
-from PySide6.QtCore import Qt, Signal
-from PySide6.QtGui import QKeyEvent, QPalette
+from PySide6.QtCore import QRectF, Qt, Signal
+from PySide6.QtGui import QColor, QKeyEvent, QPainter, QPaintEvent, QPalette, QPen
 from PySide6.QtWidgets import (
-    QButtonGroup,
     QComboBox,
-    QFrame,
     QGridLayout,
     QHBoxLayout,
     QLineEdit,
-    QPlainTextEdit,
     QPushButton,
     QStackedWidget,
     QVBoxLayout,
@@ -22,8 +19,11 @@ from PySide6.QtWidgets import (
 
 from airfield_board.configuration.new_airfield import Answers
 from airfield_board.window.answer_field import AnswerField, button, choice, line_edit, zone_choice
+from airfield_board.window.canvas import CARD_RADIUS_PX
 from airfield_board.window.dialogs import plain_label
 from airfield_board.window.fonts import SEMIBOLD, font
+from airfield_board.window.palette import LIGHT, Palette
+from airfield_board.window.read_only_text import ReadOnlyText
 
 STEPS: Mapping[str, tuple[str, ...]] = {
     "Airfield": ("name", "elevation", "time_zone"),
@@ -44,7 +44,7 @@ _BASES = ("flight manual", "operator policy", "local order", "not said")
 _NEXT, _WRITE = "&Next", "&Write the files and open the board"
 
 
-class SetUpCard(QFrame):
+class SetUpCard(QWidget):
     """Asks, and shows what is said of the answers.
 
     Signals
@@ -78,24 +78,19 @@ class SetUpCard(QFrame):
 
     def __init__(self, zones: Sequence[str], note: str, parent: QWidget | None = None) -> None:
         super().__init__(parent)
-        self.setFrameShape(QFrame.Shape.StyledPanel)
-        self.setAutoFillBackground(True)
-        self.setBackgroundRole(QPalette.ColorRole.Base)
         self.setAccessibleName("Set up an airfield")
+        self._colours = LIGHT
         self._problems: Mapping[str, str] = {}
         self._writing = False
         self.elevation_unit = choice(("ft", "m"), "Unit of the elevation")
         self.limit_unit = choice(("ft", "m"), "Unit of the limit")
         self.fields = _fields(zones, self.elevation_unit, self.limit_unit, self.file_asked.emit, self.folder_asked.emit)
         self.note = plain_label(note)
-        self.preview = QPlainTextEdit()
-        self.preview.setReadOnly(True)
-        self.preview.setTabChangesFocus(True)
-        self.preview.setAccessibleName("What was understood of the observation file")
+        self.preview = ReadOnlyText("What was understood of the observation file")
         self.pages = QStackedWidget()
         for step, names in enumerate(STEPS.values()):
             self.pages.addWidget(self._page(step, names))
-        self.step_buttons = QButtonGroup(self)
+        self.step_buttons: list[QPushButton] = []
         self.missing = plain_label()
         self.missing.setAccessibleName("What is still missing")
         self.open_profile = button("Open a &profile …", self.open_asked.emit)
@@ -132,11 +127,26 @@ class SetUpCard(QFrame):
         if not 0 <= step < len(STEPS):
             return
         self.pages.setCurrentIndex(step)
-        buttons = self.step_buttons.buttons()
-        buttons[step].setChecked(True)
+        self._colour_steps()
         self.back.setEnabled(step > 0)
         self._refresh()
         self._names(step, self.fields)[0].editor.setFocus()
+
+    def set_colours(self, colours: Palette) -> None:
+        """Take other colours."""
+        self._colours = colours
+        self._colour_steps()
+        self.update()
+
+    def _colour_steps(self) -> None:
+        colours = self._colours
+        for index, each in enumerate(self.step_buttons):
+            here = index == self.step
+            each.setChecked(here)
+            palette = QPalette(self.palette())
+            palette.setColor(QPalette.ColorRole.Button, QColor(colours.accent if here else colours.cell))
+            palette.setColor(QPalette.ColorRole.ButtonText, QColor(colours.on_accent if here else colours.ink))
+            each.setPalette(palette)
 
     def go_on(self) -> None:
         """Show the next step; after the last, ask for the files where nothing is missing."""
@@ -178,7 +188,7 @@ class SetUpCard(QFrame):
         last = self.step == len(STEPS) - 1
         self.action.setText(_WRITE if last else _NEXT)
         self.action.setEnabled(not self._writing and not (last and self._problems))
-        for index, (step, each) in enumerate(zip(STEPS.items(), self.step_buttons.buttons(), strict=True)):
+        for index, (step, each) in enumerate(zip(STEPS.items(), self.step_buttons, strict=True)):
             title, names = step
             open_ones = sum(name in self._problems for name in names)
             each.setText(f"&{index + 1}  {title} · " + (f"{open_ones} to do" if open_ones else "done"))
@@ -224,7 +234,7 @@ class SetUpCard(QFrame):
             each = QPushButton()
             each.setCheckable(True)
             each.clicked.connect(lambda _checked, step=index: self.show_step(step))
-            self.step_buttons.addButton(each)
+            self.step_buttons.append(each)
             steps.addWidget(each, 1)
         self.demo = button("Open the &demo instead", self.demo_asked.emit)
         steps.addWidget(self.demo)
@@ -241,6 +251,19 @@ class SetUpCard(QFrame):
         column.addLayout(steps)
         column.addWidget(self.pages, 1)
         column.addLayout(foot)
+
+    def paintEvent(self, event: QPaintEvent) -> None:
+        """Paint the card's ground and its edge."""
+        del event
+        painter = QPainter(self)
+        try:
+            painter.setRenderHint(QPainter.RenderHint.Antialiasing)
+            painter.setPen(QPen(QColor(self._colours.line), 1.5))
+            painter.setBrush(QColor(self._colours.card))
+            room = QRectF(self.rect()).adjusted(1, 1, -1, -1)
+            painter.drawRoundedRect(room, CARD_RADIUS_PX, CARD_RADIUS_PX)
+        finally:
+            painter.end()
 
     def keyPressEvent(self, event: QKeyEvent) -> None:
         """Enter presses the button it is on, and in a field goes on."""
@@ -274,7 +297,7 @@ def _fields(
             "Observation &file",
             line_edit(),
             "CSV, JSON or METAR; it may come into being later",
-            button("&Choose …", ask_for_file),
+            button("C&hoose …", ask_for_file),
         ),
         "station": AnswerField(
             "&Station", line_edit("may be left empty"), "METAR only, where the file holds several stations"
@@ -291,12 +314,12 @@ def _fields(
         "limit": AnswerField(
             "&Greatest density altitude", line_edit("such as 6350"), "above it the operation is on HOLD", limit_unit
         ),
-        "basis": AnswerField("It &rests on", basis, "a limit of the flight manual can never be waived"),
+        "basis": AnswerField("It &rests on", basis, "where the limit comes from"),
         "source": AnswerField("&Stands in", line_edit("may be left empty"), "such as Operations manual 4.2"),
         "folder": AnswerField(
             "Folder for the &files",
             line_edit(),
             "profile.yaml, fleet.yaml and their schemas; nothing is overwritten",
-            button("&Choose …", ask_for_folder),
+            button("C&hoose …", ask_for_folder),
         ),
     }

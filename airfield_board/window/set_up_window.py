@@ -7,7 +7,7 @@ from functools import partial
 from pathlib import Path
 from zoneinfo import ZoneInfo, available_timezones
 
-from PySide6.QtCore import QSize, QTimer, QTimeZone
+from PySide6.QtCore import QSize, QTimer, QTimeZone, Signal
 from PySide6.QtGui import QCloseEvent, QGuiApplication, QResizeEvent, QShowEvent
 from PySide6.QtWidgets import QFileDialog, QMainWindow, QWidget
 
@@ -37,7 +37,7 @@ BEGINNING = "There is no airfield yet. Three short steps make one: two files tha
 _FIRST_PX = QSize(1440, 900)
 _SCREEN_EDGE_PX = QSize(40, 80)
 _CARD_PX = QSize(1020, 640)
-_CARD_EDGE_PX = QSize(80, 120)
+_CARD_EDGE_PX = QSize(80, 180)
 _HEADER_PX = 48
 _TICK_MS = 1000
 _PAUSE_MS = 250
@@ -50,6 +50,11 @@ _LOOKING = "Looking at the file …"
 
 class SetUpWindow(QMainWindow):
     """Makes a new airfield, or leads to another profile or to the demo.
+
+    Signals
+    -------
+    going_to(object)
+        A `NextWindow`, as this one closes for it.
 
     Attributes
     ----------
@@ -67,6 +72,8 @@ class SetUpWindow(QMainWindow):
     note
         What stands on the card; empty: that this is the beginning.
     """
+
+    going_to = Signal(object)
 
     def __init__(self, clock: Clock, *, choice: SchemeChoice, documents: Path, note: str = "") -> None:
         super().__init__()
@@ -93,6 +100,7 @@ class SetUpWindow(QMainWindow):
         if zone:
             self.card.fields["time_zone"].set_text(zone)
         self._propose_folder()
+        self.card.show_preview([_NOTHING_TO_LOOK_AT])
         self._answers_changed()
 
     def _connect(self) -> None:
@@ -118,7 +126,7 @@ class SetUpWindow(QMainWindow):
         self._ticker = QTimer(self)
         self._ticker.timeout.connect(self.tick)
         self._style_hints = QGuiApplication.styleHints()
-        self._style_hints.colorSchemeChanged.connect(lambda _: self.choose_scheme(self._choice))
+        self._style_hints.colorSchemeChanged.connect(self._system_scheme_changed)
 
     def start(self) -> None:
         """Let the clock run."""
@@ -130,8 +138,14 @@ class SetUpWindow(QMainWindow):
         """Show light or dark colours, or those of the system."""
         self._choice = choice
         scheme = scheme_of(choice)
-        self.board.set_colours(palette_for(scheme, grey=False))
+        colours = palette_for(scheme, grey=False)
         apply_scheme(scheme)
+        self.board.set_colours(colours)
+        self.card.set_colours(colours)
+
+    def _system_scheme_changed(self) -> None:
+        if self._choice is SchemeChoice.SYSTEM:
+            self.choose_scheme(self._choice)
 
     def show_fault(self, fault: str) -> None:
         """Say that the window itself met a fault; the answers stay."""
@@ -284,6 +298,7 @@ class SetUpWindow(QMainWindow):
     def _leave_for(self, upcoming: NextWindow) -> None:
         self.next_window = upcoming
         self.close()
+        self.going_to.emit(upcoming)
 
     def _say(self, note: str) -> None:
         self.card.note.setText(note)

@@ -98,6 +98,7 @@ def main() -> int:
     """Print the medians and the ratio; return 0 where the goal is met, else 1."""
     with tempfile.TemporaryDirectory() as name, virtual_display() as display:
         folder = Path(name)
+        os.environ["XDG_CONFIG_HOME"] = name  # it is not to remember this profile for the person who measures
         profile = write_field(folder)
         write_record(folder / "observations.csv", 1440)
         _seconds(display, _EMPTY)

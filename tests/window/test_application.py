@@ -1,4 +1,5 @@
 import io
+import os
 import signal
 import struct
 import subprocess
@@ -7,16 +8,22 @@ from collections.abc import Iterator
 from dataclasses import replace
 from datetime import timedelta
 from pathlib import Path
+from types import SimpleNamespace
 
 import pytest
 
+from airfield_board.configuration.profile import load_airfield
+from airfield_board.errors import UserError
 from airfield_board.history.store import History
 from airfield_board.limits.states import State
 from airfield_board.resources import bundled_folder
 from airfield_board.session.board_state import BoardState, Mode, StatusChange
+from airfield_board.session.last_profile import LastProfile
 from airfield_board.window import application, preflight
 from airfield_board.window.application import DEMO_PICTURE, run_demo, run_window, write_changes
-from airfield_board.window.preflight import Missing, MissingLibraries, NoDisplay
+from airfield_board.window.next_window import AirfieldNext, DemoNext, NextWindow, SetUpNext
+from airfield_board.window.preflight import Missing, MissingLibraries, NoDisplay, Screen
+from airfield_board.window.text_size import TextSize
 from tests.interpreter import run_python
 from tests.window.states import board
 
@@ -63,6 +70,57 @@ def show_fault(self, fault):
 
 main_window.MainWindow.show_fault = show_fault
 sys.exit(main(sys.argv[1:]))
+"""
+
+# Plays what a person does in one window after the other, given as words; says which window each was.
+WINDOWS_ONE_AFTER_THE_OTHER = """
+import sys
+from pathlib import Path
+from PySide6.QtCore import QTimer
+from airfield_board.cli import main
+from airfield_board.window import application, main_window, preflight, set_up_window
+
+application.find_screens = lambda _: (preflight.Screen(platform="offscreen"),)
+application.platformdirs.user_documents_dir = lambda: sys.argv[1]
+steps = iter(sys.argv[2].split(";"))
+begin, begin_set_up = main_window.MainWindow.start, set_up_window.SetUpWindow.start
+
+def act(window):
+    word, _, path = next(steps, "close").partition("=")
+    if word == "open":
+        (window.others.opener if hasattr(window, "others") else window.opener).open(Path(path))
+    elif word == "demo":
+        window.card.demo.click()
+    elif word == "answer":
+        for name, text in (("name", "New Field"), ("elevation", "4120"), ("time_zone", "America/Los_Angeles"),
+                           ("observation_file", "o.csv"), ("aircraft", "Glider"), ("limit", "6000")):
+            window.card.fields[name].set_text(text)
+        window.card.fields["folder"].set_text(path)
+        window.card.show_step(2)
+        window.card.go_on()
+    else:
+        window.close()
+
+def start(self):
+    begin(self)
+    acted = []
+    def came(state):
+        if not acted:
+            acted.append(state)
+            print("board:", state.airfield.name, state.mode, flush=True)
+            act(self)
+    self.worker.state_came.connect(came)
+
+def start_set_up(self):
+    begin_set_up(self)
+    print("set-up:", self.card.note.text().replace("\\n", " "), flush=True)
+    QTimer.singleShot(0, lambda: act(self))
+
+main_window.MainWindow.start = start
+set_up_window.SetUpWindow.start = start_set_up
+for kind in (main_window.MainWindow, set_up_window.SetUpWindow):
+    kind.show_fault = lambda self, fault: self.close()
+sys.exit(main(sys.argv[3:]))
 """
 
 
@@ -182,6 +240,179 @@ def test_being_told_to_end_closes_the_history_in_order(field: Path) -> None:
         process.send_signal(signal.SIGTERM)
         assert process.wait(timeout=60) == 0
     assert kinds(field.parent / "history.db")[-1] == "stop"
+
+
+class Desk:
+    """A person's machine: documents, and what the program remembers."""
+
+    def __init__(self, folder: Path) -> None:
+        self.documents = folder / "documents"
+        self.configuration = folder / "configuration"
+        self.environment = {"XDG_CONFIG_HOME": str(self.configuration), "XDG_DATA_HOME": str(folder / "data")}
+
+    @property
+    def last(self) -> LastProfile:
+        return LastProfile(self.configuration / "airfield-board")
+
+    def use(self, steps: str, *arguments: str) -> list[str]:
+        """Do something in each window; return which windows there were."""
+        done = run_python(
+            ["-c", WINDOWS_ONE_AFTER_THE_OTHER, str(self.documents), steps, *arguments], environment=self.environment
+        )
+        assert "Traceback" not in done.stderr
+        assert done.returncode == 0
+        return done.stdout.splitlines()
+
+
+@pytest.fixture
+def desk(tmp_path: Path) -> Desk:
+    return Desk(tmp_path / "desk")
+
+
+@linux_only
+def test_the_first_start_sets_an_airfield_up_and_the_next_one_opens_it(desk: Desk) -> None:
+    folder = desk.documents / "new"
+    windows = desk.use(f"answer={folder}")
+    assert [window.partition(":")[0] for window in windows] == ["set-up", "board"]
+    assert "There is no airfield yet" in windows[0]
+    assert windows[1] == "board: New Field live"
+    assert desk.last.read() == folder / "profile.yaml"
+    assert desk.use("close") == ["board: New Field live"]
+
+
+@linux_only
+def test_a_profile_named_at_the_start_is_the_last_one_from_then_on(desk: Desk, field: Path) -> None:
+    assert desk.use("close", "--airfield", str(field)) == ["board: Cinder Mesa live"]
+    assert desk.use("close") == ["board: Cinder Mesa live"]
+    assert kinds(field.parent / "history.db").count("stop") == 2
+
+
+@linux_only
+def test_another_profile_is_opened_from_a_running_board_and_is_remembered(
+    desk: Desk, field: Path, tmp_path: Path
+) -> None:
+    other = tmp_path / "other"
+    other.mkdir()
+    for name in ("fleet.yaml", "observations.csv"):
+        (other / name).write_bytes((field.parent / name).read_bytes())
+    text = field.read_text(encoding="utf-8").replace("Cinder Mesa", "Dry Creek")
+    (other / "profile.yaml").write_text(text, encoding="utf-8")
+    windows = desk.use(f"open={other / 'profile.yaml'}", "--airfield", str(field))
+    assert windows == ["board: Cinder Mesa live", "board: Dry Creek live"]
+    assert desk.last.read() == other / "profile.yaml"
+    assert kinds(field.parent / "history.db")[-1] == "stop"
+    assert kinds(other / "history.db")[-1] == "stop"
+
+
+@linux_only
+def test_the_set_up_leads_to_the_demo_and_nothing_is_remembered(desk: Desk) -> None:
+    windows = desk.use("demo;close")
+    assert [window.split()[0] for window in windows] == ["set-up:", "board:"]
+    assert windows[1].endswith(" demo")
+    assert desk.last.read() is None
+
+
+@linux_only
+def test_a_last_profile_that_cannot_be_opened_leads_to_the_set_up_with_the_reason(desk: Desk, field: Path) -> None:
+    assert desk.last.remember(field.parent / "gone.yaml")
+    (window,) = desk.use("close")
+    assert window.startswith("set-up: The airfield that was open last cannot be opened.")
+    assert "gone.yaml: there is no such file" in window
+    assert desk.use(f"open={field}")[1] == "board: Cinder Mesa live"
+    assert desk.last.read() == field
+
+
+@linux_only
+def test_a_damaged_memory_is_no_error(desk: Desk) -> None:
+    (desk.configuration / "airfield-board").mkdir(parents=True)
+    (desk.configuration / "airfield-board" / "last-profile.json").write_bytes(b"\xff{")
+    (window,) = desk.use("close")
+    assert "There is no airfield yet" in window
+
+
+@linux_only
+def test_without_a_display_and_a_profile_it_says_which_airfield_and_makes_nothing(desk: Desk) -> None:
+    done = run_python(["-m", "airfield_board"], environment={**NO_SCREEN, **desk.environment})
+    assert (done.returncode, done.stdout) == (2, "")
+    assert "Say which airfield: --airfield PROFILE" in done.stderr
+    assert not desk.configuration.exists()
+
+
+@linux_only
+def test_without_a_display_the_last_profile_does_not_open_either(desk: Desk, field: Path) -> None:
+    assert desk.last.remember(field)
+    done = run_python(["-m", "airfield_board"], environment={**NO_SCREEN, **desk.environment})
+    assert (done.returncode, done.stdout) == (2, "")
+    assert "snapshot" in done.stderr
+
+
+def test_a_window_that_cannot_be_opened_after_another_leads_to_the_set_up_and_the_first_ends_the_program(
+    field: Path, tmp_path: Path, monkeypatch: pytest.MonkeyPatch
+) -> None:
+    named = AirfieldNext(profile_path=field, airfield=load_airfield(field))
+    shown: list[tuple[NextWindow, bool]] = []
+
+    def run_next(_stage: object, window: NextWindow, *, scheme: str, wall: bool) -> application._Ended:
+        shown.append((window, wall))
+        if isinstance(window, AirfieldNext):
+            raise UserError("The history is in the way.")
+        upcoming = named if window == SetUpNext() else None
+        return application._Ended(code=0, upcoming=upcoming, scheme=scheme)
+
+    monkeypatch.setattr(application, "_run_next", run_next)
+    monkeypatch.setattr(application, "_stage", lambda _screen: SimpleNamespace(text_size=TextSize(tmp_path / "i", {})))
+    screen = Screen(platform="offscreen")
+    assert application._run_windows(screen, SetUpNext(), scheme="light", wall=True) == 0
+    assert shown == [(SetUpNext(), True), (named, True), (SetUpNext(note="The history is in the way."), True)]
+    with pytest.raises(UserError, match="history"):
+        application._run_windows(screen, named, scheme="light", wall=False)
+
+
+def test_only_the_first_board_begins_with_the_wall_view(
+    field: Path, tmp_path: Path, monkeypatch: pytest.MonkeyPatch
+) -> None:
+    named = AirfieldNext(profile_path=field, airfield=load_airfield(field))
+    shown: list[tuple[NextWindow, bool]] = []
+
+    def run_next(_stage: object, window: NextWindow, *, scheme: str, wall: bool) -> application._Ended:
+        shown.append((window, wall))
+        return application._Ended(code=0, upcoming=named if window == DemoNext() else None, scheme=scheme)
+
+    monkeypatch.setattr(application, "_run_next", run_next)
+    monkeypatch.setattr(application, "_stage", lambda _screen: SimpleNamespace(text_size=TextSize(tmp_path / "i", {})))
+    assert application._run_windows(Screen(platform="offscreen"), DemoNext(), scheme="dark", wall=True) == 0
+    assert shown == [(DemoNext(), True), (named, False)]
+
+
+def test_a_board_that_was_gone_on_to_begins_anew_with_its_own_airfield(
+    field: Path, tmp_path: Path, monkeypatch: pytest.MonkeyPatch
+) -> None:
+    named = AirfieldNext(profile_path=field, airfield=load_airfield(field))
+    begun: list[list[str]] = []
+
+    def run_next(_stage: object, window: NextWindow, *, scheme: str, wall: bool) -> application._Ended:
+        del wall
+        last = window == upcoming
+        return application._Ended(
+            code=application._START_AGAIN if last else 0, upcoming=None if last else upcoming, scheme=scheme
+        )
+
+    monkeypatch.setattr(application, "_run_next", run_next)
+    monkeypatch.setattr(application, "_stage", lambda _screen: SimpleNamespace(text_size=TextSize(tmp_path / "i", {})))
+    monkeypatch.setattr(os, "execv", lambda _path, command: begun.append(command))
+    monkeypatch.setattr(subprocess, "Popen", begun.append)
+    monkeypatch.setattr(sys, "orig_argv", ["python", "-m", "airfield_board", "--airfield", "other.yaml", "--wall"])
+    monkeypatch.setattr(sys, "argv", ["airfield_board", "--airfield", "other.yaml", "--wall"])
+    started: tuple[NextWindow, NextWindow, list[str]]
+    for started in (
+        (SetUpNext(), named, ["--airfield", str(field), "--scheme", "dark"]),
+        (named, DemoNext(), ["--demo", "--scheme", "dark"]),
+        (named, named, ["--airfield", "other.yaml", "--wall"]),
+    ):
+        first, upcoming, arguments = started
+        application._run_windows(Screen(platform="offscreen"), first, scheme="dark", wall=False)
+        assert begun[0] == [sys.executable, "-m", "airfield_board", *arguments]
+        begun.clear()
 
 
 def kinds(path: Path) -> list[str]:

@@ -1,19 +1,23 @@
 from collections.abc import Iterator
 from dataclasses import replace
 from datetime import timedelta
+from pathlib import Path
 
 import pytest
 from PySide6.QtCore import Qt
 from PySide6.QtGui import QGuiApplication
 from PySide6.QtTest import QTest
-from PySide6.QtWidgets import QMessageBox, QWidget
+from PySide6.QtWidgets import QFileDialog, QMessageBox, QWidget
 from pytestqt.qtbot import QtBot
 
 from airfield_board.clock import SteppedClock
 from airfield_board.errors import UserError
+from airfield_board.resources import bundled_folder
 from airfield_board.session.board_state import BoardState, Message, Mode, SettingChange, Weight
 from airfield_board.window.dialogs import AcknowledgeDialog, MessagesDialog, TypeInDialog, WaitingSettingsDialog
 from airfield_board.window.main_window import Feed, MainWindow
+from airfield_board.window.next_window import AirfieldNext, DemoNext
+from airfield_board.window.palette import DARK
 from airfield_board.window.reading import Cause
 from airfield_board.window.theme import SchemeChoice
 from airfield_board.window.worker import Request, Worker
@@ -150,7 +154,71 @@ def test_when_the_clock_jumps_as_after_sleep_the_source_is_read_at_once(desk: De
 
 def test_every_key_has_its_action_and_works_where_the_menu_is_hidden(desk: Desk) -> None:
     keys = {action.shortcut().toString() for action in desk.window.actions()}
-    assert {"1", "2", "A", "Shift+A", "P", "E", "F11"} <= keys
+    assert {"1", "2", "A", "Shift+A", "P", "E", "F11", "Ctrl+O"} <= keys
+
+
+def test_another_profile_is_asked_for_and_the_board_goes_on_until_it_is_known_to_be_valid(
+    desk: Desk, tmp_path: Path
+) -> None:
+    press(desk, Qt.Key.Key_O, Qt.KeyboardModifier.ControlModifier)
+    dialog = desk.dialog(QFileDialog)
+    assert isinstance(dialog, QFileDialog)
+    dialog.fileSelected.emit(str(tmp_path / "none.yaml"))
+    dialog.reject()
+    desk.qtbot.waitUntil(desk.window.notice.isVisible)
+    assert "this board goes on" in desk.window.notice.label.text()
+    assert "none.yaml" in desk.window.notice.label.text()
+    shown = [(desk.window.isVisible(), desk.window.next_window)]
+    assert shown == [(True, None)]
+    for name in ("profile.yaml", "fleet.yaml"):
+        (tmp_path / name).write_bytes((bundled_folder("demo_data") / name).read_bytes())
+    desk.window.others.opener.open(tmp_path / "profile.yaml")
+    desk.qtbot.waitUntil(lambda: not desk.window.isVisible())
+    upcoming = desk.window.next_window
+    assert isinstance(upcoming, AirfieldNext)
+    assert upcoming.profile_path == tmp_path / "profile.yaml"
+    assert desk.recorder.closed
+
+
+def test_a_new_airfield_is_set_up_beside_the_board_which_goes_on(desk: Desk) -> None:
+    desk.window.others.set_up_another(desk.window.choice)
+    set_up = desk.window.others.set_up
+    assert set_up is not None
+    assert "The board goes on" in set_up.card.note.text()
+    polls = desk.recorder.calls.count(("poll",))
+    desk.window.poll()
+    desk.qtbot.waitUntil(lambda: desk.recorder.calls.count(("poll",)) == polls + 1)
+    desk.window.others.set_up_another(desk.window.choice)
+    assert desk.window.others.set_up is set_up
+    desk.window.choose_scheme(SchemeChoice.DARK)
+    assert set_up.board.colours is DARK
+    set_up.close()
+    seen = [desk.window.others.set_up, desk.window.next_window]
+    assert (seen, desk.window.isVisible()) == ([None, None], True)
+
+
+def test_the_board_is_left_once_the_set_up_has_something_to_go_to(desk: Desk) -> None:
+    desk.window.others.set_up_another(desk.window.choice)
+    set_up = desk.window.others.set_up
+    assert set_up is not None
+    set_up.card.demo.click()
+    desk.qtbot.waitUntil(lambda: not desk.window.isVisible())
+    assert desk.window.next_window == DemoNext()
+    assert desk.recorder.closed
+
+
+def test_the_set_up_does_not_outlive_the_board(desk: Desk) -> None:
+    desk.window.others.set_up_another(desk.window.choice)
+    set_up = desk.window.others.set_up
+    assert set_up is not None
+    desk.window.close()
+    assert not set_up.isVisible()
+
+
+def test_closing_the_window_leads_nowhere(desk: Desk) -> None:
+    desk.window.close()
+    assert desk.window.next_window is None
+    assert desk.window.choice is SchemeChoice.LIGHT
 
 
 def test_keys_one_and_two_change_the_page(desk: Desk) -> None:
