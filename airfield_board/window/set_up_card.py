@@ -12,6 +12,8 @@ from PySide6.QtWidgets import (
     QHBoxLayout,
     QLineEdit,
     QPushButton,
+    QScrollArea,
+    QSizePolicy,
     QStackedWidget,
     QVBoxLayout,
     QWidget,
@@ -35,6 +37,8 @@ STEPS: Mapping[str, tuple[str, ...]] = {
 _TITLE_PX = 20
 _MARGINS_PX = (24, 18, 24, 18)
 _SPACING_PX = 8
+_PREVIEW_PX = 110
+_MOST_NOTE_LINES = 5
 _ABOUT = (
     "Where the airfield is, and how high.",
     "The file that your weather station or logger writes. It is only ever read.",
@@ -85,7 +89,8 @@ class SetUpCard(QWidget):
         self.elevation_unit = choice(("ft", "m"), "Unit of the elevation")
         self.limit_unit = choice(("ft", "m"), "Unit of the limit")
         self.fields = _fields(zones, self.elevation_unit, self.limit_unit, self.file_asked.emit, self.folder_asked.emit)
-        self.note = plain_label(note)
+        self.note = plain_label()
+        self.say(note)
         self.preview = ReadOnlyText("What was understood of the observation file")
         self.pages = QStackedWidget()
         for step, names in enumerate(STEPS.values()):
@@ -179,6 +184,12 @@ class SetUpCard(QWidget):
         if text != self.preview.toPlainText():
             self.preview.setPlainText(text)
 
+    def say(self, note: str) -> None:
+        """Show something at the top; of a long text its first lines."""
+        lines = note.splitlines()
+        shown = lines if len(lines) <= _MOST_NOTE_LINES else [*lines[: _MOST_NOTE_LINES - 1], "… and more."]
+        self.note.setText("\n".join(shown))
+
     def set_writing(self, *, writing: bool) -> None:
         """Take no second order while the files are being written."""
         self._writing = writing
@@ -221,10 +232,20 @@ class SetUpCard(QWidget):
             self.fields[name].add_to(grid)
         column.addLayout(grid)
         if "observation_file" in names:
+            self.preview.setMinimumHeight(_PREVIEW_PX)
+            self.preview.setSizePolicy(QSizePolicy.Policy.Expanding, QSizePolicy.Policy.Ignored)
             column.addWidget(self.preview, 1)
         else:
             column.addStretch(1)
-        return page
+        room = QScrollArea()  # where the window is low, what does not fit is scrolled to
+        room.setFrameShape(QScrollArea.Shape.NoFrame)
+        room.setHorizontalScrollBarPolicy(Qt.ScrollBarPolicy.ScrollBarAlwaysOff)
+        room.setWidgetResizable(True)
+        room.setFocusPolicy(Qt.FocusPolicy.NoFocus)
+        room.viewport().setAutoFillBackground(False)
+        room.setWidget(page)
+        page.setAutoFillBackground(False)
+        return room
 
     def _arrange(self) -> None:
         title = plain_label("Set up an airfield")

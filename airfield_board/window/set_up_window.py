@@ -27,6 +27,7 @@ from airfield_board.window.airfield_opener import AirfieldOpener
 from airfield_board.window.background import Background, Outcome
 from airfield_board.window.board_view import SMALLEST_PX
 from airfield_board.window.empty_board import EmptyBoard, KnownAirfield
+from airfield_board.window.header import HEIGHT_PX
 from airfield_board.window.next_window import AirfieldNext, DemoNext, NextWindow
 from airfield_board.window.palette import palette_for
 from airfield_board.window.preview_words import preview_lines
@@ -37,8 +38,9 @@ BEGINNING = "There is no airfield yet. Three short steps make one: two files tha
 _FIRST_PX = QSize(1440, 900)
 _SCREEN_EDGE_PX = QSize(40, 80)
 _CARD_PX = QSize(1020, 640)
-_CARD_EDGE_PX = QSize(80, 180)
-_HEADER_PX = 48
+_LEAST_CARD_PX = 560
+_LEAST_EDGE_PX = 10
+_AXES_PX = 180
 _TICK_MS = 1000
 _PAUSE_MS = 250
 """How long typing must rest before the disk is looked at."""
@@ -301,7 +303,7 @@ class SetUpWindow(QMainWindow):
         self.going_to.emit(upcoming)
 
     def _say(self, note: str) -> None:
-        self.card.note.setText(note)
+        self.card.say(note)
 
     # The window itself.
 
@@ -318,9 +320,12 @@ class SetUpWindow(QMainWindow):
     def _place(self) -> None:
         room = self._middle.rect()
         self.board.setGeometry(room)
-        size = _CARD_PX.boundedTo(room.size() - _CARD_EDGE_PX).expandedTo(self.card.minimumSizeHint())
-        left = (room.width() - size.width()) // 2
-        self.card.setGeometry(left, (room.height() + _HEADER_PX - size.height()) // 2, size.width(), size.height())
+        width = min(_CARD_PX.width(), room.width() - 2 * _LEAST_EDGE_PX)
+        # The axes stay in view where there is room for them.
+        wanted = max(room.height() - _AXES_PX, _LEAST_CARD_PX)
+        height = min(_CARD_PX.height(), wanted, room.height() - HEIGHT_PX - 2 * _LEAST_EDGE_PX)
+        left, top = (room.width() - width) // 2, (room.height() + HEIGHT_PX - height) // 2
+        self.card.setGeometry(left, top, width, height)
         self.card.raise_()
 
     def closeEvent(self, event: QCloseEvent) -> None:

@@ -19,6 +19,7 @@ from airfield_board.configuration.profile import load_airfield
 from airfield_board.resources import bundled_folder
 from airfield_board.window import set_up_window
 from airfield_board.window.airfield_opener import AirfieldOpener
+from airfield_board.window.board_view import SMALLEST_PX
 from airfield_board.window.empty_board import EmptyBoard, KnownAirfield
 from airfield_board.window.next_window import AirfieldNext, DemoNext
 from airfield_board.window.palette import DARK, LIGHT
@@ -189,6 +190,28 @@ def test_wherever_tab_goes_the_eye_can_see_that_it_is_there(set_up: SetUp, choic
                 text = part.text() if isinstance(part, QPushButton) else part.accessibleName()
                 unseen.append((step, text or type(part).__name__, differing))
     assert unseen == []
+
+
+def test_in_the_smallest_window_the_field_that_is_come_to_is_in_view(set_up: SetUp) -> None:
+    set_up.window.resize(*SMALLEST_PX)
+    for step, names in enumerate(STEPS.values()):
+        set_up.card.show_step(step)
+        room = set_up.card.pages.currentWidget()
+        assert room is not None
+        for name in names:
+            editor = set_up.card.fields[name].editor
+            while QApplication.focusWidget() is not editor:
+                set_up.press(Qt.Key.Key_Tab)
+            place = editor.mapTo(room, editor.rect().center())
+            assert room.rect().contains(place), name
+
+
+def test_of_many_faults_the_first_are_said(qtbot: QtBot, tmp_path: Path) -> None:
+    made = SetUp(qtbot, tmp_path, note="\n".join(f"profile.yaml:{line}: wrong" for line in range(1, 60)))
+    assert made.card.note.text().splitlines()[0] == "profile.yaml:1: wrong"
+    assert made.card.note.text().splitlines()[-1] == "… and more."
+    assert len(made.card.note.text().splitlines()) == 5
+    made.window.close()
 
 
 def test_what_is_wrong_is_said_beside_the_field_as_it_is_typed(set_up: SetUp) -> None:
@@ -404,7 +427,7 @@ def test_a_fault_of_the_window_is_told_and_the_answers_stay(set_up: SetUp) -> No
     assert set_up.card.fields["name"].text == "Cinder Mesa"
 
 
-@pytest.mark.parametrize("size", [(1200, 760), (1440, 900)])
+@pytest.mark.parametrize("size", [SMALLEST_PX, (1200, 760), (1440, 900)])
 @pytest.mark.parametrize("step", range(3))
 def test_no_text_of_the_card_is_cut(qtbot: QtBot, tmp_path: Path, size: tuple[int, int], step: int) -> None:
     set_up = SetUp(qtbot, tmp_path, note="The airfield that was open last cannot be opened.\n" + "a long reason " * 30)
@@ -415,6 +438,7 @@ def test_no_text_of_the_card_is_cut(qtbot: QtBot, tmp_path: Path, size: tuple[in
     set_up.answer(row_time_zone="America/Los_Angelos", expected_every_min="one", limit="six thousand", operation="")
     set_up.card.show_step(step)
     QApplication.processEvents()
+    assert (set_up.window.width(), set_up.window.height()) == size
     visible = [label for label in set_up.card.findChildren(QLabel) if label.isVisible()]
     assert len(visible) > 2 * len(list(STEPS.values())[step])
     assert [label.text() for label in visible if label.heightForWidth(label.width()) > label.height()] == []
