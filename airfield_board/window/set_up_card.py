@@ -13,7 +13,6 @@ from PySide6.QtWidgets import (
     QLineEdit,
     QPushButton,
     QScrollArea,
-    QSizePolicy,
     QStackedWidget,
     QVBoxLayout,
     QWidget,
@@ -91,7 +90,7 @@ class SetUpCard(QWidget):
         self.fields = _fields(zones, self.elevation_unit, self.limit_unit, self.file_asked.emit, self.folder_asked.emit)
         self.note = plain_label()
         self.say(note)
-        self.preview = ReadOnlyText("What was understood of the observation file")
+        self.preview = ReadOnlyText("What was understood of the observation file", least_px=_PREVIEW_PX)
         self.pages = QStackedWidget()
         for step, names in enumerate(STEPS.values()):
             self.pages.addWidget(self._page(step, names))
@@ -232,8 +231,6 @@ class SetUpCard(QWidget):
             self.fields[name].add_to(grid)
         column.addLayout(grid)
         if "observation_file" in names:
-            self.preview.setMinimumHeight(_PREVIEW_PX)
-            self.preview.setSizePolicy(QSizePolicy.Policy.Expanding, QSizePolicy.Policy.Ignored)
             column.addWidget(self.preview, 1)
         else:
             column.addStretch(1)
