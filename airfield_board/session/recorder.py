@@ -140,9 +140,7 @@ class Recorder:
             Where profile or fleet are not valid.
         """
         airfield = loaded or load_airfield(profile_path)
-        path = history_path or place_of_history(
-            airfield[0].history, Path(platformdirs.user_data_dir("airfield-board")), airfield[0].name
-        )
+        path = history_path or place_of_history(airfield[0], Path(platformdirs.user_data_dir("airfield-board")))
 
         def open_history() -> History:
             try:

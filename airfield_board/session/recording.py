@@ -3,8 +3,10 @@
 from collections.abc import Callable, Mapping, Sequence
 from dataclasses import replace
 from datetime import datetime
+from hashlib import sha256
 from pathlib import Path
 
+from airfield_board.configuration.model import Profile
 from airfield_board.errors import UserError
 from airfield_board.history.errors import NotRecorded
 from airfield_board.history.records import Json, Record, RecordKind
@@ -130,9 +132,13 @@ def late(record: Record) -> Record:
     return replace(record, body={**record.body, "recorded_late": True})
 
 
-def place_of_history(profile_history: Path | None, user_folder: Path, airfield_name: str) -> Path:
-    """Return where the history of an airfield lies: as the profile says, else in the user's data folder."""
-    if profile_history is not None:
-        return profile_history
-    plain = "".join(sign if sign.isalnum() else "-" for sign in airfield_name.lower()).strip("-")
-    return user_folder / f"{plain or 'airfield'}.db"
+def place_of_history(profile: Profile, user_folder: Path) -> Path:
+    """Return where the history of an airfield lies: as the profile says, else in the user's data folder.
+
+    There its name bears a mark of the profile's place, so that two airfields of one name never share a history.
+    """
+    if profile.history is not None:
+        return profile.history
+    plain = "".join(sign if sign.isalnum() else "-" for sign in profile.name.lower()).strip("-")
+    mark = sha256(str(profile.path.resolve()).encode(errors="surrogateescape")).hexdigest()[:8]
+    return user_folder / f"{plain or 'airfield'}-{mark}.db"

@@ -76,7 +76,7 @@ def _rows_of_file(profile: Profile, notes: list[str]) -> ObservationTable:
 
 
 def _history(profile: Profile, notes: list[str]) -> History | None:
-    path = place_of_history(profile.history, Path(platformdirs.user_data_dir("airfield-board")), profile.name)
+    path = place_of_history(profile, Path(platformdirs.user_data_dir("airfield-board")))
     if not path.exists():
         return None
     try:

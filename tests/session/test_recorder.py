@@ -5,11 +5,13 @@ from pathlib import Path
 
 import pytest
 
+from airfield_board.configuration.profile import load_airfield
 from airfield_board.errors import FileFaults, UserError
 from airfield_board.history.records import RecordKind
 from airfield_board.history.store import History
 from airfield_board.limits.states import State
 from airfield_board.session.board_state import Freshness, Weight
+from airfield_board.session.recording import place_of_history
 from airfield_board.session.rejudge import judge_anew
 from airfield_board.session.verifying import verify_history
 from tests.session.fields import FLEET, PROFILE, Field, make_field, row_of
@@ -368,3 +370,16 @@ def test_notes_are_recorded(field: Field) -> None:
     (note,) = history.records(kinds=(RecordKind.NOTE,))
     history.close()
     assert note.body == {"text": "Wind sock torn", "about": "day", "initials": "RK"}
+
+
+def test_two_airfields_of_one_name_never_share_a_history(tmp_path: Path) -> None:
+    places = set()
+    for name in ("one", "two"):
+        (tmp_path / name).mkdir()
+        field = make_field(tmp_path / name, profile=PROFILE.replace("history: history.db\n", ""))
+        profile, _ = load_airfield(field.profile)
+        place = place_of_history(profile, tmp_path / "data")
+        assert place.name.startswith("thistle-bench-")
+        assert place == place_of_history(profile, tmp_path / "data")
+        places.add(place)
+    assert len(places) == 2
