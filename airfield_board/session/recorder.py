@@ -11,7 +11,7 @@ import numpy as np
 import platformdirs
 
 from airfield_board import __version__
-from airfield_board.clock import Clock, local_day, start_of_local_day, time_from_us, us_from_time
+from airfield_board.clock import Clock, local_day_bounds, time_from_us, us_from_time
 from airfield_board.configuration.model import Profile
 from airfield_board.configuration.profile import load_airfield
 from airfield_board.errors import UserError
@@ -362,8 +362,7 @@ class Recorder:
 
     def _state(self, now: datetime) -> BoardState:
         profile = self._settings.in_force[0]
-        zone = ZoneInfo(profile.time_zone)
-        day_start = start_of_local_day(local_day(now, zone), zone)
+        day_start, _ = local_day_bounds(now, ZoneInfo(profile.time_zone))
         self._day.forget_before(us_from_time(now) - KEPT_US)
         current = self._judge.current
         # A clock set forward by mistake makes nothing old.

@@ -231,4 +231,4 @@ def _air_lines(view: View) -> Iterator[DetailLine]:
         source="normally aspirated engine, full throttle: Gagg and Farrar (1934), 1.132 × density ratio − 0.132",
     )
     when = formatting.time_near(observation.time, view.now, view.zone)
-    yield DetailLine(label="Observed", text=when, source=formatting.source_line(observation, state.airfield))
+    yield DetailLine(label="Observed", text=when, source=formatting.source_line(observation))

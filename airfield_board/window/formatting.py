@@ -11,7 +11,6 @@ from zoneinfo import ZoneInfo
 from airfield_board.configuration.model import Quantity, Unit
 from airfield_board.limits.states import State
 from airfield_board.session.board_state import (
-    AirfieldLine,
     BoardState,
     CurrentObservation,
     Freshness,
@@ -214,7 +213,7 @@ def trust_word(freshness: Freshness, cause: Cause) -> str:
     }.get(cause, freshness_word(freshness))
 
 
-def source_line(observation: CurrentObservation | None, airfield: AirfieldLine) -> str:
+def source_line(observation: CurrentObservation | None) -> str:
     """Say where the reading comes from: the file or station and its note, or that it was typed in and by whom."""
     if observation is None:
         return ""

@@ -164,7 +164,7 @@ def content_of(view: View) -> StripContent:
         compared=compared,
         last_known=last_known,
         cells=(air, derived, measured),
-        source=formatting.source_line(observation, airfield) or "no observation yet",
+        source=formatting.source_line(observation) or "no observation yet",
         typed_in=bool(observation is not None and observation.initials),
         observed=formatting.observed_label(observation, now, zone),
         age=formatting.age(age) if age is not None else (dash, ""),

@@ -47,7 +47,7 @@ def _reading(state: BoardState, zone: ZoneInfo) -> list[str]:
     read = (
         f"Observed {formatting.time_near(observation.time, state.assessed_at, zone)}, {number} {words}, "
         f"{formatting.freshness_word(observation.freshness).lower()} "
-        f"({formatting.source_line(observation, state.airfield)})"
+        f"({formatting.source_line(observation)})"
     )
     if air is None:
         return [f"NO DATA: {read}"]

@@ -72,7 +72,7 @@ class WallFoot(Canvas):
     def _paint_source(self, letters: Lettering, view: View) -> float:
         """Paint the source and return where it begins."""
         observation, small = view.state.observation, self._px(22)
-        source = formatting.source_line(observation, view.state.airfield) or "no observation yet"
+        source = formatting.source_line(observation) or "no observation yet"
         typed = observation is not None and bool(observation.initials)
         ink, weight = (self.colours.ink, SEMIBOLD) if typed else (self.colours.soft_ink, REGULAR)
         at = (self.width() - _SIDE_PX * self._scale, baseline_for_middle(self.height() / 2, small))

@@ -229,9 +229,9 @@ def test_a_temporary_limit_says_until_when_and_by_what() -> None:
 def test_the_source_is_named_and_typed_in_readings_carry_initials() -> None:
     state = states.board()
     assert state.observation is not None
-    assert formatting.source_line(state.observation, state.airfield) == "observations.csv · north end sensor"
+    assert formatting.source_line(state.observation) == "observations.csv · north end sensor"
     typed = replace(state.observation, initials="MS")
-    assert formatting.source_line(typed, state.airfield) == "TYPED IN by MS · north end sensor"
+    assert formatting.source_line(typed) == "TYPED IN by MS · north end sensor"
 
 
 @pytest.mark.parametrize("cause", list(Cause))
